@@ -4,7 +4,7 @@
  */
 import * as z from 'zod';
 import { isZone, parseDuration } from './time.ts';
-import { DIMENSIONS, fromInside, parseQuantity, unitNames, type Dimension } from './units.ts';
+import { parseQuantity, unitNames, type Dimension } from './units.ts';
 
 /** What a key accepts, in words and figures for the reference; every leaf schema carries one. */
 export interface Accepts {
@@ -167,10 +167,10 @@ export function zone(): z.ZodType<string> {
 
 export function listOf<T>(item: z.ZodType<T>): z.ZodType<readonly T[]> {
   const inner = acceptsOf.get(item);
-  return describe(z.array(item, { error: (issue) => `expected a list, found ${shown(issue.input)}` }), {
-    ...inner,
-    kind: `list of ${inner?.kind ?? 'sections'}`,
-  });
+  const type = z.array(item, { error: (issue) => `expected a list, found ${shown(issue.input)}` });
+  const section = sections.get(item);
+  if (section) sections.set(type, section);
+  return describe(type, { ...inner, kind: `list of ${inner?.kind ?? 'sections'}` });
 }
 
 /** A key with a default, written the way an owner would write it. */
@@ -241,10 +241,4 @@ function objectFault(issue: { code?: string; input?: unknown }): string | undefi
 
 export function sectionOf(type: z.ZodType): Section | null {
   return sections.get(type) ?? null;
-}
-
-/** A bound or default shown in the dimension's own unit. */
-export function shownInside(value: number, dimension: Dimension): string {
-  const unit = DIMENSIONS[dimension].inside;
-  return `${fromInside(value, unit, dimension) ?? value} ${unit}`;
 }

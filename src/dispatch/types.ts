@@ -1,0 +1,58 @@
+/** What dispatch is told, what it remembers and what limits it keeps. It knows neither plan nor plant. */
+import type { Command } from '../commands.ts';
+import type { LivePoints } from '../points.ts';
+import type { ClockState } from '../record.ts';
+
+/** What somebody asks for in this slot, and why, in one sentence. */
+export interface Request {
+  readonly command: Command;
+  readonly reason: string;
+  readonly numbers: Readonly<Record<string, number | null>>;
+}
+
+/** What is known of the plant right now. */
+export interface PlantView {
+  readonly nowMs: number;
+  readonly live: LivePoints;
+  /** Estimated ice inventory; null before the first estimate. */
+  readonly inventoryPct: number | null;
+  readonly clock: ClockState;
+  readonly brokerConnected: boolean;
+}
+
+/** What has to be remembered from one cycle to the next; plain data, so that it outlives a restart. */
+export interface DispatchMemory {
+  readonly chillerOn: boolean;
+  /** Since when the chiller is in that state, as seen by its power or, failing that, as ordered. */
+  readonly chillerSinceMs: number;
+  /** Since when the pump is ordered on; null while off. */
+  readonly pumpOnSinceMs: number | null;
+  readonly overFrozen: boolean;
+  readonly coilCold: boolean;
+  readonly hotOutdoors: boolean;
+  readonly batteryLow: boolean;
+  /** Until when the pump rests after it ran dry. */
+  readonly dryUntilMs: number | null;
+  /** Until when the chiller rests after its high-pressure cut-out tripped. */
+  readonly trippedUntilMs: number | null;
+}
+
+/** Limits from the site file, in the units of the points. */
+export interface Limits {
+  readonly minOnMs: number;
+  readonly minOffMs: number;
+  readonly chillerRunningAboveW: number;
+  readonly chillerW: number;
+  readonly startW: number;
+  readonly mostOutdoorC: number;
+  readonly coilFreezeC: number;
+  readonly dryPumpW: number | null;
+  readonly flowLPerMin: number;
+  readonly fullCoolantC: number | null;
+  readonly fullLevelMm: number | null;
+  /** True when the thickness electrode sits where the bank is full. */
+  readonly electrodeMeansFull: boolean;
+  readonly batteryFloorPct: number | null;
+  readonly inverterW: number | null;
+  readonly houseW: number;
+}

@@ -1,0 +1,178 @@
+/**
+ * Reads a site file: YAML text in, configuration or every fault at once out. A fault says where, what was expected,
+ * what was found, and the nearest key that exists. Pure: reading the file from disk is the caller's work.
+ */
+import { closest, distance } from 'fastest-levenshtein';
+import type * as z from 'zod';
+import { LineCounter, parseDocument } from 'yaml';
+import { siteSchema, type SiteConfig } from './config.ts';
+import { POINTS, pointSpec } from './points.ts';
+import { sectionOf, type Section } from './schema.ts';
+import { toInside, unitNames, type Dimension } from './units.ts';
+
+export interface Fault {
+  /** Keys from the top of the file, `/` between; empty for the file itself. */
+  readonly path: string;
+  readonly sentence: string;
+}
+
+export type SiteFile = { ok: true; config: SiteConfig } | { ok: false; faults: readonly Fault[] };
+
+export function parseSiteFile(text: string): SiteFile {
+  const lines = new LineCounter();
+  const document = parseDocument(text, { lineCounter: lines, prettyErrors: true });
+  if (document.errors.length > 0) {
+    return {
+      ok: false,
+      faults: document.errors.map((error) => ({
+        path: '',
+        sentence: `not readable as YAML: ${error.message.split('\n')[0]}`,
+      })),
+    };
+  }
+  const written: unknown = document.toJS();
+  const parsed = siteSchema.safeParse(written ?? {});
+  if (!parsed.success) return { ok: false, faults: parsed.error.issues.flatMap((issue) => faultsOf(issue)) };
+  const faults = crossFaults(parsed.data);
+  return faults.length > 0 ? { ok: false, faults } : { ok: true, config: parsed.data };
+}
+
+function faultsOf(issue: z.core.$ZodIssue): Fault[] {
+  const path = issue.path.map(String);
+  if (issue.code === 'unrecognized_keys') {
+    return issue.keys.map((unknown) => ({
+      path: [...path, unknown].join('/'),
+      sentence: `unknown key${nearest(unknown, keysAt(path))}`,
+    }));
+  }
+  if (issue.code === 'invalid_key') {
+    const name = path.at(-1) ?? '';
+    return [{ path: path.join('/'), sentence: `unknown point${nearest(name, Object.keys(POINTS))}` }];
+  }
+  return [{ path: path.join('/'), sentence: issue.message }];
+}
+
+/** The keys that a section at this path takes. */
+function keysAt(path: readonly string[]): string[] {
+  let section: Section | null = sectionOf(siteSchema);
+  for (const step of path) {
+    const entry = section && Object.values(section.keys).find((candidate) => candidate.key === step);
+    if (entry) section = entry.section;
+  }
+  return section ? Object.values(section.keys).map((entry) => entry.key) : [];
+}
+
+function nearest(word: string, known: readonly string[]): string {
+  if (known.length === 0) return '';
+  const best = closest(word, known);
+  return distance(word, best) <= Math.max(3, word.length / 2)
+    ? `, the nearest that exists is "${best}"`
+    : `, expected one of ${known.join(', ')}`;
+}
+
+/** Faults that only show when several keys are seen together. */
+function crossFaults(config: SiteConfig): Fault[] {
+  return [
+    ...pointFaults(config),
+    ...bankFaults(config),
+    ...powerFaults(config),
+    ...actuatorFaults(config),
+    ...secretFaults(config),
+  ];
+}
+
+function pointFaults(config: SiteConfig): Fault[] {
+  const missing = Object.entries(POINTS).flatMap(([name, spec]) =>
+    'required' in spec && !(name in config.points)
+      ? [
+          {
+            path: `points/${name}`,
+            sentence: `expected this point (${spec.what}), found nothing; the estimate cannot do without it`,
+          },
+        ]
+      : [],
+  );
+  const units = Object.entries(config.points).flatMap(([id, point]) => {
+    const spec = pointSpec(id);
+    if (!spec || point.unit === null || spec.kind === 'boolean' || spec.kind === 'series') return [];
+    const dimension: Dimension = spec.kind;
+    return toInside(0, point.unit, dimension) === null
+      ? [
+          {
+            path: `points/${id}/unit`,
+            sentence: `expected one of ${unitNames(dimension).join(', ')}, found "${point.unit}"`,
+          },
+        ]
+      : [];
+  });
+  const offsets = Object.entries(config.points).flatMap(([id, point]) =>
+    point.offsetK !== 0 && pointSpec(id)?.kind !== 'temperature'
+      ? [{ path: `points/${id}/offset`, sentence: 'expected no offset here: only thermometers take one' }]
+      : [],
+  );
+  return [...missing, ...units, ...offsets];
+}
+
+function bankFaults({ bank }: SiteConfig): Fault[] {
+  const faults: Fault[] = [];
+  if (bank.mostIceKg > bank.waterL) {
+    faults.push({
+      path: 'bank/most-ice',
+      sentence: `expected no more ice than the ${bank.waterL} kg of water in the bank, found ${bank.mostIceKg} kg`,
+    });
+  }
+  if (bank.electrodeIceKg !== null && bank.electrodeIceKg > bank.waterL) {
+    faults.push({
+      path: 'bank/electrode-ice',
+      sentence: `expected no more than the ${bank.waterL} kg of water, found ${bank.electrodeIceKg} kg`,
+    });
+  }
+  return faults;
+}
+
+function powerFaults({ power }: SiteConfig): Fault[] {
+  return (power.tariff === null) === (power.island === null)
+    ? [
+        {
+          path: 'power',
+          sentence: `expected either "tariff" or "island", found ${power.tariff === null ? 'neither' : 'both'}`,
+        },
+      ]
+    : [];
+}
+
+function actuatorFaults({ actuators, points }: SiteConfig): Fault[] {
+  return Object.entries(actuators).flatMap(([machine, actuator]) =>
+    actuator?.confirmBy && !(actuator.confirmBy in points)
+      ? [
+          {
+            path: `actuators/${machine}/confirm-by`,
+            sentence: `expected a point of this file, found "${actuator.confirmBy}", which is not under points`,
+          },
+        ]
+      : [],
+  );
+}
+
+function secretFaults({ broker, web }: SiteConfig): Fault[] {
+  const faults: Fault[] = [];
+  if (broker.passwordFile !== null && broker.passwordEnv !== null) {
+    faults.push({
+      path: 'broker/password-env',
+      sentence: 'expected one source of the password, found password-file and password-env',
+    });
+  }
+  if (web.passphraseFile !== null && web.passphraseEnv !== null) {
+    faults.push({
+      path: 'web/passphrase-env',
+      sentence: 'expected one source of the passphrase, found passphrase-file and passphrase-env',
+    });
+  }
+  return faults;
+}
+
+/** All faults as lines for a terminal, the file's name in front of each. */
+export function faultLines(fileName: string, faults: readonly Fault[]): string {
+  const head = `${fileName}: ${faults.length} ${faults.length === 1 ? 'fault' : 'faults'}; nothing was started.`;
+  return [head, ...faults.map((fault) => `  ${fault.path || '(file)'}: ${fault.sentence}.`)].join('\n');
+}
