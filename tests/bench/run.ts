@@ -7,9 +7,15 @@ const NAMES = ['ice', 'forecast', 'plan', 'ingest', 'season', 'drift'] as const;
 
 function table(result: BenchResult): string {
   const rows = [result.columns, ...result.rows].map((row) => row.map(shown));
-  const widths = result.columns.map((_, column) => Math.max(...rows.map((row) => (row[column] ?? '').length)));
+  const widths = result.columns.map((_, column) =>
+    Math.max(...rows.map((row) => (row[column] ?? '').length)),
+  );
   return rows
-    .map((row) => row.map((cell, column) => (column === 0 ? cell.padEnd(widths[0]) : cell.padStart(widths[column]))).join('  '))
+    .map((row) =>
+      row
+        .map((cell, column) => (column === 0 ? cell.padEnd(widths[0]) : cell.padStart(widths[column])))
+        .join('  '),
+    )
     .join('\n');
 }
 
@@ -38,7 +44,9 @@ async function main(): Promise<void> {
     console.log(JSON.stringify({ bench: name, seed: Number(options.seed), tookS, ...result.figures }));
     return;
   }
-  console.log(`${result.title}\n${result.budget}\nseed ${options.seed}, took ${tookS} s\n\n${table(result)}\n`);
+  console.log(
+    `${result.title}\n${result.budget}\nseed ${options.seed}, took ${tookS} s\n\n${table(result)}\n`,
+  );
   for (const [key, value] of Object.entries(result.figures)) console.log(`${key.padEnd(36)} ${shown(value)}`);
 }
 
