@@ -3,7 +3,7 @@
  * Names inside carry their unit; what owners write carries its own.
  */
 import type * as z from 'zod';
-import { choice, key, money, quantity, requiredKey, section, sectionsBy, zone } from './schema.ts';
+import { choice, key, quantity, requiredKey, section, sectionsBy, zone } from './schema.ts';
 import {
   pointSection,
   bankSection,

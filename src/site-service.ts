@@ -13,16 +13,7 @@ import {
   truth,
   whole,
 } from './schema.ts';
-import {
-  anyText,
-  topic,
-  topicFilterRoot,
-  pointer,
-  cronLine,
-  environmentName,
-  port,
-  pointId,
-} from './site-words.ts';
+import { anyText, topic, topicFilterRoot, cronLine, environmentName, port, pointId } from './site-words.ts';
 
 export const tlsSection = section('Certificates for an mqtts:// or wss:// broker.', {
   caFile: optionalKey(
