@@ -95,8 +95,11 @@ function heatLoss(state: ComfortState, metabolism: number, surface: ClothingSurf
 /**
  * Heat index, °C, of shade and light wind: US National Weather Service, Weather Prediction Center, "The Heat Index
  * Equation" (Rothfusz 1990 regression in °F with its two adjustments and the simple form below 80 °F).
+ * null when the temperature is no number or the humidity is not within 0–100 %.
  */
-export function heatIndexC(airC: number, relativeHumidityPct: number): number {
+export function heatIndexC(airC: number, relativeHumidityPct: number): number | null {
+  const meaningful = Number.isFinite(airC) && relativeHumidityPct >= 0 && relativeHumidityPct <= 100;
+  if (!meaningful) return null;
   return (heatIndexF(airC * 1.8 + 32, relativeHumidityPct) - 32) / 1.8;
 }
 

@@ -83,7 +83,7 @@ export function timeOnTubeS(tubeRadiusM: number, iceRadiusM: number, subcoolingK
 
 /** Outer radius, m, of the ice on a tube after a time; the inverse of `timeOnTubeS`. null on input without meaning. */
 export function radiusOnTubeM(tubeRadiusM: number, timeS: number, subcoolingK: number): number | null {
-  // A tube freezes slower than a wall of the tube's area, never thicker than a flat layer's growth.
+  // r ln(r/a) ≥ r - a: ice on a tube is never thicker than on a flat face.
   const most = tubeRadiusM + stefanThicknessM(subcoolingK, timeS);
   const late = (r: number): number => timeOnTubeS(tubeRadiusM, r, subcoolingK) - timeS;
   return timeS === 0 ? tubeRadiusM : findRoot(late, tubeRadiusM, most * (1 + 1e-9), { tolerance: 1e-12 });
