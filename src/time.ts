@@ -168,3 +168,15 @@ export function formatInstant(atMs: number): string {
 export function slotStart(atMs: number, slotMs: number): number {
   return Math.floor(atMs / slotMs) * slotMs;
 }
+
+/** Minutes from midnight of an `HH:MM` reading. */
+export function minuteOfClock(clock: string): number {
+  return Number(clock.slice(0, 2)) * 60 + Number(clock.slice(3, 5));
+}
+
+/** Whether a wall-clock minute lies in [from, to); `to` at or before `from` is on the next day. */
+export function withinClock(minuteOfDay: number, from: string, to: string): boolean {
+  const start = minuteOfClock(from);
+  const end = minuteOfClock(to);
+  return start < end ? minuteOfDay >= start && minuteOfDay < end : minuteOfDay >= start || minuteOfDay < end;
+}
