@@ -281,11 +281,8 @@ describe('wall time', () => {
 
 describe('nights', () => {
   it('runs from noon to noon and is 23 or 25 hours long on change days', () => {
-    const hours = (date: string): number => {
-      const night = nightOf('Europe/Madrid', date);
-      return (night.endMs - night.startMs) / HOUR_MS;
-    };
-    expect([hours('2026-07-14'), hours('2026-03-28'), hours('2026-10-24')]).toEqual([24, 23, 25]);
+    const nights = ['2026-07-14', '2026-03-28', '2026-10-24'].map((date) => nightOf('Europe/Madrid', date));
+    expect(nights.map((night) => (night.endMs - night.startMs) / HOUR_MS)).toEqual([24, 23, 25]);
   });
 
   it('belongs to the date of its evening', () => {

@@ -21,6 +21,8 @@ const event = (
   ...more,
 });
 
+const payloads = (value: number): unknown[] => [{ type: 'PRICE', values: [value] }];
+
 function refusal(value: unknown): string {
   try {
     parseDatedPrices(value, 'USD');
@@ -49,7 +51,6 @@ describe('an event', () => {
   });
 
   it('runs intervals one after the other from the event, and lets an interval have its own period', () => {
-    const payloads = (value: number): unknown[] => [{ type: 'PRICE', values: [value] }];
     const intervals = [
       { id: 0, payloads: payloads(0.1) },
       { id: 1, payloads: payloads(0.2) },
@@ -72,13 +73,13 @@ describe('an event', () => {
   });
 
   it('reads feed-in prices and passes over what is no price', () => {
-    const payloads = [
+    const exported = [
       { type: 'EXPORT_PRICE', values: [0.03] },
       { type: 'GHG', values: [400] },
     ];
-    expect(parseDatedPrices(event('PT1H', [], { intervals: [{ id: 0, payloads }] }), 'USD')).toMatchObject([
-      { buy: null, sell: 0.03 },
-    ]);
+    expect(
+      parseDatedPrices(event('PT1H', [], { intervals: [{ id: 0, payloads: exported }] }), 'USD'),
+    ).toMatchObject([{ buy: null, sell: 0.03 }]);
   });
 
   it('puts the event of higher priority (lower number) first', () => {
