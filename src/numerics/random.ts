@@ -5,14 +5,14 @@
  */
 export interface Random {
   /** Uniform in [0, 1), in steps of 2^-32. */
-  next(): number;
+  readonly next: () => number;
   /** Standard normal. */
-  normal(): number;
+  readonly normal: () => number;
   /**
    * A stream of its own, fixed by this stream's seed and the label alone: drawing more numbers here never shifts
    * the numbers of a fork.
    */
-  fork(label: string): Random;
+  readonly fork: (label: string) => Random;
 }
 
 type Words = readonly [number, number, number, number];

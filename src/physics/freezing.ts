@@ -54,7 +54,9 @@ export function twoPhaseLambda(c: TwoPhaseCase): number | null {
     const unfrozen = (pull * Math.exp(-l * l * ratio)) / (1 - erf(l * Math.sqrt(ratio)));
     return frozen - unfrozen - latent * l;
   };
-  return findRoot(residual, 1e-9, LARGEST_LAMBDA, { tolerance: 1e-12 });
+  // Beyond an argument of 5 the complement of erf has no digits left, and no front is that fast.
+  const most = Math.min(LARGEST_LAMBDA, 5 / Math.sqrt(ratio));
+  return findRoot(residual, 1e-9, most, { tolerance: 1e-12 });
 }
 
 /** Depth of Neumann's front, m. */
