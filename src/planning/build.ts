@@ -1,0 +1,192 @@
+/** A plan problem from the site file and what the other stages know now. */
+import type { SiteConfig } from '../config.ts';
+import { bankLimits } from '../plant/bank.ts';
+import { iceMachine } from '../plant/ice-machine.ts';
+import { localMinuteOfDay } from '../time.ts';
+import type {
+  ChillerTerms,
+  DemandTerms,
+  GridPower,
+  IslandPower,
+  PlanPlant,
+  PlanProblem,
+  PlanScenario,
+} from './problem.ts';
+
+const DAY_MS = 86_400_000;
+
+export interface PlanInputs {
+  readonly nowMs: number;
+  readonly iceOnHandKwh: number;
+  readonly lowKwh: number;
+  readonly highKwh: number;
+  /** One value a slot, from the slot that holds `nowMs`. */
+  readonly scenarios: readonly PlanScenario[];
+  readonly prices: readonly { readonly buy: number; readonly sell: number }[];
+  readonly roomC: number | null;
+  readonly homeNow: boolean;
+  readonly chillerOn: boolean;
+  readonly chillerSinceMs: number | null;
+  /** Air round the bank as measured; null where there is no such point. */
+  readonly surroundC: number | null;
+  /** Mean power of the house, the cooling plant left out; null when unknown. */
+  readonly houseW: number | null;
+  readonly batteryPct: number | null;
+  /** Terms and state of the demand charge; null where there is none. */
+  readonly demand: { readonly price: number; readonly peakKw: number; readonly untilMs: number } | null;
+  /** What the estimate has learned of the plant. */
+  readonly learned?: { readonly meltGain?: number; readonly heatLeakWPerK?: number };
+}
+
+export function planProblem(config: SiteConfig, inputs: PlanInputs): PlanProblem {
+  const { planning, comfort, delivery, site } = config;
+  const wanted = Math.round(planning.horizonMs / planning.slotMs);
+  const reach = inputs.scenarios.map((s) => Math.min(s.outdoorC.length, s.loadW.length));
+  const grid = config.power.island === null;
+  const slots = Math.min(wanted, ...reach, grid ? inputs.prices.length : wanted);
+  const startMs = Math.floor(inputs.nowMs / planning.slotMs) * planning.slotMs;
+  const bySlot = (value: (atMs: number, t: number) => number): Float64Array =>
+    Float64Array.from({ length: Math.max(0, slots) }, (_, t) => value(startMs + t * planning.slotMs, t));
+  const limitC = bySlot((atMs) => limitAt(config, atMs));
+  return {
+    nowMs: inputs.nowMs,
+    slotMs: planning.slotMs,
+    slots,
+    zone: site.zone,
+    currency: site.currency,
+    units: site.units === 'IP' ? 'IP' : 'SI',
+    iceKwh: inputs.iceOnHandKwh,
+    iceLowKwh: inputs.lowKwh,
+    iceHighKwh: inputs.highKwh,
+    roomC: inputs.roomC,
+    homeNow: inputs.homeNow,
+    chillerOn: inputs.chillerOn,
+    chillerSinceMs: inputs.chillerSinceMs,
+    scenarios: inputs.scenarios,
+    power: grid ? gridPower(config, inputs, bySlot) : islandPower(config, inputs, bySlot),
+    plant: plantOf(config, inputs),
+    chiller: chillerTerms(config),
+    pumpW: delivery.pumpW,
+    fanW: delivery.fanW,
+    limitC,
+    surroundC: bySlot((_, t) => surroundAt(config, inputs, limitC, t)),
+    warmHourMoney: comfort.warmHourPrice,
+    reserveKwh: planning.reserveKwh,
+  };
+}
+
+type BySlot = (value: (atMs: number, t: number) => number) => Float64Array;
+
+function plantOf(config: SiteConfig, inputs: PlanInputs): PlanPlant {
+  const machine = iceMachine(config);
+  return {
+    ...bankLimits(config, inputs.learned),
+    operate: (outdoorC, inventoryPct) => machine.operate(outdoorC, inventoryPct),
+  };
+}
+
+function chillerTerms(config: SiteConfig): ChillerTerms {
+  const { chiller, bank } = config;
+  return {
+    minOnMs: chiller.minOnMs,
+    minOffMs: chiller.minOffMs,
+    startMoney: chiller.startCost,
+    startW: chiller.startW,
+    mostOutdoorC: chiller.mostOutdoorC,
+    heatsRoom: chiller.rejects === 'cooled-room',
+    directCooling: chiller.directCooling,
+    // An internal-melt coil carries either cold brine or melt brine, unless the machine can serve the load past it.
+    chargesWhileDischarging: bank.form !== 'ice-on-coil-internal' || chiller.directCooling,
+  };
+}
+
+/** Comfort limit at an instant: sleeping hours may have their own. */
+function limitAt(config: SiteConfig, atMs: number): number {
+  const { limitC, sleepingLimitC, sleepingFrom, sleepingTo } = config.comfort;
+  const asleep = within(config.site.zone, atMs, sleepingFrom, sleepingTo);
+  return asleep && sleepingLimitC !== null ? sleepingLimitC : limitC;
+}
+
+function within(zone: string, atMs: number, from: string, to: string): boolean {
+  const minute = localMinuteOfDay(zone, atMs);
+  const [a, b] = [minutesOf(from), minutesOf(to)];
+  return a < b ? minute >= a && minute < b : minute >= a || minute < b;
+}
+
+const minutesOf = (clock: string): number => Number(clock.slice(0, 2)) * 60 + Number(clock.slice(3, 5));
+
+/** Air round the bank: as measured; else outdoors it is the weather, indoors the room at its limit. */
+function surroundAt(config: SiteConfig, inputs: PlanInputs, limitC: Float64Array, t: number): number {
+  const { stands, surroundC } = config.bank;
+  if (stands === 'outdoors') return meanOutdoorC(inputs.scenarios, t);
+  if (inputs.surroundC !== null) return inputs.surroundC;
+  return stands === 'indoors' ? limitC[t] : surroundC;
+}
+
+function meanOutdoorC(scenarios: readonly PlanScenario[], t: number): number {
+  let sum = 0;
+  let weight = 0;
+  for (const s of scenarios) {
+    sum += s.weight * s.outdoorC[t];
+    weight += s.weight;
+  }
+  return sum / weight;
+}
+
+function gridPower(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): GridPower {
+  return {
+    kind: 'grid',
+    buy: bySlot((_, t) => inputs.prices[t].buy),
+    sell: bySlot((_, t) => inputs.prices[t].sell),
+    houseW: bySlot(() => inputs.houseW ?? 0),
+    demand: demandTerms(config, inputs, bySlot),
+  };
+}
+
+function demandTerms(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): DemandTerms | null {
+  const terms = config.power.tariff?.demand;
+  const { demand, nowMs } = inputs;
+  if (!terms || !demand) return null;
+  const zone = config.power.tariff?.zone ?? config.site.zone;
+  const allDay = terms.from === terms.to;
+  return {
+    moneyPerKw: demand.price,
+    peakSoFarW: demand.peakKw * 1000,
+    // A new month starts afresh; its peak is left to the plans made in it.
+    measured: bySlot((atMs) =>
+      atMs < demand.untilMs && (allDay || within(zone, atMs, terms.from, terms.to)) ? 1 : 0,
+    ),
+    nightsLeft: Math.max(1, Math.ceil((demand.untilMs - nowMs) / DAY_MS)),
+  };
+}
+
+function islandPower(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): IslandPower {
+  const island = config.power.island;
+  const battery = island?.battery;
+  const generator = island?.generator;
+  return {
+    kind: 'island',
+    houseW: bySlot(() => inputs.houseW ?? island?.houseW ?? 0),
+    battery: battery
+      ? {
+          capacityKwh: battery.capacityKwh,
+          floorKwh: (battery.capacityKwh * battery.floorPct) / 100,
+          // A battery that is not heard counts as at its floor: nothing is taken from it.
+          nowKwh: (battery.capacityKwh * (inputs.batteryPct ?? battery.floorPct)) / 100,
+          wearMoneyPerKwh: battery.wear,
+          mostChargeW: battery.mostChargeW,
+          mostDischargeW: battery.mostDischargeW,
+        }
+      : null,
+    generator: generator
+      ? {
+          powerW: generator.powerW,
+          moneyPerKwh: generator.price,
+          quiet: bySlot((atMs) =>
+            within(config.site.zone, atMs, generator.quietFrom, generator.quietTo) ? 1 : 0,
+          ),
+        }
+      : null,
+    inverterW: island?.inverterW ?? 0,
+  };
+}
