@@ -1,0 +1,98 @@
+/** How a site shows its figures: SI or the inch-pound units of the trade, money by currency, local time. */
+import { localClock, localDate, parseInstant, toWall } from '../time.ts';
+import { fromInside, type DisplayUnits } from '../units.ts';
+
+export interface Display {
+  /** Heat and cold; electricity stays in kWh whatever the units. */
+  readonly heatUnit: string;
+  heat(kwh: number): string;
+  readonly massUnit: string;
+  mass(kg: number): string;
+  readonly temperatureUnit: string;
+  temperature(celsius: number): string;
+  readonly differenceUnit: string;
+  difference(kelvin: number, decimals?: number): string;
+  readonly degreeHourUnit: string;
+  degreeHours(kelvinHours: number): string;
+  readonly conductanceUnit: string;
+  conductance(wattsPerKelvin: number): string;
+  readonly currency: string;
+  money(amount: number): string;
+  price(perKwh: number): string;
+  clock(instant: string): string;
+  day(instant: string): string;
+}
+
+const WEEKDAYS = ['Sunday', 'Monday', 'Tuesday', 'Wednesday', 'Thursday', 'Friday', 'Saturday'] as const;
+const MONTHS = [
+  'January',
+  'February',
+  'March',
+  'April',
+  'May',
+  'June',
+  'July',
+  'August',
+  'September',
+  'October',
+  'November',
+  'December',
+] as const;
+
+/** A number with a fixed count of decimals; a minus is a real minus sign, and nothing shows as "-0.0". */
+export function fixed(value: number, decimals: number): string {
+  const text = value.toFixed(decimals);
+  const isZero = Number(text) === 0;
+  return isZero ? text.replace('-', '') : text.replace('-', '\u2212');
+}
+
+export function displayFor(site: { units: DisplayUnits; currency: string; zone: string }): Display {
+  const ip = site.units === 'IP';
+  const inside = (value: number, unit: string, dimension: Parameters<typeof fromInside>[2]): number =>
+    fromInside(value, unit, dimension) ?? value;
+  const digits = minorDigits(site.currency);
+  const at = (instant: string): number => parseInstant(instant) ?? 0;
+  return {
+    heatUnit: ip ? 'kBTU' : 'kWh',
+    heat: (kwh) => (ip ? fixed(inside(kwh, 'BTU', 'energy') / 1000, 1) : fixed(kwh, 2)),
+    massUnit: ip ? 'lb' : 'kg',
+    mass: (kg) => (ip ? fixed(inside(kg, 'lb', 'mass'), 0) : fixed(kg, 1)),
+    temperatureUnit: ip ? '\u00b0F' : '\u00b0C',
+    temperature: (celsius) => fixed(ip ? inside(celsius, 'degF', 'temperature') : celsius, 1),
+    differenceUnit: ip ? '\u00b0F' : 'K',
+    difference: (kelvin, decimals = 1) => fixed(ip ? kelvin * 1.8 : kelvin, decimals),
+    degreeHourUnit: ip ? '\u00b0F h' : 'K h',
+    degreeHours: (kelvinHours) => fixed(ip ? kelvinHours * 1.8 : kelvinHours, 1),
+    conductanceUnit: ip ? 'BTU/(h \u00b0F)' : 'W/K',
+    conductance: (wattsPerKelvin) =>
+      fixed(ip ? inside(wattsPerKelvin, 'BTU/(h degF)', 'conductance') : wattsPerKelvin, 2),
+    currency: site.currency,
+    money: (amount) => fixed(amount, digits),
+    price: (perKwh) => fixed(perKwh, digits + 1),
+    clock: (instant) => localClock(site.zone, at(instant)),
+    day: (instant) => dayWords(site.zone, at(instant)),
+  };
+}
+
+/** Decimals of a currency: two for most, none for yen. */
+function minorDigits(currency: string): number {
+  return (
+    new Intl.NumberFormat('en', { style: 'currency', currency }).resolvedOptions().maximumFractionDigits ?? 2
+  );
+}
+
+/** "Tuesday 14 July 2026". */
+function dayWords(zone: string, atMs: number): string {
+  const wall = toWall(zone, atMs);
+  return `${WEEKDAYS[wall.weekday]} ${wall.day} ${MONTHS[wall.month - 1]} ${wall.year}`;
+}
+
+/** "July 2026" of a local month given as `YYYY-MM`. */
+export function monthWords(month: string): string {
+  const [year, number] = month.split('-');
+  return `${MONTHS[Number(number) - 1]} ${year}`;
+}
+
+export function monthOf(zone: string, atMs: number): string {
+  return localDate(zone, atMs).slice(0, 7);
+}
