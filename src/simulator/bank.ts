@@ -10,13 +10,15 @@ import { Layers } from './layers.ts';
 import { Shells } from './shells.ts';
 
 const CP = WATER_CP_J_PER_KG_K;
+/** Heat of fusion, J/kg; a local name because the inner loop reads it most. */
+const FUSION_J = FUSION_J_PER_KG;
 /** Enthalpy that vapour carries off, reckoned from liquid at 0 °C, J/kg; the same figure in the room's balance. */
 export const VAPOUR_J_PER_KG = 2.501e6;
 /** Still air over the open water of a tub, W/(m² K), and Lewis' relation for the vapour: h/cp. Common practice. */
 const SURFACE_W_PER_M2_K = 4;
 const AIR_CP = 1006;
-/** Floating pieces of about 0.1 m: melting face for each kg, m²/kg, and the part of a layer that they may fill. */
-const FLOAT_M2_PER_KG = 0.065;
+/** Floating pieces of about 0.05 m: melting face for each kg, m²/kg, and the part of a layer that they may fill. */
+const FLOAT_M2_PER_KG = 0.13;
 const FLOAT_PART = 0.6;
 /** Ice on a resting coil lets go of it within this time constant, s. No source. */
 const LETTING_GO_S = 2400;
@@ -111,7 +113,7 @@ export class IceBank {
 
   /** Enthalpy of water and ice above liquid at 0 °C, J. */
   enthalpyJ(): number {
-    let sum = this.layers.totalJ() - FUSION_J_PER_KG * this.iceKg();
+    let sum = this.layers.totalJ() - FUSION_J * this.iceKg();
     for (let i = 0; i < LAYERS; i++) sum += this.shells.wallJ[i];
     return sum;
   }
@@ -251,10 +253,10 @@ export class IceBank {
       const face = film * this.coil.meltFactor * FLOAT_M2_PER_KG * this.floatingKg[i];
       const offeredJ =
         boundedWPerK(this.layers.waterKg[i] * CP, face, dtS) * this.layers.temperatureC(i) * dtS;
-      const kg = Math.min(offeredJ / FUSION_J_PER_KG, this.floatingKg[i]);
+      const kg = Math.min(offeredJ / FUSION_J, this.floatingKg[i]);
       this.floatKg -= kg;
       this.layers.waterKg[i] += kg;
-      this.layers.energyJ[i] -= kg * FUSION_J_PER_KG;
+      this.layers.energyJ[i] -= kg * FUSION_J;
     }
     this.evaporate(dtS, by);
   }
@@ -302,7 +304,7 @@ export class IceBank {
     if (!seeded) this.supercoolingK = this.drawSupercoolingK();
     for (let i = 0; i < LAYERS; i++) {
       if (this.layers.energyJ[i] >= 0 || this.shells.count[i] > 0) continue;
-      const kg = -this.layers.energyJ[i] / FUSION_J_PER_KG;
+      const kg = -this.layers.energyJ[i] / FUSION_J;
       this.shells.growOuter(i, kg);
       this.layers.waterKg[i] -= kg;
       this.layers.energyJ[i] = 0;

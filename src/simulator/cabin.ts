@@ -14,8 +14,12 @@ const MOISTURE_BUFFER = 5;
 const FABRIC_PART = 0.6;
 /** Surfaces of walls and things inside, for each m² of floor: 2 m² at 3.5 W/(m² K). */
 const INSIDE_W_PER_M2_K = 7;
-/** Sunshine on roof and walls raises the outdoor temperature that the fabric sees, K per W/m² of global radiation. */
-const SOL_AIR_K_M2_PER_W = 0.012;
+/**
+ * Sunshine on roof and walls raises the outdoor temperature that the fabric sees, K per W/m² of global radiation; upper
+ * rooms have more of the roof. No source.
+ */
+const SOL_AIR_K_M2_PER_W = 0.01;
+const UPPER_SOL_AIR_K_M2_PER_W = 0.024;
 /** Air passing between neighbouring rooms, W/K for each m² of the smaller floor. */
 const BETWEEN_W_PER_M2_K = 2.5;
 const UPPER_ROOM_SHARE = 0.35;
@@ -104,7 +108,7 @@ export class Cabin {
 
   private exchangeWithMain(r: number, dtS: number): void {
     // Warm air rises readily into an upper room and stays there when that room is the warmer one.
-    const rising = this.airC[0] > this.airC[r] ? 2 : 0.6;
+    const rising = this.airC[0] > this.airC[r] ? 2 : 0.5;
     const through = this.betweenWPerK * rising;
     const heatW = through * (this.airC[0] - this.airC[r]);
     this.heatW[0] -= heatW;
@@ -122,7 +126,8 @@ export class Cabin {
     const driven = this.heatW[r] + leak * air.outdoorC + fabric * this.fabricC[r] + mass * this.massC[r];
     const newC = (this.airJPerK[r] * oldC + dtS * driven) / (this.airJPerK[r] + dtS * (leak + fabric + mass));
     this.airC[r] = newC;
-    const solAirC = air.outdoorC + SOL_AIR_K_M2_PER_W * air.ghiWPerM2;
+    const sunlit = r === 0 ? SOL_AIR_K_M2_PER_W : UPPER_SOL_AIR_K_M2_PER_W;
+    const solAirC = air.outdoorC + sunlit * air.ghiWPerM2;
     const outsideJ = fabric * (solAirC - this.fabricC[r]) * dtS;
     this.fabricC[r] += (outsideJ + fabric * (newC - this.fabricC[r]) * dtS) / this.fabricJPerK[r];
     this.massC[r] += (mass * (newC - this.massC[r]) * dtS) / this.massJPerK[r];

@@ -8,6 +8,7 @@ import type { Layers } from './layers.ts';
 import type { Shells } from './shells.ts';
 
 const CP = WATER_CP_J_PER_KG_K;
+const FUSION_J = FUSION_J_PER_KG;
 /** Part of the allowed ice at which neighbouring cylinders begin to touch. No source. */
 const TOUCHING = 0.7;
 
@@ -86,17 +87,17 @@ export class CoilIce {
     const face = this.filmWPerM2K(flowing) * this.shells.outerAreaM2(i) * this.openFace(i);
     const fromWaterJ =
       boundedWPerK(this.layers.waterKg[i] * CP, face, dtS) * this.layers.temperatureC(i) * dtS;
-    const netKg = (outwardW * dtS - fromWaterJ) / FUSION_J_PER_KG;
+    const netKg = (outwardW * dtS - fromWaterJ) / FUSION_J;
     if (netKg > 0) {
       const grownKg = Math.min(netKg, Math.max(0, this.layers.waterKg[i] - this.leastWaterKg()));
       this.shells.growOuter(i, grownKg);
       this.layers.waterKg[i] -= grownKg;
       this.layers.energyJ[i] -= fromWaterJ;
-      return fromWaterJ + grownKg * FUSION_J_PER_KG;
+      return fromWaterJ + grownKg * FUSION_J;
     }
     const meltedKg = this.shells.meltOuter(i, -netKg);
     this.layers.waterKg[i] += meltedKg + this.shells.freedKg;
-    this.layers.energyJ[i] += this.shells.freedJ - outwardW * dtS - meltedKg * FUSION_J_PER_KG;
+    this.layers.energyJ[i] += this.shells.freedJ - outwardW * dtS - meltedKg * FUSION_J;
     return outwardW * dtS;
   }
 

@@ -1,7 +1,7 @@
 /** The whole true plant: bank, ice machine, loop, rooms, household, island, and the weather on them; stepped as one. */
 import type { SiteConfig } from '../config.ts';
 import { createRandom, type Random } from '../numerics/random.ts';
-import { airDensityKgPerM3, humidityRatio, standardPressurePa } from '../physics/moist-air.ts';
+import { airDensityKgPerM3, standardPressurePa } from '../physics/moist-air.ts';
 import {
   extraterrestrialWPerM2,
   planeOfArray,
@@ -143,8 +143,7 @@ export class Plant {
   }
 
   private outdoorRatio(): number {
-    const rhPct = Math.max(1, Math.min(100, this.sky.outdoorRhPct));
-    return humidityRatio(this.sky.outdoorC, rhPct, this.pressurePa);
+    return this.saturation.ratioAt(this.sky.outdoorC, this.sky.outdoorRhPct);
   }
 
   /** Once a minute: weather, sun through the windows, people, ageing. */
@@ -183,6 +182,7 @@ export class Plant {
   }
 
   private age(days: number): void {
+    if (days > 0 && Object.keys(this.parameters.driftPerDay).length === 0) return;
     const factors = driftedFactors(this.parameters, days);
     this.bank.leakFactor = factors.leakFactor;
     this.bank.coil.meltFactor = factors.meltFactor;

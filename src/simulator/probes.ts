@@ -26,6 +26,9 @@ export class Probe {
   private reportedMs = Number.NEGATIVE_INFINITY;
   private silentUntilMs = 0;
   private stuckAt = Number.NaN;
+  /** Chances for each sample, worked out once. */
+  private readonly dropoutChance: number;
+  private readonly glitchChance: number;
 
   constructor(point: PointId, faults: ProbeFaults, random: Random, startMs: number) {
     const spec = pointSpec(point);
@@ -35,6 +38,9 @@ export class Probe {
     this.faults = faults;
     this.random = random;
     this.startMs = startMs;
+    this.dropoutChance = (faults.dropoutPerDay * faults.periodMs) / DAY_MS;
+    const oneWire = spec.kind === 'temperature';
+    this.glitchChance = oneWire ? (faults.glitchPerDay * faults.periodMs) / DAY_MS : 0;
     // Probes do not all speak at once.
     this.nextMs = startMs + Math.floor(random.next() * Math.min(faults.periodMs, 60_000));
   }
@@ -86,16 +92,13 @@ export class Probe {
 
   private isSilent(atMs: number): boolean {
     if (atMs < this.silentUntilMs) return true;
-    const { dropoutPerDay, dropoutS, periodMs } = this.faults;
-    if (!(dropoutPerDay > 0) || this.random.next() >= (dropoutPerDay * periodMs) / DAY_MS) return false;
-    this.silentUntilMs = atMs - dropoutS * 1000 * Math.log(1 - this.random.next());
+    if (this.dropoutChance === 0 || this.random.next() >= this.dropoutChance) return false;
+    this.silentUntilMs = atMs - this.faults.dropoutS * 1000 * Math.log(1 - this.random.next());
     return true;
   }
 
   private glitch(): number | null {
-    const { glitchPerDay, periodMs } = this.faults;
-    if (!(glitchPerDay > 0) || this.spec.kind !== 'temperature') return null;
-    if (this.random.next() >= (glitchPerDay * periodMs) / DAY_MS) return null;
+    if (this.glitchChance === 0 || this.random.next() >= this.glitchChance) return null;
     return this.random.next() < 0.5 ? 85 : -127;
   }
 

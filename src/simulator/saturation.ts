@@ -4,6 +4,8 @@ import { saturationHumidityRatio } from '../physics/moist-air.ts';
 const LOWEST_C = -30;
 const HIGHEST_C = 70;
 const STEPS_PER_K = 5;
+/** Molar mass of water over that of dry air: ASHRAE Fundamentals 2017, ch. 1 eq. 20. */
+const VAPOUR_TO_AIR = 0.621945;
 
 export class SaturationTable {
   private readonly ratios: Float64Array;
@@ -20,6 +22,19 @@ export class SaturationTable {
     const at = Math.max(0, Math.min(this.ratios.length - 1.001, (airC - LOWEST_C) * STEPS_PER_K));
     const i = at | 0;
     return this.ratios[i] + (at - i) * (this.ratios[i + 1] - this.ratios[i]);
+  }
+
+  /** Relative humidity, %: the quotient of vapour pressures, p w/(0.621945 + w), written with humidity ratios. */
+  humidityPct(airC: number, ratio: number): number {
+    const most = this.ratio(airC);
+    return Math.min(100, (100 * ratio * (VAPOUR_TO_AIR + most)) / (most * (VAPOUR_TO_AIR + ratio)));
+  }
+
+  /** Humidity ratio at a relative humidity, kg/kg; the inverse of `humidityPct`. */
+  ratioAt(airC: number, rhPct: number): number {
+    const most = this.ratio(airC);
+    const part = (Math.max(0, Math.min(100, rhPct)) / 100) * (most / (VAPOUR_TO_AIR + most));
+    return (VAPOUR_TO_AIR * part) / (1 - part);
   }
 
   /** Temperature at which a humidity ratio saturates, °C: the dew point. */

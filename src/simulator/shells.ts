@@ -16,6 +16,8 @@ const MOST_SHELLS = 6;
 /** A shell thinner than this is taken to be gone; a hundredth of a gram. */
 const GONE_KG = 1e-5;
 const CP = WATER_CP_J_PER_KG_K;
+/** Heat of fusion, J/kg; a local name because the inner loop reads it most. */
+const FUSION_J = FUSION_J_PER_KG;
 
 export interface WallGeometry {
   /** Outward from a tube, or inward from a container's wall. */
@@ -151,10 +153,10 @@ export class Shells {
   private meltSecond(i: number, offeredJ: number): void {
     if (!(offeredJ > 0)) return;
     const base = i * MOST_SHELLS;
-    const kg = Math.min(offeredJ / FUSION_J_PER_KG, this.massKg[base + 1]);
+    const kg = Math.min(offeredJ / FUSION_J, this.massKg[base + 1]);
     this.massKg[base] += kg;
     this.massKg[base + 1] -= kg;
-    this.wallJ[i] -= kg * FUSION_J_PER_KG;
+    this.wallJ[i] -= kg * FUSION_J;
     if (this.massKg[base + 1] < GONE_KG) this.closeSecond(i);
   }
 
@@ -163,7 +165,7 @@ export class Shells {
     const base = i * MOST_SHELLS;
     const kg = this.massKg[base];
     if (this.wallJ[i] > -this.supercoolingK[i] * kg * CP) return;
-    const iceKg = -this.wallJ[i] / FUSION_J_PER_KG;
+    const iceKg = -this.wallJ[i] / FUSION_J;
     this.fill(i, [iceKg, kg - iceKg], false);
     this.supercoolingK[i] = this.drawSupercoolingK();
   }
@@ -172,12 +174,12 @@ export class Shells {
   private freezeAtWall(i: number, sourceC: number, conductanceWPerK: number, dtS: number): number {
     const base = i * MOST_SHELLS;
     const outJ = conductanceWPerK * -sourceC * dtS;
-    const iceKg = Math.min((outJ - this.wallJ[i]) / FUSION_J_PER_KG, this.massKg[base]);
+    const iceKg = Math.min((outJ - this.wallJ[i]) / FUSION_J, this.massKg[base]);
     if (iceKg < GONE_KG) {
       this.wallJ[i] -= outJ;
       return -outJ;
     }
-    const takenJ = this.wallJ[i] + iceKg * FUSION_J_PER_KG;
+    const takenJ = this.wallJ[i] + iceKg * FUSION_J;
     this.wallJ[i] = 0;
     this.massKg[base] -= iceKg;
     this.insertFirst(i, iceKg);
@@ -189,21 +191,21 @@ export class Shells {
     if (this.count[i] < 2) return 0;
     const base = i * MOST_SHELLS;
     const resistance = 1 / conductanceWPerK + this.wallShellKPerW(this.massKg[base], false);
-    const kg = Math.min((-sourceC / resistance) * (dtS / FUSION_J_PER_KG), this.massKg[base + 1]);
+    const kg = Math.min((-sourceC / resistance) * (dtS / FUSION_J), this.massKg[base + 1]);
     this.massKg[base] += kg;
     this.massKg[base + 1] -= kg;
     if (this.massKg[base + 1] < GONE_KG) this.closeSecond(i);
-    return -kg * FUSION_J_PER_KG;
+    return -kg * FUSION_J;
   }
 
   private meltAtWall(i: number, sourceC: number, conductanceWPerK: number, dtS: number): number {
     const base = i * MOST_SHELLS;
-    const kg = Math.min((conductanceWPerK * sourceC * dtS) / FUSION_J_PER_KG, this.massKg[base]);
+    const kg = Math.min((conductanceWPerK * sourceC * dtS) / FUSION_J, this.massKg[base]);
     if (!(kg > 0)) return 0;
     this.massKg[base] -= kg;
     this.insertFirst(i, kg);
     if (this.massKg[base + 1] < GONE_KG) this.closeSecond(i);
-    return kg * FUSION_J_PER_KG;
+    return kg * FUSION_J;
   }
 
   /** A new shell at the wall, of the other kind than the first. With no room left the two next to it coalesce. */
@@ -231,8 +233,8 @@ export class Shells {
     const remnantKg = this.massKg[base + 1];
     const gained = this.count[i] > 2 ? this.massKg[base + 2] : 0;
     this.massKg[base] += remnantKg + gained;
-    if (this.waterFirst[i] === 1) this.wallJ[i] -= remnantKg * FUSION_J_PER_KG;
-    else this.releasedJ += remnantKg * FUSION_J_PER_KG;
+    if (this.waterFirst[i] === 1) this.wallJ[i] -= remnantKg * FUSION_J;
+    else this.releasedJ += remnantKg * FUSION_J;
     const drop = this.count[i] > 2 ? 2 : 1;
     for (let s = base + 1; s + drop < base + this.count[i]; s++) this.massKg[s] = this.massKg[s + drop];
     this.count[i] -= drop;
@@ -271,7 +273,7 @@ export class Shells {
     const base = i * MOST_SHELLS;
     const last = base + this.count[i] - 1;
     this.freedKg = this.massKg[last];
-    this.freedJ = -this.massKg[last] * FUSION_J_PER_KG;
+    this.freedJ = -this.massKg[last] * FUSION_J;
     this.count[i] -= 1;
     if (this.count[i] > 0) {
       this.freedKg += this.massKg[last - 1];

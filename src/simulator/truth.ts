@@ -58,11 +58,9 @@ export interface Truth {
 
 const KWH_J = 3.6e6;
 
-/** Relative humidity of the main room, %: ratio of vapour pressures from the humidity ratios. */
+/** Relative humidity of a room, %. */
 export function roomRhPct(plant: Plant, room: number): number {
-  const ratio = plant.cabin.ratio[room];
-  const most = plant.saturation.ratio(plant.cabin.airC[room]);
-  return Math.min(100, (100 * ratio * (0.621945 + most)) / (most * (0.621945 + ratio)));
+  return plant.saturation.humidityPct(plant.cabin.airC[room], plant.cabin.ratio[room]);
 }
 
 export function truthOf(plant: Plant, atMs: number, stepS: number): Truth {
