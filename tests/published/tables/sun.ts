@@ -11,7 +11,42 @@ import { fromSource, type Row } from '../published-value.ts';
 const SPA_MS = Date.UTC(2003, 9, 17, 19, 30, 30);
 const LATITUDE = 39.742476;
 const LONGITUDE = -105.1786;
+const spaNextDay = (): ReturnType<typeof sunPosition> =>
+  sunPosition(SPA_MS + 86_400_000, LATITUDE, LONGITUDE);
 const spa = (): ReturnType<typeof sunPosition> => sunPosition(SPA_MS, LATITUDE, LONGITUDE);
+
+type Place = readonly [latitudeDeg: number, longitudeDeg: number];
+type Moment = readonly [name: string, atMs: number, place: Place];
+const GOLDEN: Place = [LATITUDE, LONGITUDE];
+const SOUTH: Place = [-35, 0];
+const MST_MS = 7 * 3_600_000;
+
+/** SPA counts by UTC days: a sunset after 17:00 at Golden (0:00 UTC) is that of the local evening before. */
+const HORIZON: readonly Moment[] = [
+  ['sunrise of 2003-10-17, Golden', Date.UTC(2003, 9, 17, 6, 12, 43) + MST_MS, GOLDEN],
+  ['sunset of 2003-10-16, Golden', Date.UTC(2003, 9, 16, 17, 20, 19) + MST_MS, GOLDEN],
+  ['sunrise of 2015-01-02, Golden', Date.UTC(2015, 0, 2, 7, 21, 55) + MST_MS, GOLDEN],
+  ['sunset of 2015-01-02, Golden', Date.UTC(2015, 0, 2, 16, 47, 43) + MST_MS, GOLDEN],
+  ['sunrise of 2015-08-02, Golden', Date.UTC(2015, 7, 2, 5, 0, 27) + MST_MS, GOLDEN],
+  ['sunset of 2015-08-01, Golden', Date.UTC(2015, 7, 1, 19, 13, 58) + MST_MS, GOLDEN],
+  ['sunrise of 1996-07-05, 35° S', Date.UTC(1996, 6, 5, 7, 8, 15), SOUTH],
+  ['sunset of 1996-07-05, 35° S', Date.UTC(1996, 6, 5, 17, 1, 4), SOUTH],
+  ['sunrise of 2004-12-04, 35° S', Date.UTC(2004, 11, 4, 4, 38, 57), SOUTH],
+  ['sunset of 2004-12-04, 35° S', Date.UTC(2004, 11, 4, 19, 2, 3), SOUTH],
+];
+const TRANSIT: readonly Moment[] = [
+  ['transit of 2015-01-02, Golden', Date.UTC(2015, 0, 2, 12, 4, 45) + MST_MS, GOLDEN],
+  ['transit of 2015-08-02, Golden', Date.UTC(2015, 7, 2, 12, 6, 58) + MST_MS, GOLDEN],
+  ['transit of 1996-07-05, 35° S', Date.UTC(1996, 6, 5, 12, 4, 36), SOUTH],
+  ['transit of 2004-12-04, 35° S', Date.UTC(2004, 11, 4, 11, 50, 22), SOUTH],
+];
+
+/** Arc between the sun and the meridian. */
+function offMeridianDeg(atMs: number, place: Place): number {
+  const { azimuthDeg, elevationDeg } = sunPosition(atMs, ...place);
+  const radians = Math.PI / 180;
+  return Math.asin(Math.sin(azimuthDeg * radians) * Math.cos(elevationDeg * radians)) / radians;
+}
 
 // Zenith angle, global W/m², day of the year, beam on the horizontal W/m².
 const ERBS: readonly (readonly [number, number, number, number])[] = [
@@ -31,7 +66,8 @@ const erbsBeam = (zenithDeg: number, globalWPerM2: number, day: number): number 
 export const sun = [
   ...fromSource(
     {
-      source: 'Reda & Andreas 2004, NREL/TP-560-34302 (SPA), worked example of 2003-10-17 12:30:30 UTC-7',
+      source:
+        'Reda & Andreas 2004, NREL/TP-560-34302 (SPA), worked example of 2003-10-17 12:30:30 UTC-7; a day later by pvlib-python',
       standing: 'READ',
       why: 'suncalc 2 stays within 0.012° of SPA above 5° of elevation; it takes a standard atmosphere for the refraction, not the 820 mbar and 11 °C of the example',
       tolerance: 0.012,
@@ -39,6 +75,8 @@ export const sun = [
     [
       ['zenith angle, °', () => 90 - spa().elevationDeg, 50.111622],
       ['azimuth, °', () => spa().azimuthDeg, 194.340241],
+      ['zenith angle a day later, °', () => 90 - spaNextDay().elevationDeg, 50.47826],
+      ['azimuth a day later, °', () => spaNextDay().azimuthDeg, 194.311132],
     ],
   ),
   ...fromSource(
@@ -59,23 +97,29 @@ export const sun = [
   ...fromSource(
     {
       source:
-        'Reda & Andreas 2004, same example: sunrise 06:12:43, sunset 17:20:19 (of the UTC day, so the evening of the 16th)',
-      standing: 'READ',
-      why: 'SPA puts both at -0.8333° without refraction, -0.27° with the standard one; suncalc says of itself that it bends 0.09° too little at the horizon',
+        'Reda & Andreas 2004 (SPA), rise and set by its web calculator and worked example, in tests of pvlib-python',
+      standing: 'READ-2nd',
+      why: 'SPA puts both at -0.8333° without refraction, -0.27° with the standard one; suncalc bends 0.09° less at the horizon, as its source remarks',
       tolerance: 0.1,
     },
-    [
-      [
-        'apparent elevation at sunrise, °',
-        () => sunPosition(Date.UTC(2003, 9, 17, 13, 12, 43), LATITUDE, LONGITUDE).elevationDeg,
-        -0.27,
-      ],
-      [
-        'apparent elevation at sunset, °',
-        () => sunPosition(Date.UTC(2003, 9, 17, 0, 20, 19), LATITUDE, LONGITUDE).elevationDeg,
-        -0.27,
-      ],
-    ],
+    HORIZON.map(([name, atMs, place]): Row => [
+      `apparent elevation at ${name}, °`,
+      () => sunPosition(atMs, ...place).elevationDeg,
+      -0.27,
+    ]),
+  ),
+  ...fromSource(
+    {
+      source: 'Reda & Andreas 2004 (SPA), transit by its web calculator, in tests of pvlib-python',
+      standing: 'READ-2nd',
+      why: '0.012° of position and half a second of the printed time (0.002°)',
+      tolerance: 0.014,
+    },
+    TRANSIT.map(([name, atMs, place]): Row => [
+      `distance from the meridian at ${name}, °`,
+      () => offMeridianDeg(atMs, place),
+      0,
+    ]),
   ),
   ...fromSource(
     {
