@@ -7,6 +7,7 @@ import type { BankConfig, BankForm, SiteConfig } from '../config.ts';
 import { FUSION_J_PER_KG, ICE_DENSITY, WATER_CP_J_PER_KG_K } from '../physics/water.ts';
 import { deliveryModel } from './delivery.ts';
 
+export { FUSION_J_PER_KG };
 export const J_PER_KWH = 3.6e6;
 
 /** Water at 0 °C, kg/m³: IAPWS-95, 999.843. */
@@ -66,9 +67,13 @@ export function bankModel(config: SiteConfig): BankModel {
   };
 }
 
-/** Ice on hand, kWh: latent heat of the ice plus what all the water takes up to the useful leaving temperature. */
+/**
+ * Ice on hand, kWh: latent heat of the ice plus what all the water takes up to the useful leaving temperature.
+ * `waterC` is the mean of the water that is not frozen.
+ */
 export function iceOnHandKwh(bank: BankModel, iceKg: number, waterC: number): number {
-  const sensibleJ = bank.heatCapacityJPerK * (bank.config.usefulLeavingC - waterC);
+  const liquid = Math.max(0, 1 - iceKg / bank.waterKg);
+  const sensibleJ = bank.heatCapacityJPerK * (bank.config.usefulLeavingC - liquid * waterC);
   return Math.max(0, (iceKg * FUSION_J_PER_KG + sensibleJ) / J_PER_KWH);
 }
 

@@ -1,6 +1,7 @@
 /** Pump loop and fan coil: how much heat a room gives to water of a temperature, and what ice and coil do together. */
 import type { SiteConfig } from '../config.ts';
 import { effectiveness } from '../physics/heat-exchanger.ts';
+import { humidityRatio, standardPressurePa } from '../physics/moist-air.ts';
 import { WATER_CP_J_PER_KG_K } from '../physics/water.ts';
 
 /** Air at 20 °C near sea level: 1.2 kg/m³ × 1006 J/(kg K), J/(m³ K); thin mountain air is learned as coil gain. */
@@ -57,4 +58,26 @@ export function wetFactor(roomC: number, roomRatio: number, surfaceC: number, su
   if (!(drop > 1)) return 1;
   const latentK = (2.5e6 * Math.max(0, roomRatio - surfaceRatio)) / 1006;
   return Math.min(2.5, 1 + latentK / drop);
+}
+
+/** Air leaves a coil's surface this part of the way from water to room (common practice, no source). */
+const SURFACE_SHARE = 0.35;
+
+/** `wetFactor` of the coil for water of `leavingC` sent to it, from room temperature and relative humidity. */
+export function coilWetFactor(
+  roomC: number,
+  humidityPct: number,
+  leavingC: number,
+  elevationM: number,
+): number {
+  const surfaceC = Math.max(0, leavingC) + SURFACE_SHARE * (roomC - leavingC);
+  if (!(roomC - surfaceC > 1)) return 1;
+  const pressurePa = standardPressurePa(elevationM);
+  const humid = Math.min(100, Math.max(1, humidityPct));
+  return wetFactor(
+    roomC,
+    humidityRatio(roomC, humid, pressurePa),
+    surfaceC,
+    humidityRatio(surfaceC, 100, pressurePa),
+  );
 }

@@ -1,0 +1,128 @@
+/**
+ * The estimated quantities: where each stands in the state vector, what is believed of it before anything is heard,
+ * and how slowly it may drift. Gains are natural logarithms of factors on the site file's figures.
+ */
+import type { PointName } from '../points.ts';
+import type { BankModel } from '../plant/bank.ts';
+
+export const X = {
+  /** Ice as a fraction of the most the bank may hold. */
+  ice: 0,
+  /** Water on the leaving side, °C; in internal melt the coolant at the end of the coil. */
+  out: 1,
+  /** Water on the entering side, °C; in internal melt the bulk of the water. */
+  bulk: 2,
+  cop: 3,
+  /** Change of that gain for each 10 K outdoors above the rating. */
+  copOutdoor: 4,
+  /** Change of that gain from no ice to full. */
+  copIce: 5,
+  melt: 6,
+  meltExponent: 7,
+  meltBend: 8,
+  /** What layers and lopsided ice do to melting for some hours. */
+  meltNow: 9,
+  freeze: 10,
+  thickening: 11,
+  freezeNow: 12,
+  leak: 13,
+  flow: 14,
+  coil: 15,
+  /** Half of the coolant's rise through the coil, for each watt, relative to its guess. */
+  span: 16,
+  power: 17,
+  powerIce: 18,
+  enteringOffset: 19,
+  /** From here on nothing moves the bank: what instruments add. */
+  levelZero: 20,
+  leavingOffset: 21,
+  topOffset: 22,
+  middleOffset: 23,
+  bottomOffset: 24,
+  supplyOffset: 25,
+  returnOffset: 26,
+} as const;
+
+export const STATES = 27;
+/** States before this one drive the process; the others only show in readings. */
+export const DYNAMIC = X.levelZero;
+
+export type WetPoint = 'leaving-water' | 'entering-water' | 'bank-top' | 'bank-middle' | 'bank-bottom';
+export type ProbePoint = WetPoint | 'coolant-supply' | 'coolant-return';
+
+export const PROBE_OFFSET: Readonly<Record<ProbePoint, number>> = {
+  'leaving-water': X.leavingOffset,
+  'entering-water': X.enteringOffset,
+  'bank-top': X.topOffset,
+  'bank-middle': X.middleOffset,
+  'bank-bottom': X.bottomOffset,
+  'coolant-supply': X.supplyOffset,
+  'coolant-return': X.returnOffset,
+};
+export const PROBE_POINTS = Object.keys(PROBE_OFFSET) as readonly ProbePoint[];
+
+export const isProbe = (point: PointName): point is ProbePoint => Object.hasOwn(PROBE_OFFSET, point);
+
+export interface Priors {
+  readonly mean: Float64Array;
+  readonly sd: Float64Array;
+  /** Time in which a quantity forgets, s: it drifts back to its prior as an Ornstein–Uhlenbeck process. */
+  readonly forgetS: Float64Array;
+}
+
+const DAY_S = 86_400;
+const SLOW_S = 90 * DAY_S;
+const HOURS_S = 3 * 3600;
+
+/**
+ * [mean, standard deviation, forgetting time]. Spreads are what a nameplate is worth (common practice, no source):
+ * COP ±15 %, leak ±40 %, flow ±20 %, probes ±0.5 K at their limits; conductances known to a third.
+ * The ice and the two temperatures are no parameters: their rows are unused here.
+ */
+function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [number, number, number]>> {
+  const level = bank.config.emptyLevelMm;
+  return {
+    ice: [0.5, 0.3, SLOW_S],
+    out: [5, 5, SLOW_S],
+    bulk: [5, 5, SLOW_S],
+    cop: [0, 0.1, SLOW_S],
+    copOutdoor: [0, 0.05, SLOW_S],
+    copIce: [0, 0.08, SLOW_S],
+    melt: [0, 0.35, SLOW_S],
+    meltExponent: [bank.guess.meltExponent, 0.25, SLOW_S],
+    meltBend: [0.3, 0.4, SLOW_S],
+    meltNow: [0, 0.18, HOURS_S],
+    freeze: [0, 0.3, SLOW_S],
+    thickening: [Math.log(bank.guess.freezeThickening), 0.5, SLOW_S],
+    freezeNow: [0, 0.12, HOURS_S],
+    leak: [0, 0.25, 30 * DAY_S],
+    flow: [0, 0.12, SLOW_S],
+    coil: [0, 0.25, SLOW_S],
+    span: [0, 0.4, SLOW_S],
+    power: [0, 0.12, SLOW_S],
+    powerIce: [0, 0.1, SLOW_S],
+    enteringOffset: [0, 0.3, SLOW_S],
+    levelZero: [level ?? 500, level === null ? 300 : 6, 60 * DAY_S],
+    leavingOffset: [0, 0.3, SLOW_S],
+    topOffset: [0, 0.3, SLOW_S],
+    middleOffset: [0, 0.3, SLOW_S],
+    bottomOffset: [0, 0.3, SLOW_S],
+    supplyOffset: [0, 0.3, SLOW_S],
+    returnOffset: [0, 0.3, SLOW_S],
+  };
+}
+
+export function priorsFor(bank: BankModel): Priors {
+  const rows = Object.values(priorRows(bank));
+  return {
+    mean: Float64Array.from(rows, (row) => row[0]),
+    sd: Float64Array.from(rows, (row) => row[1]),
+    forgetS: Float64Array.from(rows, (row) => row[2]),
+  };
+}
+
+/** Width of the coolant's rise through the coil that is guessed, K at the nameplate's ice making; no source. */
+export const COOLANT_RISE_K = 3;
+
+/** What a flow meter may err by, as a logarithm (common practice, no source). */
+export const METER_SD = 0.025;

@@ -1,0 +1,60 @@
+/**
+ * How far model and instruments are trusted. Readings a few seconds apart err alike, because layers and lags outlast
+ * them: an error of `alike` kelvin that lasts `lastsS` counts once in that time, not once in every step.
+ */
+import { STATES, X } from './layout.ts';
+import { latentKwh, type Flows, type PlantModels } from './process.ts';
+
+export interface Alike {
+  /** Standard deviation of what is new in every step. */
+  readonly fresh: number;
+  readonly alike: number;
+  readonly lastsS: number;
+}
+
+export const NOISE = {
+  waterFlowing: { fresh: 0.05, alike: 0.12, lastsS: 400 },
+  waterResting: { fresh: 0.05, alike: 0.15, lastsS: 3600 },
+  /** Water without ice, above and below the density maximum, and a warm reading where ice is believed. */
+  waterWarm: { fresh: 0.06, alike: 0.25, lastsS: 1800 },
+  waterLayered: { fresh: 0.1, alike: 0.7, lastsS: 1800 },
+  waterOdd: { fresh: 0.3, alike: 1.5, lastsS: 1800 },
+  coolant: { fresh: 0.15, alike: 0.35, lastsS: 1800 },
+  /** Logarithm of power. */
+  power: { fresh: 0.01, alike: 0.03, lastsS: 3600 },
+  /** mm. */
+  level: { fresh: 1, alike: 2, lastsS: 3600 },
+  /** Inventory as a fraction, at an anchor. */
+  anchor: { fresh: 0.02, alike: 0.05, lastsS: 3600 },
+} as const satisfies Record<string, Alike>;
+
+export function varianceOf({ fresh, alike, lastsS }: Alike, dtS: number): number {
+  return fresh ** 2 + alike ** 2 * Math.max(1, lastsS / dtS);
+}
+
+/** Part of every heat flow that is uncertain beyond its learned gain, and how long such an error lasts. */
+const HEAT_PART = 0.04;
+const HEAT_LASTS_S = 3600;
+/** Wandering of the ice for reasons not modelled, part of a full bank in a square-root hour. */
+const ICE_WANDER = 0.002;
+/** Wandering of the water, K in a square-root minute, flowing and at rest. */
+const WATER_WANDER_K = { flowing: 0.06, resting: 0.015 };
+
+/** Fills the noise variances of a step. `unknown` is power that may or may not have been at work, W. */
+export function processNoise(
+  models: PlantModels,
+  flows: Flows,
+  flowing: number,
+  unknownW: number,
+  dtS: number,
+  into: Float64Array,
+): void {
+  const fullJ = latentKwh(models) * 3.6e6;
+  const uncertainW = HEAT_PART * (Math.abs(flows.chargingW) + Math.abs(flows.loopW)) + 0.5 * unknownW;
+  const part = (uncertainW * dtS) / fullJ;
+  const wander = flowing > 0 ? WATER_WANDER_K.flowing : WATER_WANDER_K.resting;
+  into.fill(0, 0, STATES);
+  into[X.ice] = part * part * Math.max(1, HEAT_LASTS_S / dtS) + (ICE_WANDER ** 2 * dtS) / 3600;
+  into[X.out] = (wander ** 2 * dtS) / 60;
+  into[X.bulk] = (wander ** 2 * dtS) / 60;
+}

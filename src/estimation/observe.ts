@@ -1,0 +1,74 @@
+/** What each instrument would read for a state of the bank: the sensing side of the model. */
+import { levelRiseMm } from '../plant/bank.ts';
+import type { Sense } from './filter.ts';
+import { COOLANT_RISE_K, PROBE_OFFSET, X, type ProbePoint } from './layout.ts';
+import { chargingWOf, freezeWPerKOf, waterCOf, type Drive, type PlantModels } from './process.ts';
+
+const water = (point: ProbePoint, read: (x: Float64Array) => number): Sense => {
+  const offset = PROBE_OFFSET[point];
+  return { states: [X.out, X.bulk, offset], predict: (x) => read(x) + x[offset] };
+};
+
+export interface Senses {
+  readonly water: Readonly<Partial<Record<ProbePoint, Sense>>>;
+  readonly level: Sense;
+  readonly ice: Sense;
+  readonly flow: Sense;
+  coolant(point: 'coolant-supply' | 'coolant-return', drive: Drive): Sense;
+  power(drive: Drive): Sense;
+}
+
+export function sensesOf(models: PlantModels): Senses {
+  const mostKg = models.bank.mostIceKg;
+  const halfK = models.internal
+    ? (x: Float64Array): number => x[X.bulk]
+    : (x: Float64Array): number => 0.5 * (x[X.out] + x[X.bulk]);
+  return {
+    water: {
+      'leaving-water': water('leaving-water', (x) => x[X.out]),
+      'bank-top': water('bank-top', (x) => x[X.bulk]),
+      'bank-middle': water('bank-middle', halfK),
+      'bank-bottom': water('bank-bottom', models.internal ? halfK : (x) => x[X.out]),
+    },
+    level: {
+      states: [X.ice, X.levelZero],
+      predict: (x) => x[X.levelZero] + levelRiseMm(models.bank, Math.max(0, x[X.ice]) * mostKg),
+    },
+    ice: { states: [X.ice], predict: (x) => x[X.ice] },
+    flow: { states: [X.flow], predict: (x) => x[X.flow] },
+    coolant: (point, drive) => coolantSense(models, point, drive),
+    power: (drive) => powerSense(models, drive),
+  };
+}
+
+/**
+ * Coolant round the freezing coil: colder than what it faces by heat over conductance, half its rise to either side.
+ * Thickness of ice shows here, for it is an insulator.
+ */
+function coolantSense(models: PlantModels, point: 'coolant-supply' | 'coolant-return', drive: Drive): Sense {
+  const offset = PROBE_OFFSET[point];
+  const side = point === 'coolant-supply' ? -0.5 : 0.5;
+  const risePerW = COOLANT_RISE_K / models.nominalIceMakingW;
+  return {
+    states: [X.ice, X.bulk, X.out, X.cop, X.copIce, X.freeze, X.freezeNow, X.thickening, X.span, offset],
+    predict: (x) => {
+      const heatW = chargingWOf(models, x, drive);
+      const facedC = x[X.ice] > 0.01 ? 0 : waterCOf(models, x);
+      const rise = side * risePerW * Math.exp(x[X.span]) * heatW;
+      return facedC - heatW / freezeWPerKOf(models, x) + rise + x[offset];
+    },
+  };
+}
+
+/** Electrical power of the running machine: falls or rises with the ice on the coil in a way that this plant repeats. */
+function powerSense(models: PlantModels, drive: Drive): Sense {
+  return {
+    states: [X.ice, X.power, X.powerIce, X.freeze, X.freezeNow, X.thickening],
+    predict: (x) => {
+      const facedC = x[X.ice] > 0.01 ? 0 : waterCOf(models, x);
+      const balance = models.machine.balance(drive.condenserAirC, freezeWPerKOf(models, x), facedC);
+      const learned = x[X.power] + x[X.powerIce] * (Math.min(1.2, Math.max(0, x[X.ice])) - 0.5);
+      return Math.log(balance.powerW) + learned;
+    },
+  };
+}

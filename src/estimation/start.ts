@@ -1,0 +1,44 @@
+/** Beliefs to start from, and what happens to them when the owner or a long silence says that all is open again. */
+import { beliefFrom, type Belief } from './filter.ts';
+import { STATES, X, type Priors } from './layout.ts';
+
+/** Inventories that the first beliefs are centred on; the first of them is a bank without ice. */
+const START_ICE = [0, 0.12, 0.3, 0.5, 0.7, 0.9, 1.02];
+const START_SD = 0.09;
+
+/** Beliefs from all-water to full, with the slow quantities of `slow` or of the priors. */
+export function openBeliefs(priors: Priors, slow: Belief | null): Belief[] {
+  return START_ICE.map((ice) => {
+    const belief = slow
+      ? { logWeight: 0, mean: Float64Array.from(slow.mean), cov: Float64Array.from(slow.cov) }
+      : beliefFrom(priors.mean, priors.sd);
+    restate(belief, X.ice, ice, ice === 0 ? 0.02 : START_SD);
+    restate(belief, X.out, ice === 0 ? 8 : 0.3, ice === 0 ? 6 : 0.6);
+    restate(belief, X.bulk, ice === 0 ? 8 : 0.3, ice === 0 ? 6 : 0.6);
+    return belief;
+  });
+}
+
+/** Sets one quantity anew, unrelated to all others. */
+export function restate(belief: Belief, i: number, mean: number, sd: number): void {
+  belief.mean[i] = mean;
+  for (let j = 0; j < STATES; j++) {
+    belief.cov[i * STATES + j] = 0;
+    belief.cov[j * STATES + i] = 0;
+  }
+  belief.cov[i * STATES + i] = sd * sd;
+}
+
+/** Keeps means where physics allows them and parameters within reach of their priors. */
+export function bound(belief: Belief, priors: Priors): void {
+  const { mean } = belief;
+  mean[X.ice] = clamp(mean[X.ice], 0, 1.25);
+  mean[X.out] = clamp(mean[X.out], -8, 45);
+  mean[X.bulk] = clamp(mean[X.bulk], -8, 45);
+  for (let i = X.cop; i < STATES; i++) {
+    mean[i] = clamp(mean[i], priors.mean[i] - 3.5 * priors.sd[i], priors.mean[i] + 3.5 * priors.sd[i]);
+  }
+}
+
+const clamp = (value: number, low: number, high: number): number =>
+  value > low ? Math.min(value, high) : low;

@@ -1,0 +1,247 @@
+/** One step of the estimator: what was heard, what ran, where that leads, what the readings make of it. */
+import type { Command } from '../commands.ts';
+import { coilWetFactor } from '../plant/delivery.ts';
+import type { PointName } from '../points.ts';
+import type { Core } from './core.ts';
+import { watchSwap } from './consistency.ts';
+import { forget, predict, type Belief } from './filter.ts';
+import { METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
+import { tidy, weightsOf } from './mixture.ts';
+import { processNoise } from './noise.ts';
+import { advance, type Drive } from './process.ts';
+import { anchorsOf } from './anchors.ts';
+import { flowProbability, runningOf, type Running } from './running.ts';
+import { bound, restate } from './start.ts';
+import { bestOf, learn, type Circumstances, type Heard } from './update.ts';
+import { judgeEntering } from './entering.ts';
+
+const TIDY_S = 600;
+/** Beliefs this near in inventory are one. */
+const NEAR = 0.03;
+/** Air indoors, until a room thermometer is heard, and its humidity. */
+const ROOM_C = 24;
+const HUMIDITY_PCT = 50;
+/** Pump power that ends in the loop (common practice, no source). */
+const PUMP_HEAT_PART = 0.8;
+/** Start surges and meter glitches above this multiple of the nameplate are cut. */
+const MOST_POWER_FACTOR = 1.8;
+
+export function advanceBank(core: Core, nowMs: number, ordered: Command | null): void {
+  const dtS = core.stepMs / 1000;
+  const running = toldRunning(core, nowMs, ordered);
+  tellTime(core, running, dtS);
+  const drive = driveOf(core, running, nowMs);
+  const heard = heardOf(core, drive, nowMs);
+  start(core, heard);
+  const now: Circumstances = {
+    drive,
+    heard,
+    chargingS: core.chargingS,
+    flowingS: core.flowingS,
+    restingS: core.restingS,
+  };
+  if (core.sinceTidyS >= TIDY_S) housekeep(core);
+  core.sinceTidyS += dtS;
+  move(core, drive, running, dtS);
+  core.predictedLeavingC = drive.flowing > 0 ? expectedLeavingC(core) : null;
+  judgeEntering(core, now);
+  learn(learnerOf(core), core.beliefs, now);
+  for (const belief of core.beliefs) bound(belief, core.priors);
+  datePlateaus(core, nowMs);
+  core.folder.close();
+}
+
+function learnerOf(core: Core): Parameters<typeof learn>[0] {
+  return {
+    models: core.models,
+    senses: core.senses,
+    work: core.work,
+    health: core.health,
+    innovated: (point, { innovation, variance }) => note(core, point, innovation ** 2 / variance),
+  };
+}
+
+/** Running mean of normalised squared innovations, about two hours of steps long. */
+export function note(core: Core, point: PointName, nis: number): void {
+  const state = core.consistency.get(point) ?? { nis: 1, steps: 0 };
+  state.steps = Math.min(state.steps + 1, 10_000);
+  state.nis += Math.max(1 / 120, 1 / (state.steps + 1)) * (Math.min(nis, 25) - state.nis);
+  core.consistency.set(point, state);
+}
+
+function toldRunning(core: Core, nowMs: number, ordered: Command | null): Running {
+  const running = runningOf(core.config, core.folder, ordered, nowMs, core.flowChance);
+  if (running.flowFrom !== 'temperature') {
+    core.flowChance = 0.02 + 0.96 * running.flowing;
+    return running;
+  }
+  const readC = core.folder.fresh('leaving-water');
+  const best = bestOf(core.beliefs).mean;
+  const offset = best[X.leavingOffset];
+  const foreseen = (flowing: number): number => {
+    const x = Float64Array.from(best);
+    advance(core.models, x, driveOf(core, { ...running, flowing }, nowMs), { ...core.flows });
+    return x[X.out];
+  };
+  core.flowChance = flowProbability(
+    core.flowChance,
+    core.stepMs / 1000,
+    readC === null ? null : readC - offset,
+    foreseen(0),
+    foreseen(1),
+    0.12,
+  );
+  return { ...running, flowing: core.flowChance > 0.5 ? 1 : 0 };
+}
+
+function tellTime(core: Core, running: Running, dtS: number): void {
+  core.chargingS = running.charging > 0 ? core.chargingS + dtS : 0;
+  core.flowingS = running.flowing > 0 ? core.flowingS + dtS : 0;
+  core.restingS = running.flowing > 0 ? 0 : core.restingS + dtS;
+  if (running.flowLPerMin !== null && running.flowing > 0) {
+    if (core.meterRatio === null) trustMeter(core);
+    core.meterRatio = running.flowLPerMin / core.config.delivery.flowLPerMin;
+  }
+}
+
+/** A meter's error is small: from its first word the flow gain is the meter's own. */
+function trustMeter(core: Core): void {
+  core.priors.sd[X.flow] = METER_SD;
+  for (const belief of core.beliefs) restate(belief, X.flow, 0, METER_SD);
+}
+
+/** The points that stand for melt water entering and leaving, where an internal-melt tank names only its coolant. */
+function loopPoints(core: Core): { readonly entering: PointName; readonly leaving: PointName } {
+  const { folder, models } = core;
+  const coolantOnly = models.internal && !folder.everHeard('leaving-water') && folder.everHeard('loop-flow');
+  if (coolantOnly) return { entering: 'coolant-supply', leaving: 'coolant-return' };
+  return core.swap.swapped
+    ? { entering: 'leaving-water', leaving: 'entering-water' }
+    : { entering: 'entering-water', leaving: 'leaving-water' };
+}
+
+function driveOf(core: Core, running: Running, nowMs: number): Drive {
+  const { folder, config } = core;
+  const held = (point: PointName): number | null => folder.held(point, nowMs);
+  const roomC = held('room-temperature');
+  const outdoorC = held('outdoor-temperature') ?? config.chiller.ratedOutdoorC;
+  const aside = core.health.get('entering-water')?.setAside != null;
+  const enteringC = running.flowing > 0 && !aside ? held(loopPoints(core).entering) : null;
+  const air = roomC ?? ROOM_C;
+  const needsCoil = running.flowing > 0 && enteringC === null;
+  const leavingC = Math.max(0, bestOf(core.beliefs).mean[X.out]);
+  const flowLPerMin = running.flowLPerMin ?? config.delivery.flowLPerMin * (core.meterRatio ?? 1);
+  return {
+    dtS: core.stepMs / 1000,
+    charging: running.charging,
+    chillerW:
+      running.chillerW === null
+        ? null
+        : Math.min(running.chillerW, MOST_POWER_FACTOR * config.chiller.powerW),
+    condenserAirC: config.chiller.rejects === 'cooled-room' ? (roomC ?? outdoorC) : outdoorC,
+    surroundC: held('bank-surround') ?? surroundOf(core, roomC, outdoorC),
+    flowing: running.flowing,
+    flowKgPerS: flowLPerMin / 60,
+    enteringC,
+    roomC: air,
+    wet: needsCoil
+      ? coilWetFactor(air, held('room-humidity') ?? HUMIDITY_PCT, leavingC, config.site.elevationM)
+      : 1,
+    pumpW: PUMP_HEAT_PART * (held('pump-power') ?? config.delivery.pumpW),
+  };
+}
+
+function surroundOf(core: Core, roomC: number | null, outdoorC: number): number {
+  const { stands, surroundC } = core.config.bank;
+  if (stands === 'outdoors') return outdoorC;
+  return stands === 'indoors' && roomC !== null ? roomC : surroundC;
+}
+
+function heardOf(core: Core, drive: Drive, nowMs: number): Heard {
+  const { folder, swap } = core;
+  const points = loopPoints(core);
+  const leavingC = folder.fresh(points.leaving);
+  const enteringC = folder.fresh(points.entering);
+  if (leavingC !== null && enteringC !== null && loadWarms(core, drive)) {
+    if (watchSwap(swap, enteringC, leavingC, drive.dtS)) changeOver(core);
+  }
+  const waterC: Partial<Record<WetPoint, number>> = {};
+  if (leavingC !== null) waterC['leaving-water'] = leavingC;
+  for (const point of ['bank-top', 'bank-middle', 'bank-bottom'] as const) {
+    const value = folder.fresh(point);
+    if (value !== null) waterC[point] = value;
+  }
+  return {
+    waterC,
+    supplyC: points.entering === 'coolant-supply' ? null : folder.fresh('coolant-supply'),
+    returnC: points.entering === 'coolant-supply' ? null : folder.fresh('coolant-return'),
+    levelMm: folder.fresh('bank-level'),
+    anchors: anchorsOf(core, drive, nowMs),
+    flowErrorLog: null,
+  };
+}
+
+/** Whether the loop can only have been warmed by the load; a brine loop may also carry the machine's cold. */
+function loadWarms(core: Core, drive: Drive): boolean {
+  if (drive.flowing === 0) return false;
+  return !core.models.internal || (drive.charging === 0 && core.folder.everHeard('chiller-power'));
+}
+
+/** The two probes changed places: what their offsets were learned from was the other's water. */
+function changeOver(core: Core): void {
+  for (const belief of core.beliefs) {
+    for (const i of [X.leavingOffset, X.enteringOffset]) {
+      restate(belief, i, core.priors.mean[i], core.priors.sd[i]);
+    }
+    belief.cov[X.ice * STATES + X.ice] += 0.04 ** 2;
+  }
+}
+
+/** The first water heard places every belief's water there, where ice does not forbid it. */
+function start(core: Core, heard: Heard): void {
+  if (core.started) return;
+  const first = Object.values(heard.waterC)[0];
+  if (first === undefined) return;
+  core.started = true;
+  for (const belief of core.beliefs) {
+    const iced = belief.mean[X.ice] > 0.05;
+    restate(belief, X.out, first, iced ? 1 : 0.6);
+    restate(belief, X.bulk, iced ? Math.max(0, Math.min(first, 4)) : first, iced ? 1.5 : 1);
+  }
+}
+
+function move(core: Core, drive: Drive, running: Running, dtS: number): void {
+  const best = bestOf(core.beliefs);
+  const chillerLost = !running.chillerKnown && core.folder.everHeard('chiller-power');
+  const unknownW = chillerLost ? core.models.nominalIceMakingW : 0;
+  const flows = { ...core.flows };
+  for (const belief of core.beliefs) {
+    predict(belief, (x) => advance(core.models, x, drive, flows), ZERO, core.work);
+    // The last evaluation of a prediction is at the belief's centre: its flows are the belief's.
+    processNoise(core.models, flows, running.flowing, unknownW, dtS, core.noise);
+    for (let i = 0; i < STATES; i++) belief.cov[i * STATES + i] += core.noise[i];
+    if (belief === best) core.flows = { ...flows };
+  }
+}
+
+const ZERO = new Float64Array(STATES);
+
+function expectedLeavingC(core: Core): number {
+  const weights = weightsOf(core.beliefs);
+  const read = ({ mean }: Belief): number => mean[X.out] + mean[PROBE_OFFSET['leaving-water']];
+  return core.beliefs.reduce((sum, belief, i) => sum + weights[i] * read(belief), 0);
+}
+
+function housekeep(core: Core): void {
+  for (const belief of core.beliefs) {
+    forget(belief, core.priors, X.cop, core.sinceTidyS, core.keep);
+  }
+  core.beliefs = tidy(core.beliefs, X.ice, NEAR);
+  core.sinceTidyS = 0;
+}
+
+function datePlateaus(core: Core, nowMs: number): void {
+  for (const state of core.health.values()) {
+    if (state.plateauSteps * core.stepMs >= 1_200_000) state.plateauMs = nowMs;
+  }
+}
