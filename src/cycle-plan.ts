@@ -1,0 +1,118 @@
+/** What goes into a plan and what is kept of it. */
+import type { SiteConfig } from './config.ts';
+import type { Strategy } from './commands.ts';
+import { isHome, type Stages, type Moment, type Planned, type CycleState } from './cycle-values.ts';
+import type { IceEstimate } from './estimation/types.ts';
+import type { Forecast } from './forecasting/forecaster.ts';
+import type { PlanInputs } from './planning/build.ts';
+import { explain, explainSimple } from './planning/explain.ts';
+import type { Plan } from './planning/plan.ts';
+import type { PlanProblem } from './planning/problem.ts';
+import { simpleCommand } from './planning/strategies.ts';
+import { meanOverRooms, valueOf } from './points.ts';
+import type { PlanRecord } from './record.ts';
+import type { DemandState } from './tariff/demand.ts';
+import { islandSlots } from './tariff/island.ts';
+import type { PriceSlot } from './tariff/prices.ts';
+import { slotStart } from './time.ts';
+
+export function decided(
+  strategy: Strategy,
+  plan: Plan,
+  problem: PlanProblem,
+  config: SiteConfig,
+): Pick<Planned, 'strategy' | 'command' | 'reason'> {
+  if (strategy === 'planned') return { strategy, command: plan.command, reason: explain(plan, problem) };
+  const command = simpleCommand(strategy, problem, config.planning.timetable);
+  return { strategy, command, reason: explainSimple(strategy, command, problem) };
+}
+
+export function planInputs(
+  { config }: Stages,
+  state: CycleState,
+  { nowMs, live }: Moment,
+  ice: IceEstimate,
+  forecast: Forecast,
+  prices: readonly PriceSlot[],
+  demand: DemandState | null,
+): PlanInputs {
+  return {
+    nowMs,
+    iceOnHandKwh: ice.iceOnHandKwh,
+    lowKwh: ice.lowKwh,
+    highKwh: ice.highKwh,
+    scenarios: forecast.scenarios,
+    prices,
+    roomC: meanOverRooms(live, 'room-temperature'),
+    homeNow: isHome(config, live, nowMs),
+    chillerOn: state.dispatch.chillerOn,
+    chillerSinceMs: state.dispatch.chillerSinceMs,
+    surroundC: valueOf(live, 'bank-surround'),
+    houseW: valueOf(live, 'house-power'),
+    batteryPct: valueOf(live, 'battery-charge'),
+    demand,
+    learned: { heatLeakWPerK: ice.heatLeakWPerK },
+  };
+}
+
+export const iceOf = (ice: IceEstimate) => ({
+  iceKwh: ice.iceOnHandKwh,
+  iceLowKwh: ice.lowKwh,
+  iceHighKwh: ice.highKwh,
+});
+
+export const timetableInputs = (config: SiteConfig, nowMs: number, slots: number) => ({
+  nowMs,
+  slotMs: config.planning.slotMs,
+  slots,
+  zone: config.site.zone,
+  timetable: config.planning.timetable,
+});
+
+/** On an island an hour's price is what the plant's own kilowatt-hour takes from sun, battery or generator. */
+export function islandPrices(
+  config: SiteConfig,
+  { live }: Moment,
+  forecast: Forecast,
+  problem: PlanProblem,
+  slots: readonly PriceSlot[],
+): PriceSlot[] {
+  const { scenarios, slotMs } = forecast;
+  const mean = (t: number): number =>
+    scenarios.reduce((sum, s) => sum + s.weight * s.panelW[t], 0) / totalWeight(forecast);
+  const priced = islandSlots(config, {
+    startMs: slots[0].startMs,
+    slotMs,
+    panelW: Float64Array.from({ length: problem.slots }, (_, t) => mean(t)),
+    houseW: problem.power.houseW,
+    batteryPct: valueOf(live, 'battery-charge'),
+  });
+  return priced.map((slot, t) => ({
+    ...slots[t],
+    buy: slot.freeW > 0 ? 0 : (slot.buy ?? slots[t].buy),
+    period: slot.period,
+  }));
+}
+
+const totalWeight = ({ scenarios }: Forecast): number => scenarios.reduce((sum, s) => sum + s.weight, 0);
+
+/** The plan as it is stored and shown. */
+export function planRecordOf({ plan, forecast, strategy, reason, prices }: Planned): PlanRecord {
+  const byStart = new Map(prices.map((slot) => [slot.startMs, slot.buy]));
+  const steps = plan.steps.map((step) => ({
+    ...step,
+    priceMoneyPerKwh: byStart.get(slotStart(step.startMs, plan.slotMs)) ?? step.priceMoneyPerKwh,
+  }));
+  return {
+    madeMs: plan.madeMs,
+    outcome: plan.outcome,
+    strategy,
+    slotMs: plan.slotMs,
+    steps,
+    expectedCostMoney: plan.expectedCostMoney ?? 0,
+    worthOfIceMoneyPerKwh: plan.worthOfIceMoneyPerKwh ?? 0,
+    waitCostMoney: plan.waitCostMoney ?? 0,
+    reason,
+    forecastKnows: forecast.knows,
+  };
+}
