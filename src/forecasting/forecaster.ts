@@ -1,0 +1,191 @@
+/**
+ * The evening ahead as scenarios: weather from the site's own past and a hub, the learned cabin run through each, and
+ * the cooling that would hold the comfort limit. Everything that it says is drawn from a seed and the records alone.
+ */
+import type { SiteConfig } from '../config.ts';
+import { quantile } from '../numerics/quantile.ts';
+import { createRandom } from '../numerics/random.ts';
+import type { CycleRecord } from '../record.ts';
+import { HOUR_MS } from '../time.ts';
+import { BIN_DAYS } from './bins.ts';
+import { blendAt, blended, hubByLead, learnBlends, type Blend } from './blend.ts';
+import { HourBook, HourGatherer } from './hours.ts';
+import { issueOf, keepIssue, type Issue } from './issues.ts';
+import { knowsSentence } from './knows.ts';
+import { packMemory, unpackMemory } from './memory.ts';
+import { createOwnCabin, unexplainedAhead } from './own-cabin.ts';
+import { createOwnWeather, weatherSeries } from './own-weather.ts';
+import { runScenario, scenarioFrame, type LastSeen, type Scenario } from './scenarios.ts';
+import { eveningSlots, leadsFor, slotGrid } from './slots.ts';
+import { drawTrajectories, type Happened } from './trajectories.ts';
+
+export type { Scenario } from './scenarios.ts';
+
+export interface HubPoint {
+  readonly atMs: number;
+  readonly temperatureC: number;
+}
+
+export interface Forecast {
+  readonly madeMs: number;
+  /** Start of slot 0. */
+  readonly startMs: number;
+  readonly slotMs: number;
+  readonly scenarios: readonly Scenario[];
+  /** One sentence: what it rests on. */
+  readonly knows: string;
+  /** Load from now to the end of the night (in the last three hours before noon: of the next one): mean and 90th percentile. */
+  readonly eveningLoadKwh: number;
+  readonly eveningLoadHighKwh: number;
+}
+
+export interface Forecaster {
+  observe(record: CycleRecord): void;
+  forecast(nowMs: number, external: readonly HubPoint[] | null): Forecast;
+  /** JSON-able; a forecaster made with it goes on where this one stands, the hour in progress left out. */
+  memory(): unknown;
+}
+
+export function createForecaster(
+  config: SiteConfig,
+  options: { readonly seed: number; readonly memory?: unknown },
+): Forecaster {
+  const remembered = unpackMemory(options.memory);
+  const gatherer = new HourGatherer(config);
+  const book = new HourBook(BIN_DAYS * 24);
+  for (const line of remembered?.lines ?? []) book.add(line);
+  const weather = createOwnWeather(config);
+  const cabin = createOwnCabin(config, remembered?.cabin ?? null);
+  let issues: readonly Issue[] = remembered?.issues ?? [];
+  let seen: LastSeen = { outdoorC: null, roomC: null, atMs: 0 };
+
+  return {
+    observe(record) {
+      if (record.clock === 'doubtful') return;
+      const line = gatherer.add(record);
+      if (line) {
+        book.add(line);
+        cabin.update(book);
+      }
+      seen = {
+        atMs: record.atMs,
+        outdoorC: record.outdoorC,
+        roomC: record.roomC,
+      };
+    },
+    forecast(nowMs, external) {
+      const grid = slotGrid(config, nowMs);
+      const lastHour = Math.floor(nowMs / HOUR_MS) - 1;
+      const leads = leadsFor(grid, lastHour);
+      const ahead = weather.predict(book, lastHour, leads);
+      const hubC = external ? hubByLead(external, lastHour, leads) : null;
+      const past = createPast(config, book, issues, lastHour, leads, cabin.track(book).unexplainedW);
+      issues = keepIssue(issues, issueOf(lastHour, ahead, hubC));
+      const frame = scenarioFrame(config, book, cabin, grid, lastHour, seen, nowMs);
+      const random = createRandom(options.seed).fork(`forecast ${lastHour}`);
+      const errors = drawTrajectories(
+        past.comparable(hubC !== null),
+        past.happened,
+        lastHour,
+        leads,
+        config.planning.scenarios,
+        random,
+      );
+      const outdoorC = ahead.outdoorC.map((own, i) => blended(past.blends, i + 1, own, hubC?.[i] ?? null));
+      const scenarios = errors.map((error) =>
+        runScenario(frame, { ...ahead, outdoorC, disturbanceW: past.disturbanceW }, error, 1 / errors.length),
+      );
+      return {
+        madeMs: nowMs,
+        startMs: grid.startMs,
+        slotMs: grid.slotMs,
+        scenarios,
+        ...eveningLoad(scenarios, eveningSlots(config, grid, nowMs), grid.slotMs),
+        knows: knowsOf(
+          book.daysOfWeather,
+          hubC === null ? null : blendAt(past.blends, 24),
+          cabin.memory,
+          frame.hasPanels,
+        ),
+      };
+    },
+    memory: () => packMemory(book.all, issues, cabin.memory),
+  };
+}
+
+function eveningLoad(
+  scenarios: readonly Scenario[],
+  slots: number,
+  slotMs: number,
+): { eveningLoadKwh: number; eveningLoadHighKwh: number } {
+  const loads = scenarios.map(
+    (scenario) =>
+      (scenario.loadW.subarray(0, slots).reduce((sum, watts) => sum + watts, 0) * slotMs) / HOUR_MS / 1000,
+  );
+  const eveningLoadKwh = loads.reduce((sum, load) => sum + load, 0) / loads.length;
+  return { eveningLoadKwh, eveningLoadHighKwh: quantile(loads, 0.9) };
+}
+
+function knowsOf(
+  weatherDays: number,
+  hub: Blend | null,
+  cabin: { readonly learnedHours: number; readonly refusedDays: readonly number[] } | null,
+  hasPanels: boolean,
+): string {
+  return knowsSentence({
+    weatherDays,
+    hub: hub && { sdK: hub.hubSdK, issues: hub.issues, weight: hub.hubWeight },
+    cabinDays: (cabin?.learnedHours ?? 0) / 24,
+    refusedDays: cabin?.refusedDays.length ?? 0,
+    sun: hasPanels ? 'panels' : 'daily range',
+  });
+}
+
+interface Past {
+  readonly blends: readonly Blend[];
+  readonly happened: Happened;
+  readonly disturbanceW: Float64Array;
+  /** Issues whose errors are those of the forecast at hand: with or without a hub. */
+  comparable(withHub: boolean): readonly Issue[];
+}
+
+/** What came of the forecasts issued so far. */
+function createPast(
+  config: SiteConfig,
+  book: HourBook,
+  issues: readonly Issue[],
+  lastHour: number,
+  leads: number,
+  unexplainedW: readonly (number | null)[],
+): Past {
+  const series = weatherSeries(config, book, lastHour);
+  const first = series.outdoorC.firstHour;
+  const trackFirst = book.all[0]?.hour ?? lastHour;
+  const outdoorC = (hour: number): number | null => series.outdoorC.values[hour - first] ?? null;
+  const blends = learnBlends(issues, outdoorC, leads);
+  const expected = new Map<number, Float64Array>();
+  const expectedW = (hour: number): Float64Array => {
+    const known = expected.get(hour) ?? unexplainedAhead(unexplainedW, hour - trackFirst, leads);
+    expected.set(hour, known);
+    return known;
+  };
+  const less = (actual: number | null | undefined, forecast: number | undefined): number | null =>
+    actual == null || forecast === undefined ? null : actual - forecast;
+  return {
+    blends,
+    disturbanceW: expectedW(lastHour),
+    comparable: (withHub) => issues.filter((issue) => (issue.hubC !== null) === withHub),
+    happened: {
+      outdoor: (issue, lead) =>
+        less(
+          outdoorC(issue.hour + lead),
+          blended(blends, lead, issue.outdoorC[lead - 1], issue.hubC?.[lead - 1] ?? null),
+        ),
+      dew: (issue, lead) => less(series.dewC.values[issue.hour + lead - first], issue.dewC[lead - 1]),
+      clearness: (issue, lead) =>
+        less(series.clearness.values[issue.hour + lead - first], issue.clearness[lead - 1]),
+      disturbance: (issue, lead) =>
+        less(unexplainedW[issue.hour + lead - trackFirst], expectedW(issue.hour)[lead - 1]),
+    },
+  };
+}

@@ -1,0 +1,190 @@
+/**
+ * The forecaster's own history: one line for each whole hour (UTC), gathered from cycle records. Hours of the day are
+ * UTC hours throughout, so daylight-saving changes shift nothing.
+ */
+import type { SiteConfig } from '../config.ts';
+import { dewPointC, humidityRatio, standardPressurePa } from '../physics/moist-air.ts';
+import type { CycleRecord } from '../record.ts';
+import { clearSkyOf } from './sky.ts';
+import { HOUR_MS } from '../time.ts';
+
+/** Means over one hour; null where too little of it was heard. */
+export interface HourLine {
+  /** Whole hours since the epoch. */
+  readonly hour: number;
+  readonly outdoorC: number | null;
+  readonly dewC: number | null;
+  readonly roomC: number | null;
+  /** Room at the end of the hour. */
+  readonly roomEndC: number | null;
+  /** Humidity ratio of the room, kg/kg. */
+  readonly roomW: number | null;
+  /** null too while a full island battery may hold the panels back. */
+  readonly panelW: number | null;
+  /** Sunshine of a cloudless sky, on the level and on the plane of the panels. */
+  readonly clearWPerM2: number;
+  readonly clearOnPanelsWPerM2: number;
+  /** Sensible heat that machines brought into the room less what the coil took out of it. */
+  readonly machineHeatW: number | null;
+  /** Sensible and latent cooling that the coil gave. */
+  readonly sensibleW: number;
+  readonly latentW: number | null;
+  /** Part of the hour in which somebody was home. */
+  readonly home: number;
+}
+
+/** From this charge on an island's charger may hold the panels back. */
+const FULL_BATTERY_PCT = 97;
+/** The least part of an hour that must have been heard for its mean to stand. */
+const LEAST_HEARD = 0.5;
+
+class Mean {
+  private sum = 0;
+  private weightMs = 0;
+
+  add(value: number | null, spanMs: number): void {
+    if (value === null || !Number.isFinite(value)) return;
+    this.sum += value * spanMs;
+    this.weightMs += spanMs;
+  }
+
+  get value(): number | null {
+    return this.weightMs >= LEAST_HEARD * HOUR_MS ? this.sum / this.weightMs : null;
+  }
+
+  get valueOrZero(): number {
+    return this.weightMs > 0 ? this.sum / this.weightMs : 0;
+  }
+}
+
+/** Gathers records of one hour after another; an hour is finished when a record of a later one comes. */
+export class HourGatherer {
+  private readonly config: SiteConfig;
+  private readonly pressurePa: number;
+  private hour: number | null = null;
+  private means = newMeans();
+  private roomEndC: number | null = null;
+
+  constructor(config: SiteConfig) {
+    this.config = config;
+    this.pressurePa = standardPressurePa(config.site.elevationM);
+  }
+
+  /** Adds a record; gives the finished line when the record opens a new hour. Records out of order are passed over. */
+  add(record: CycleRecord): HourLine | null {
+    const hour = Math.floor((record.atMs - 1) / HOUR_MS);
+    if (this.hour !== null && hour < this.hour) return null;
+    const finished = this.hour !== null && hour > this.hour ? this.finish(this.hour) : null;
+    this.hour = hour;
+    this.gather(record, Math.min(record.spanMs, HOUR_MS));
+    return finished;
+  }
+
+  private gather(record: CycleRecord, spanMs: number): void {
+    const { means } = this;
+    means.outdoor.add(record.outdoorC, spanMs);
+    means.dew.add(this.dewOf(record.outdoorC, record.outdoorHumidityPct), spanMs);
+    means.room.add(record.roomC, spanMs);
+    const heldBack = this.config.power.island !== null && (record.batteryPct ?? 0) >= FULL_BATTERY_PCT;
+    means.panel.add(heldBack ? null : record.panelPowerW, spanMs);
+    means.home.add(record.home ? 1 : 0, spanMs);
+    if (record.roomC !== null) this.roomEndC = record.roomC;
+    if (record.roomC !== null && record.roomHumidityPct !== null) {
+      means.roomW.add(humidityRatio(record.roomC, record.roomHumidityPct, this.pressurePa), spanMs);
+    }
+    const sensibleW = sensibleOf(record);
+    means.latent.add(record.latentW, spanMs);
+    means.sensible.add(sensibleW, spanMs);
+    means.machine.add(this.machineHeatOf(record, sensibleW), spanMs);
+  }
+
+  private dewOf(outdoorC: number | null, humidityPct: number | null): number | null {
+    if (outdoorC === null || humidityPct === null || !(humidityPct > 1)) return null;
+    return dewPointC(outdoorC, Math.min(100, humidityPct), this.pressurePa);
+  }
+
+  /** Fans always warm the room; the condenser does where it stands in it. */
+  private machineHeatOf(record: CycleRecord, sensibleW: number): number {
+    const { chiller, delivery } = this.config;
+    const fanW = record.fanPowerW ?? (sensibleW > 0 ? delivery.fanW : 0);
+    const rejected = chiller.rejects === 'cooled-room' ? record.chargingW + (record.chillerPowerW ?? 0) : 0;
+    return fanW + rejected - sensibleW;
+  }
+
+  private finish(hour: number): HourLine {
+    const { means } = this;
+    const line = {
+      hour,
+      outdoorC: means.outdoor.value,
+      dewC: means.dew.value,
+      roomC: means.room.value,
+      roomEndC: means.room.value === null ? null : this.roomEndC,
+      roomW: means.roomW.value,
+      panelW: means.panel.value,
+      ...clearSkyOf(this.config, hour),
+      machineHeatW: means.machine.value,
+      sensibleW: means.sensible.valueOrZero,
+      latentW: means.latent.value,
+      home: means.home.valueOrZero,
+    };
+    this.means = newMeans();
+    return line;
+  }
+}
+
+function newMeans() {
+  return {
+    outdoor: new Mean(),
+    dew: new Mean(),
+    room: new Mean(),
+    roomW: new Mean(),
+    panel: new Mean(),
+    machine: new Mean(),
+    sensible: new Mean(),
+    latent: new Mean(),
+    home: new Mean(),
+  };
+}
+
+/** Where the delivery is not known, the heat that the loop brought into the bank stands for it. */
+function sensibleOf(record: CycleRecord): number {
+  const totalW = record.deliveredW ?? Math.max(0, record.dischargingW);
+  return Math.max(0, totalW - Math.max(0, record.latentW ?? 0));
+}
+
+/** The last lines by hour, at most `mostHours` of them. */
+export class HourBook {
+  private readonly lines: HourLine[] = [];
+  private readonly mostHours: number;
+
+  constructor(mostHours: number) {
+    this.mostHours = mostHours;
+  }
+
+  add(line: HourLine): void {
+    this.lines.push(line);
+    while (this.lines.length > 0 && this.lines[0].hour <= line.hour - this.mostHours) this.lines.shift();
+  }
+
+  get last(): HourLine | null {
+    return this.lines.at(-1) ?? null;
+  }
+
+  get all(): readonly HourLine[] {
+    return this.lines;
+  }
+
+  /** One value an hour over [fromHour, toHour], null where there is none. */
+  series(fromHour: number, toHour: number, pick: (line: HourLine) => number | null): (number | null)[] {
+    const values: (number | null)[] = Array.from({ length: Math.max(0, toHour - fromHour + 1) }, () => null);
+    for (const line of this.lines) {
+      if (line.hour >= fromHour && line.hour <= toHour) values[line.hour - fromHour] = pick(line);
+    }
+    return values;
+  }
+
+  /** Whole days of outdoor temperature that are known. */
+  get daysOfWeather(): number {
+    return this.lines.filter((line) => line.outdoorC !== null).length / 24;
+  }
+}

@@ -1,0 +1,39 @@
+/**
+ * Past forecasts as they were issued, kept to learn how wrong they turn out: the hub's bias and spread by lead, how to
+ * blend it with the own one, and whole error trajectories from which scenarios are drawn.
+ */
+import type { HoursAhead } from './own-weather.ts';
+
+/** Hours between issues that are kept, and how long they are. */
+export const ISSUE_EVERY_HOURS = 3;
+export const ISSUE_DAYS = 45;
+
+export interface Issue {
+  /** Last whole hour known at issue; lead 1 is the hour after it. */
+  readonly hour: number;
+  readonly outdoorC: readonly number[];
+  readonly dewC: readonly number[];
+  readonly clearness: readonly number[];
+  /** The hub's temperatures for the same leads; null where it gave none. */
+  readonly hubC: readonly (number | null)[] | null;
+}
+
+const round = (value: number, digits: number): number => Number(value.toFixed(digits));
+
+export function issueOf(hour: number, ahead: HoursAhead, hubC: readonly (number | null)[] | null): Issue {
+  const rounded = (values: Float64Array, digits: number): number[] =>
+    Array.from(values, (value) => round(value, digits));
+  return {
+    hour,
+    outdoorC: rounded(ahead.outdoorC, 2),
+    dewC: rounded(ahead.dewC, 1),
+    clearness: rounded(ahead.clearness, 3),
+    hubC: hubC?.map((value) => (value === null ? null : round(value, 2))) ?? null,
+  };
+}
+
+/** Drops issues that are too old; keeps one for each step of `ISSUE_EVERY_HOURS`. */
+export function keepIssue(issues: readonly Issue[], issue: Issue): Issue[] {
+  if (issue.hour % ISSUE_EVERY_HOURS !== 0 || issues.at(-1)?.hour === issue.hour) return [...issues];
+  return [...issues.filter((old) => old.hour > issue.hour - ISSUE_DAYS * 24), issue];
+}

@@ -1,0 +1,160 @@
+/** One scenario: the weather with one error trajectory on it, the cabin run through it, the panels under it. */
+import type { SiteConfig } from '../config.ts';
+import { saturationHumidityRatio, standardPressurePa } from '../physics/moist-air.ts';
+import { HOUR_MS } from '../time.ts';
+import { hourOfDay } from './bins.ts';
+import { restingFabricC } from './cabin.ts';
+import { coilOf } from './coil.ts';
+import { dryAirOf } from './dry-air.ts';
+import type { HourBook, HourLine } from './hours.ts';
+import { holdLimit, warmKhPerKwh, type LoadFrame, type RoomState } from './load.ts';
+import type { OwnCabin } from './own-cabin.ts';
+import { gainAt } from './own-cabin.ts';
+import type { HoursAhead } from './own-weather.ts';
+import { clearSkyOf, MOST_CLEARNESS, panelScale } from './sky.ts';
+import { onSlots, slotLimits, slotMiddleMs, type SlotGrid } from './slots.ts';
+import type { Trajectory } from './trajectories.ts';
+import { latentScale } from './latent.ts';
+
+/** One value a slot, from the slot that holds now. */
+export interface Scenario {
+  readonly weight: number;
+  readonly outdoorC: Float64Array;
+  /** On the level. */
+  readonly sunWPerM2: Float64Array;
+  /** Cooling to be delivered to hold the comfort limit, sensible, latent and the heat of the fans. */
+  readonly loadW: Float64Array;
+  readonly latentW: Float64Array;
+  /** 0 throughout without panels. */
+  readonly panelW: Float64Array;
+  /** Warm degree-hours for each kWh of load not delivered. */
+  readonly warmKhPerKwh: number;
+}
+
+export interface LastSeen {
+  readonly atMs: number;
+  readonly outdoorC: number | null;
+  readonly roomC: number | null;
+}
+
+/** What all scenarios of a forecast share. */
+export interface ScenarioFrame {
+  readonly grid: SlotGrid;
+  readonly lastHour: number;
+  readonly nowMs: number;
+  /** Outdoor reading now; null when it is stale. */
+  readonly nowC: number | null;
+  readonly last: HourLine | null;
+  readonly load: LoadFrame;
+  readonly start: RoomState;
+  readonly pressurePa: number;
+  readonly clearWPerM2: Float64Array;
+  /** Panel power under a cloudless sky. */
+  readonly clearPanelW: Float64Array;
+  readonly hasPanels: boolean;
+}
+
+export interface Expected extends HoursAhead {
+  readonly disturbanceW: Float64Array;
+}
+
+/** A reading older than this says nothing of now. */
+const FRESH_MS = HOUR_MS;
+/** Fading of the difference between the reading now and the hourly forecast, h. */
+const NOW_FADE_HOURS = 3;
+/** Where neither room nor outdoor humidity was ever heard: a usual indoor one, kg/kg. */
+const USUAL_RATIO = 0.0095;
+
+export function scenarioFrame(
+  config: SiteConfig,
+  book: HourBook,
+  cabin: OwnCabin,
+  grid: SlotGrid,
+  lastHour: number,
+  seen: LastSeen,
+  nowMs: number,
+): ScenarioFrame {
+  const fresh = nowMs - seen.atMs <= FRESH_MS;
+  const last = book.last && lastHour - book.last.hour < 3 ? book.last : null;
+  const p = cabin.parameters;
+  const limitC = slotLimits(config, grid);
+  const airC = (fresh ? seen.roomC : null) ?? last?.roomEndC ?? config.comfort.limitC;
+  const fabricC =
+    (last ? cabin.track(book).fabricC : null) ?? restingFabricC(p, airC, last?.outdoorC ?? airC, 0);
+  const coil = coilOf(config);
+  const scale = panelScale(config, book.all);
+  const sky = Array.from({ length: grid.count }, (_, i) =>
+    clearSkyOf(config, slotMiddleMs(grid, i) / HOUR_MS - 0.5),
+  );
+  return {
+    grid,
+    lastHour,
+    nowMs,
+    nowC: fresh ? seen.outdoorC : null,
+    last,
+    start: { airC, fabricC, ratio: last?.roomW ?? USUAL_RATIO },
+    pressurePa: standardPressurePa(config.site.elevationM),
+    clearWPerM2: Float64Array.from(sky, (at) => at.clearWPerM2),
+    clearPanelW: Float64Array.from(sky, (at, i) =>
+      scale ? at.clearOnPanelsWPerM2 * scale[hourOfDay(Math.floor(slotMiddleMs(grid, i) / HOUR_MS))] : 0,
+    ),
+    hasPanels: scale !== null,
+    load: {
+      slotMs: grid.slotMs,
+      cabin: p,
+      coil,
+      dryAir: dryAirOf(config),
+      limitC,
+      gainsW: Float64Array.from({ length: grid.count }, (_, i) => gainAt(p, slotMiddleMs(grid, i) / HOUR_MS)),
+      floorM2: config.cabin.floorM2,
+      people: config.cabin.occupants,
+      latentScale: latentScale(coil, book.all),
+    },
+  };
+}
+
+export function runScenario(
+  frame: ScenarioFrame,
+  expected: Expected,
+  error: Trajectory,
+  weight: number,
+): Scenario {
+  const { grid, lastHour, last } = frame;
+  const sum = (values: Float64Array, errors: Float64Array): Float64Array =>
+    values.map((value, i) => value + errors[i]);
+  const slots = (byLead: Float64Array, lastValue: number | null | undefined): Float64Array =>
+    onSlots(grid, lastHour, lastValue ?? byLead[0], byLead);
+  const outdoorC = nowcast(frame, slots(sum(expected.outdoorC, error.outdoorC), last?.outdoorC));
+  const dewC = slots(sum(expected.dewC, error.dewC), last?.dewC);
+  const clearness = slots(sum(expected.clearness, error.clearness), null).map((value) =>
+    Math.min(MOST_CLEARNESS, Math.max(0.03, value)),
+  );
+  const sunWPerM2 = frame.clearWPerM2.map((clear, i) => clear * clearness[i]);
+  const weather = {
+    outdoorC,
+    sunWPerM2,
+    outdoorRatio: dewC.map((dew, i) => saturationHumidityRatio(Math.min(dew, outdoorC[i]), frame.pressurePa)),
+    disturbanceW: slots(sum(expected.disturbanceW, error.disturbanceW), null),
+  };
+  const load = holdLimit(frame.load, frame.start, weather);
+  return {
+    weight,
+    outdoorC,
+    sunWPerM2,
+    loadW: load.loadW,
+    latentW: load.latentW,
+    panelW: frame.clearPanelW.map((clear, i) => clear * clearness[i]),
+    warmKhPerKwh: warmKhPerKwh(frame.load, frame.start, weather, load),
+  };
+}
+
+/** Bends the first hours to the reading of now. */
+function nowcast(frame: ScenarioFrame, outdoorC: Float64Array): Float64Array {
+  const { nowC, nowMs, grid } = frame;
+  if (nowC === null) return outdoorC;
+  const offK = nowC - outdoorC[0];
+  return outdoorC.map((value, i) => {
+    const hours = Math.max(0, slotMiddleMs(grid, i) - nowMs) / HOUR_MS;
+    return value + offK * Math.exp(-hours / NOW_FADE_HOURS);
+  });
+}

@@ -1,0 +1,110 @@
+/**
+ * Error trajectories: how the forecasts issued at this time of day went wrong, hour by hour, all kinds together. A
+ * scenario takes a whole one, so it hangs together in time and between temperature, sun and cabin. Until enough are
+ * known the rest are first-order autoregressive draws.
+ */
+import type { Random } from '../numerics/random.ts';
+import { ISSUE_EVERY_HOURS, type Issue } from './issues.ts';
+
+/** Errors (what came less what was forecast) by lead from 1. */
+export interface Trajectory {
+  readonly outdoorC: Float64Array;
+  readonly dewC: Float64Array;
+  readonly clearness: Float64Array;
+  readonly disturbanceW: Float64Array;
+}
+
+export interface Happened {
+  /** Error of each kind for an issue and lead; null where it is not known what came. */
+  outdoor(issue: Issue, lead: number): number | null;
+  dew(issue: Issue, lead: number): number | null;
+  clearness(issue: Issue, lead: number): number | null;
+  disturbance(issue: Issue, lead: number): number | null;
+}
+
+/** Spread far ahead and hourly persistence of draws for a site without history. */
+const DRAWN = {
+  outdoorC: { sd: 3, keep: 0.94 },
+  dewC: { sd: 2.5, keep: 0.95 },
+  clearness: { sd: 0.2, keep: 0.9 },
+  disturbanceW: { sd: 90, keep: 0.85 },
+} as const;
+/** Share of an issue's hours that must be known. */
+const LEAST_KNOWN = 0.8;
+/** Trajectories are sorted by their mean error over a day and picked evenly: fewer of them tell as much. */
+const SORT_HOURS = 24;
+
+export function drawTrajectories(
+  issues: readonly Issue[],
+  happened: Happened,
+  nowHour: number,
+  leads: number,
+  count: number,
+  random: Random,
+): Trajectory[] {
+  const past = issues
+    .filter((issue) => sameTimeOfDay(issue.hour, nowHour) && issue.hour + leads <= nowHour)
+    .map((issue) => trajectoryOf(issue, happened, leads))
+    .filter((trajectory) => trajectory !== null)
+    .toSorted((a, b) => meanOf(a.outdoorC) - meanOf(b.outdoorC));
+  const fromPast = past.length >= count ? count : past.length;
+  const picked = Array.from(
+    { length: fromPast },
+    (_, i) => past[Math.floor(((i + 0.5) * past.length) / fromPast)],
+  );
+  const drawn = Array.from({ length: count - fromPast }, () => draw(leads, random));
+  return [...picked, ...drawn];
+}
+
+function sameTimeOfDay(hour: number, nowHour: number): boolean {
+  const apart = (((nowHour - hour) % 24) + 24) % 24;
+  return apart < ISSUE_EVERY_HOURS;
+}
+
+const meanOf = (values: Float64Array): number =>
+  values.subarray(0, SORT_HOURS).reduce((sum, value) => sum + value, 0);
+
+function trajectoryOf(issue: Issue, happened: Happened, leads: number): Trajectory | null {
+  const outdoorC = errors(leads, (lead) => happened.outdoor(issue, lead));
+  if (!outdoorC) return null;
+  const orZero = (error: (issue: Issue, lead: number) => number | null): Float64Array =>
+    errors(leads, (lead) => error(issue, lead), 0) ?? new Float64Array(leads);
+  return {
+    outdoorC,
+    dewC: orZero(happened.dew),
+    clearness: orZero(happened.clearness),
+    disturbanceW: orZero(happened.disturbance),
+  };
+}
+
+/** Gaps keep the error before them; null when too much is missing. */
+function errors(
+  leads: number,
+  at: (lead: number) => number | null,
+  least = LEAST_KNOWN,
+): Float64Array | null {
+  const values = new Float64Array(leads);
+  let known = 0;
+  let last = 0;
+  for (let lead = 1; lead <= leads; lead += 1) {
+    const error = at(lead);
+    if (error !== null) known += 1;
+    last = error ?? last;
+    values[lead - 1] = last;
+  }
+  return known >= least * leads ? values : null;
+}
+
+function draw(leads: number, random: Random): Trajectory {
+  const series = ({ sd, keep }: { sd: number; keep: number }): Float64Array => {
+    let value = 0;
+    const fresh = sd * Math.sqrt(1 - keep * keep);
+    return Float64Array.from({ length: leads }, () => (value = keep * value + fresh * random.normal()));
+  };
+  return {
+    outdoorC: series(DRAWN.outdoorC),
+    dewC: series(DRAWN.dewC),
+    clearness: series(DRAWN.clearness),
+    disturbanceW: series(DRAWN.disturbanceW),
+  };
+}
