@@ -65,12 +65,25 @@ const V_BETA: readonly Term[] = [
 const C1 = -2.452093414e2;
 const C3 = -8.983025854;
 
-const powers = (terms: readonly Term[], x: number): number =>
-  terms.reduce((sum, [a, n]) => sum + a * x ** n, 0);
-const slopes = (terms: readonly Term[], x: number): number =>
-  terms.reduce((sum, [a, n]) => sum + n * a * x ** (n + 1), 0);
-const bends = (terms: readonly Term[], x: number): number =>
-  terms.reduce((sum, [a, n]) => sum + n * (n + 1) * a * x ** (n + 2), 0);
+/** Coefficients by rising power of Σ weight(n) a x^(n + shift), so that Horner's rule can run over them. */
+function byPower(terms: readonly Term[], weight: (n: number) => number, shift: number): readonly number[] {
+  const degree = Math.max(...terms.map(([, n]) => n)) + shift;
+  const dense = Array.from({ length: degree + 1 }, () => 0);
+  for (const [a, n] of terms) dense[n + shift] = a * weight(n);
+  return dense;
+}
+
+const horner = (coefficients: readonly number[], x: number): number =>
+  coefficients.reduceRight((sum, coefficient) => sum * x + coefficient, 0);
+
+const itself = (terms: readonly Term[]): readonly number[] => byPower(terms, () => 1, 0);
+const slope = (terms: readonly Term[]): readonly number[] => byPower(terms, (n) => n, 1);
+const bend = (terms: readonly Term[]): readonly number[] => byPower(terms, (n) => n * (n + 1), 2);
+
+const GIBBS = { alpha: itself(G_ALPHA), beta: itself(G_BETA) };
+const ENTROPY = { alpha: slope(G_ALPHA), beta: slope(G_BETA) };
+const HEAT_CAPACITY = { alpha: bend(G_ALPHA), beta: bend(G_BETA) };
+const VOLUME = { alpha: itself(V_ALPHA), beta: itself(V_BETA) };
 
 /** The reduced temperatures of SR6-08: tau = T/10 K, alpha = 10 K/(593 K - T), beta = 10 K/(T - 232 K). */
 function reduced(waterC: number): { tau: number; alpha: number; beta: number } {
@@ -86,20 +99,22 @@ function reduced(waterC: number): { tau: number; alpha: number; beta: number } {
 /** Specific enthalpy of liquid water, J/kg: SR6-08 eq. 1 and 4, h = g + T s. Throws outside -20 to 110 °C. */
 export function waterEnthalpyJPerKg(waterC: number): number {
   const { tau, alpha, beta } = reduced(waterC);
-  const gibbs = C1 + powers(G_ALPHA, alpha) + powers(G_BETA, beta);
-  const entropy = C3 + slopes(G_ALPHA, alpha) - slopes(G_BETA, beta);
+  const gibbs = C1 + horner(GIBBS.alpha, alpha) + horner(GIBBS.beta, beta);
+  const entropy = C3 + horner(ENTROPY.alpha, alpha) - horner(ENTROPY.beta, beta);
   return GAS_CONSTANT_J_PER_KG_K * 10 * (gibbs - tau * entropy);
 }
 
 /** Isobaric heat capacity of liquid water, J/(kg K): SR6-08 eq. 5. Throws outside -20 to 110 °C. */
 export function waterHeatCapacityJPerKgK(waterC: number): number {
   const { tau, alpha, beta } = reduced(waterC);
-  return -GAS_CONSTANT_J_PER_KG_K * (C3 + tau * (bends(G_ALPHA, alpha) + bends(G_BETA, beta)));
+  const bends = horner(HEAT_CAPACITY.alpha, alpha) + horner(HEAT_CAPACITY.beta, beta);
+  return -GAS_CONSTANT_J_PER_KG_K * (C3 + tau * bends);
 }
 
 /** Density of liquid water, kg/m³, greatest at 4 °C: SR6-08 eq. 2. Throws outside -20 to 110 °C. */
 export function waterDensityKgPerM3(waterC: number): number {
   const { alpha, beta } = reduced(waterC);
-  const volume = ((GAS_CONSTANT_J_PER_KG_K * 10) / 1e5) * (powers(V_ALPHA, alpha) + powers(V_BETA, beta));
+  const volume =
+    ((GAS_CONSTANT_J_PER_KG_K * 10) / 1e5) * (horner(VOLUME.alpha, alpha) + horner(VOLUME.beta, beta));
   return 1 / volume;
 }

@@ -42,7 +42,7 @@ describe('a compressor map', () => {
         expect(found?.cop).toBeGreaterThan(0);
         expect(found?.cop).toBeLessThan(carnotCop(s, d) ?? 0);
         const hotter = operateCompressor(MAP, s, Math.min(d + 2, MAP.dischargeRangeC[1]));
-        expect(hotter?.coolingW).toBeLessThanOrEqual(found?.coolingW ?? 0);
+        expect(hotter?.coolingW).toBeLessThan((found?.coolingW ?? 0) + 1e-6);
       }),
     );
   });

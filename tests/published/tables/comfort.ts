@@ -43,6 +43,9 @@ const heatIndexF = (f: number, humidity: number): number | null => {
   return index === null ? null : index * 1.8 + 32;
 };
 
+// The (25 °C, 50 %) → 25.9 °C of pythermalcomfort is left out: it runs the regression below 80 °F, where the Weather
+// Service's own procedure keeps its simple form (24.9 °C).
+
 /** Wall chart of the National Weather Service, °F from 80 upwards in steps of 2, as remembered. */
 const WALL_CHART: Readonly<Record<number, readonly number[]>> = {
   40: [80, 81, 83, 85, 88, 91, 94, 97, 101, 105, 109, 114, 119, 124, 130, 136],
