@@ -2,8 +2,8 @@
 const MAX_TERMS = 200;
 
 /**
- * Error function: the all-positive series of Abramowitz & Stegun 1964, eq. 7.1.6, 2/√π e^(-x²) Σ 2^n x^(2n+1)/(2n+1)!!.
- * Error about 1e-15.
+ * Error function: the all-positive series of Abramowitz & Stegun 1964, eq. 7.1.6, 2/√π e^(-x²) Σ 2^n
+ * x^(2n+1)/(2n+1)!!. Error about 1e-15.
  */
 export function erf(x: number): number {
   if (Math.abs(x) > 6) return Math.sign(x);

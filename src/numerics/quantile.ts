@@ -4,8 +4,8 @@ function checkProbability(p: number): void {
 
 /**
  * Quantile of a sample by linear interpolation of order statistics: Hyndman & Fan 1996, "Sample quantiles in
- * statistical packages", The American Statistician 50(4), definition 7. The sample may come in any order and is not
- * changed. Throws `RangeError` when it is empty, holds NaN, or p is not a probability.
+ * statistical packages", The American Statistician 50(4), definition 7. The sample may come in any order and
+ * is not changed. Throws `RangeError` when it is empty, holds NaN, or p is not a probability.
  */
 export function quantile(values: ArrayLike<number>, p: number): number {
   checkProbability(p);
@@ -26,9 +26,10 @@ function between(low: number, high: number, fraction: number): number {
 }
 
 /**
- * Quantile of a weighted sample: each value stands at the middle of its own weight and the quantile is linear between
- * neighbours; with equal weights this is definition 5 of Hyndman & Fan 1996 (Hazen 1914). Values of no weight count
- * for nothing. Throws `RangeError` when no weight is above zero, on a negative weight, NaN, or unequal lengths.
+ * Quantile of a weighted sample: each value stands at the middle of its own weight and the quantile is linear
+ * between neighbours; with equal weights this is definition 5 of Hyndman & Fan 1996 (Hazen 1914). Values of
+ * no weight count for nothing. Throws `RangeError` when no weight is above zero, on a negative weight, NaN,
+ * or unequal lengths.
  */
 export function weightedQuantile(values: ArrayLike<number>, weights: ArrayLike<number>, p: number): number {
   checkProbability(p);

@@ -1,7 +1,7 @@
 /**
- * Seeded random numbers: xoshiro128** of Blackman & Vigna 2021, "Scrambled linear pseudorandom number generators",
- * ACM Transactions on Mathematical Software 47(4). Its state of four words is filled by hashing, so near seeds give
- * unlike streams.
+ * Seeded random numbers: xoshiro128** of Blackman & Vigna 2021, "Scrambled linear pseudorandom number
+ * generators", ACM Transactions on Mathematical Software 47(4). Its state of four words is filled by hashing,
+ * so near seeds give unlike streams.
  */
 export interface Random {
   /** Uniform in [0, 1), in steps of 2^-32. */
@@ -9,8 +9,8 @@ export interface Random {
   /** Standard normal. */
   readonly normal: () => number;
   /**
-   * A stream of its own, fixed by this stream's seed and the label alone: drawing more numbers here never shifts
-   * the numbers of a fork.
+   * A stream of its own, fixed by this stream's seed and the label alone: drawing more numbers here never
+   * shifts the numbers of a fork.
    */
   readonly fork: (label: string) => Random;
 }
@@ -35,7 +35,10 @@ export function xoshiro128StarStar(state: Words): () => number {
   };
 }
 
-/** The 32-bit finaliser of MurmurHash3 (A. Appleby, public domain): every input bit flips half of the output bits. */
+/**
+ * The 32-bit finaliser of MurmurHash3 (A. Appleby, public domain): every input bit flips half of the output
+ * bits.
+ */
 function avalanche(word: number): number {
   let h = word;
   h = Math.imul(h ^ (h >>> 16), 0x85ebca6b);
@@ -57,7 +60,9 @@ function seedWords(label: string, root: Words): Words {
   return [a, b, c, (d | 1) >>> 0];
 }
 
-/** Marsaglia & Bray 1964, polar method: two normals from one accepted pair, the second kept for the next call. */
+/**
+ * Marsaglia & Bray 1964, polar method: two normals from one accepted pair, the second kept for the next call.
+ */
 function polarNormal(next: () => number): () => number {
   let spare: number | null = null;
   return () => {

@@ -5,9 +5,9 @@ export interface RootOptions {
 }
 
 /**
- * A zero of `f` between `low` and `high`, by Chandrupatla 1997, "A new hybrid quadratic/bisection algorithm for
- * finding the zero of a nonlinear function without using derivatives", Advances in Engineering Software 28(3).
- * null when the ends do not bracket a zero, when `f` gives NaN, or when the iterations run out.
+ * A zero of `f` between `low` and `high`, by Chandrupatla 1997, "A new hybrid quadratic/bisection algorithm
+ * for finding the zero of a nonlinear function without using derivatives", Advances in Engineering Software
+ * 28(3). null when the ends do not bracket a zero, when `f` gives NaN, or when the iterations run out.
  */
 export function findRoot(
   f: (x: number) => number,
@@ -55,7 +55,10 @@ interface Bracket {
   readonly fc: number;
 }
 
-/** Where inverse quadratic interpolation is safe (Chandrupatla 1997, eq. 7) its fraction of the bracket, else a half. */
+/**
+ * Where inverse quadratic interpolation is safe (Chandrupatla 1997, eq. 7) its fraction of the bracket, else
+ * a half.
+ */
 function quadraticFraction({ a, b, c, fa, fb, fc }: Bracket): number {
   const xi = (a - b) / (c - b);
   const phi = (fa - fb) / (fc - fb);

@@ -31,9 +31,9 @@ export function comfortVapourPressurePa(airC: number, relativeHumidityPct: numbe
 }
 
 /**
- * PMV and PPD of ISO 7730:2005, eq. 1 to 5, solved as its annex D solves them; no external work. The standard holds
- * them for 10–30 °C air, 0.8–4 met, 0–2 clo and air below 1 m/s. null when an input is not a number of that kind or
- * the clothing surface temperature does not settle.
+ * PMV and PPD of ISO 7730:2005, eq. 1 to 5, solved as its annex D solves them; no external work. The standard
+ * holds them for 10–30 °C air, 0.8–4 met, 0–2 clo and air below 1 m/s. null when an input is not a number of
+ * that kind or the clothing surface temperature does not settle.
  */
 export function pmvPpd(state: ComfortState): ComfortVote | null {
   const insulation = CLO_M2K_PER_W * state.clothingClo;
@@ -93,8 +93,8 @@ function heatLoss(state: ComfortState, metabolism: number, surface: ClothingSurf
 }
 
 /**
- * Heat index, °C, of shade and light wind: US National Weather Service, Weather Prediction Center, "The Heat Index
- * Equation" (Rothfusz 1990 regression in °F with its two adjustments and the simple form below 80 °F).
+ * Heat index, °C, of shade and light wind: US National Weather Service, Weather Prediction Center, "The Heat
+ * Index Equation" (Rothfusz 1990 regression in °F with its two adjustments and the simple form below 80 °F).
  * null when the temperature is no number or the humidity is not within 0–100 %.
  */
 export function heatIndexC(airC: number, relativeHumidityPct: number): number | null {

@@ -1,6 +1,6 @@
 /**
- * How ice grows: the exact solutions of Neumann for a flat front, the quasi-steady one of Stefan, and quasi-steady
- * growth on a cold tube. Lengths in m, times in s.
+ * How ice grows: the exact solutions of Neumann for a flat front, the quasi-steady one of Stefan, and
+ * quasi-steady growth on a cold tube. Lengths in m, times in s.
  */
 import { erf } from '../numerics/erf.ts';
 import { findRoot } from '../numerics/root.ts';
@@ -38,8 +38,8 @@ export interface TwoPhaseCase {
 }
 
 /**
- * Growth constant λ when the water is warmer than the ice point (Neumann; Carslaw & Jaeger 1959, 11.2 eq. 11), change of
- * volume neglected. null when no front can grow.
+ * Growth constant λ when the water is warmer than the ice point (Neumann; Carslaw & Jaeger 1959, 11.2 eq.
+ * 11), change of volume neglected. null when no front can grow.
  */
 export function twoPhaseLambda(c: TwoPhaseCase): number | null {
   const iceAlpha = diffusivity(c.ice);
@@ -65,8 +65,8 @@ export function frontDepthM(lambda: number, diffusivityM2PerS: number, timeS: nu
 }
 
 /**
- * Ice thickness, m, on a flat face held `subcoolingK` below the ice point (Stefan 1891): the heat capacity of the ice
- * is neglected, which over-states the thickness by about Ste/6 (2 % at 20 K).
+ * Ice thickness, m, on a flat face held `subcoolingK` below the ice point (Stefan 1891): the heat capacity of
+ * the ice is neglected, which over-states the thickness by about Ste/6 (2 % at 20 K).
  */
 export function stefanThicknessM(subcoolingK: number, timeS: number): number {
   return Math.sqrt((2 * ICE_CONDUCTIVITY * subcoolingK * timeS) / (ICE_DENSITY * FUSION_J_PER_KG));
@@ -74,7 +74,8 @@ export function stefanThicknessM(subcoolingK: number, timeS: number): number {
 
 /**
  * Time, s, to grow ice from the wall of a tube to a radius, its wall held `subcoolingK` below the ice point:
- * quasi-steady conduction through a cylinder, t = ρL/(4kΔT) [2r² ln(r/a) - r² + a²] (textbook result, form from memory).
+ * quasi-steady conduction through a cylinder, t = ρL/(4kΔT) [2r² ln(r/a) - r² + a²] (textbook result, form
+ * from memory).
  */
 export function timeOnTubeS(tubeRadiusM: number, iceRadiusM: number, subcoolingK: number): number {
   const a = tubeRadiusM;
@@ -83,7 +84,10 @@ export function timeOnTubeS(tubeRadiusM: number, iceRadiusM: number, subcoolingK
   return ((ICE_DENSITY * FUSION_J_PER_KG) / (4 * ICE_CONDUCTIVITY * subcoolingK)) * shape;
 }
 
-/** Outer radius, m, of the ice on a tube after a time; the inverse of `timeOnTubeS`. null on input without meaning. */
+/**
+ * Outer radius, m, of the ice on a tube after a time; the inverse of `timeOnTubeS`. null on input without
+ * meaning.
+ */
 export function radiusOnTubeM(tubeRadiusM: number, timeS: number, subcoolingK: number): number | null {
   // r ln(r/a) ≥ r - a: ice on a tube is never thicker than on a flat face.
   const most = tubeRadiusM + stefanThicknessM(subcoolingK, timeS);
@@ -97,10 +101,10 @@ export function shellConductanceWPerK(tubeRadiusM: number, iceRadiusM: number): 
 }
 
 /**
- * Part of an ice cylinder's surface that still touches water in a square lattice of tubes: 1 until neighbours at
- * `pitchM` meet, then each of the four overlaps hides an arc of 2 acos(pitch/2r), 0 once the gaps are filled.
- * Exact geometry; Jekel, Mitchell & Klein 1993 ("Modeling of ice-storage tanks", ASHRAE Transactions 99(1), from memory)
- * call this regime area-constrained.
+ * Part of an ice cylinder's surface that still touches water in a square lattice of tubes: 1 until neighbours
+ * at `pitchM` meet, then each of the four overlaps hides an arc of 2 acos(pitch/2r), 0 once the gaps are
+ * filled. Exact geometry; Jekel, Mitchell & Klein 1993 ("Modeling of ice-storage tanks", ASHRAE Transactions
+ * 99(1), from memory) call this regime area-constrained.
  */
 export function freeSurfaceFraction(iceRadiusM: number, pitchM: number): number {
   const reach = pitchM / (2 * iceRadiusM);

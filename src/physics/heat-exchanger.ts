@@ -1,6 +1,6 @@
 /**
- * Heat exchangers: mean temperature difference and effectiveness. Equation numbers are those of Bergman, Lavine,
- * Incropera & DeWitt, "Fundamentals of Heat and Mass Transfer", 7th ed. 2011, chapter 11.
+ * Heat exchangers: mean temperature difference and effectiveness. Equation numbers are those of Bergman,
+ * Lavine, Incropera & DeWitt, "Fundamentals of Heat and Mass Transfer", 7th ed. 2011, chapter 11.
  */
 import { RimeholdError } from '../errors.ts';
 

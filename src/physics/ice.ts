@@ -1,7 +1,7 @@
 /**
- * Ice Ih by the IAPWS equation of state: R10-06(2009), "Revised Release on the Equation of State 2006 for H2O Ice Ih".
- * Gibbs energy g(T, p) of eq. 1–5 and its derivatives of table 4, from 0 to 273.16 K and up to 210 MPa.
- * Complex numbers are pairs [real, imaginary].
+ * Ice Ih by the IAPWS equation of state: R10-06(2009), "Revised Release on the Equation of State 2006 for H2O
+ * Ice Ih". Gibbs energy g(T, p) of eq. 1–5 and its derivatives of table 4, from 0 to 273.16 K and up to 210
+ * MPa. Complex numbers are pairs [real, imaginary].
  */
 import { RimeholdError } from '../errors.ts';
 

@@ -1,8 +1,8 @@
 /**
- * Moist air by PsychroLib (ASHRAE Handbook—Fundamentals 2017, chapter 1). That library keeps its unit system in one
- * global place; it is set to SI here, once, and nothing else imports the library.
- * Relative humidity is in % here (0–1 inside the library). Each function throws on what has no physical meaning (NaN,
- * a humidity outside 0–100 %, a temperature outside -100 to 200 °C). Humidity ratio is kg of vapour per kg of dry air.
+ * Moist air by PsychroLib (ASHRAE Handbook—Fundamentals 2017, chapter 1). That library keeps its unit system
+ * in one global place; it is set to SI here, once, and nothing else imports the library. Relative humidity is
+ * in % here (0–1 inside the library). Each function throws on what has no physical meaning (NaN, a humidity
+ * outside 0–100 %, a temperature outside -100 to 200 °C). Humidity ratio is kg of vapour per kg of dry air.
  */
 import psychrolib from 'psychrolib';
 import { RimeholdError } from '../errors.ts';

@@ -1,4 +1,7 @@
-/** The part of PsychroLib that is used; the package carries no types. SI: °C, Pa, kg/kg, J/kg, m; RelHum as 0–1. */
+/**
+ * The part of PsychroLib that is used; the package carries no types. SI: °C, Pa, kg/kg, J/kg, m; RelHum as
+ * 0–1.
+ */
 declare module 'psychrolib' {
   const psychrolib: {
     readonly SI: number;

@@ -1,6 +1,6 @@
 /**
- * Vapour-compression refrigeration: the cycle from its state points, compressor maps as polynomials, and the Carnot
- * limit. Temperatures of a map are saturated (dew point) suction and discharge temperatures, °C.
+ * Vapour-compression refrigeration: the cycle from its state points, compressor maps as polynomials, and the
+ * Carnot limit. Temperatures of a map are saturated (dew point) suction and discharge temperatures, °C.
  */
 const KELVIN = 273.15;
 
@@ -23,8 +23,8 @@ export interface CyclePerformance {
 }
 
 /**
- * Performance of a simple cycle: Moran & Shapiro, "Fundamentals of Engineering Thermodynamics", eq. 10.3 to 10.7.
- * `isentropicEfficiency` is (h2s - h1)/(h2 - h1).
+ * Performance of a simple cycle: Moran & Shapiro, "Fundamentals of Engineering Thermodynamics", eq. 10.3 to
+ * 10.7. `isentropicEfficiency` is (h2s - h1)/(h2 - h1).
  */
 export function cycle(
   states: CycleStates,
@@ -38,7 +38,9 @@ export function cycle(
   return { coolingW, compressorW, rejectedW: coolingW + compressorW, cop: effectJPerKg / liftJPerKg };
 }
 
-/** The most that any refrigerator can reach between two temperatures; null when the lift is not above zero. */
+/**
+ * The most that any refrigerator can reach between two temperatures; null when the lift is not above zero.
+ */
 export function carnotCop(evaporatingC: number, condensingC: number): number | null {
   const lift = condensingC - evaporatingC;
   return lift > 0 ? (evaporatingC + KELVIN) / lift : null;
@@ -59,8 +61,8 @@ export type MapCoefficients = readonly [
 ];
 
 /**
- * Ten-coefficient compressor polynomial, AHRI Standard 540 (eq. 1): S suction and D discharge dew point, in the
- * temperature unit and with the result unit that the coefficients were fitted for.
+ * Ten-coefficient compressor polynomial, AHRI Standard 540 (eq. 1): S suction and D discharge dew point, in
+ * the temperature unit and with the result unit that the coefficients were fitted for.
  */
 export function evaluateMap(coefficients: MapCoefficients, suction: number, discharge: number): number {
   const [c1, c2, c3, c4, c5, c6, c7, c8, c9, c10] = coefficients;
@@ -72,7 +74,10 @@ export function evaluateMap(coefficients: MapCoefficients, suction: number, disc
   return linear + quadratic + cubic;
 }
 
-/** Reorders a bicubic 1, x, x², y, y², xy, x³, y³, x²y, xy² (x suction, y discharge) into the order of AHRI 540. */
+/**
+ * Reorders a bicubic 1, x, x², y, y², xy, x³, y³, x²y, xy² (x suction, y discharge) into the order of AHRI
+ * 540.
+ */
 export function fromBicubic(bicubic: MapCoefficients): MapCoefficients {
   const [one, x, xx, y, yy, xy, xxx, yyy, xxy, xyy] = bicubic;
   return [one, x, y, xx, xy, yy, xxx, xxy, xyy, yyy];
@@ -87,8 +92,8 @@ export interface CompressorMap {
 }
 
 /**
- * Low-temperature R-22 compressor of 5,440 W nominal: EnergyPlus data set RefrigerationCompressorCurves.idf, first
- * entry, fitted for saturated suction of -40 to -17.8 °C and saturated discharge of 10 to 48.9 °C.
+ * Low-temperature R-22 compressor of 5,440 W nominal: EnergyPlus data set RefrigerationCompressorCurves.idf,
+ * first entry, fitted for saturated suction of -40 to -17.8 °C and saturated discharge of 10 to 48.9 °C.
  */
 export const LOW_TEMPERATURE_R22: CompressorMap = {
   coolingW: fromBicubic([
@@ -99,7 +104,10 @@ export const LOW_TEMPERATURE_R22: CompressorMap = {
   dischargeRangeC: [10, 48.9],
 };
 
-/** Cooling, power and COP of a mapped compressor; null outside the range of its map, where a cubic goes astray. */
+/**
+ * Cooling, power and COP of a mapped compressor; null outside the range of its map, where a cubic goes
+ * astray.
+ */
 export function operateCompressor(
   map: CompressorMap,
   suctionC: number,

@@ -1,6 +1,6 @@
 /**
- * The sun's place (suncalc 2), the clear sky, the split of horizontal sunshine into beam and diffuse, and what falls
- * on a tilted plane. Azimuths count clockwise from north: east 90°, south 180°.
+ * The sun's place (suncalc 2), the clear sky, the split of horizontal sunshine into beam and diffuse, and
+ * what falls on a tilted plane. Azimuths count clockwise from north: east 90°, south 180°.
  */
 import { getPosition } from 'suncalc';
 import { DAY_MS } from '../time.ts';
@@ -25,7 +25,10 @@ export function sunPosition(atMs: number, latitudeDeg: number, longitudeDeg: num
 /** ASTM E490-00a, W/m². */
 const SOLAR_CONSTANT_W_PER_M2 = 1366.1;
 
-/** Sunshine outside the atmosphere on a plane facing the sun, W/m²: Spencer 1971, "Fourier series representation". */
+/**
+ * Sunshine outside the atmosphere on a plane facing the sun, W/m²: Spencer 1971, "Fourier series
+ * representation".
+ */
 export function extraterrestrialWPerM2(atMs: number): number {
   const yearStartMs = Date.UTC(new Date(atMs).getUTCFullYear(), 0, 1);
   const dayAngle = (2 * Math.PI * Math.floor((atMs - yearStartMs) / DAY_MS)) / 365;
@@ -38,21 +41,21 @@ export function extraterrestrialWPerM2(atMs: number): number {
   return SOLAR_CONSTANT_W_PER_M2 * nearness;
 }
 
-/** Relative optical air mass: Kasten & Young 1989, eq. 3, of the true elevation; the apparent one is taken here. */
+/** Relative optical air mass from the apparent elevation: Kasten & Young 1989, eq. 3. */
 export function relativeAirMass(elevationDeg: number): number {
   return 1 / (sinD(elevationDeg) + 0.50572 * (elevationDeg + 6.07995) ** -1.6364);
 }
 
 /**
- * A rural summer sky. Linke turbidity runs from 2 (clean, cold) to 5 (hazy); without a local value 3 is common
- * practice, no source.
+ * A rural summer sky. Linke turbidity runs from 2 (clean, cold) to 5 (hazy); without a local value 3 is
+ * common practice, no source.
  */
 const USUAL_LINKE_TURBIDITY = 3;
 
 /**
  * Global horizontal irradiance of a cloudless sky, W/m²: Ineichen & Perez 2002, "A new airmass independent
- * formulation for the Linke turbidity coefficient", Solar Energy 73(3), as corrected by Perez et al. 2002, Solar
- * Energy 73(5):311, without its factor for high air masses.
+ * formulation for the Linke turbidity coefficient", Solar Energy 73(3), as corrected by Perez et al. 2002,
+ * Solar Energy 73(5):311, without its factor for high air masses.
  */
 export function clearSkyFromElevation(
   elevationDeg: number,
@@ -70,7 +73,9 @@ export function clearSkyFromElevation(
   return cg1 * extraterrestrial * sinD(elevationDeg) * clarity;
 }
 
-/** Global horizontal irradiance under a cloudless sky at a place and instant, W/m²; 0 while the sun is down. */
+/**
+ * Global horizontal irradiance under a cloudless sky at a place and instant, W/m²; 0 while the sun is down.
+ */
 export function clearSkyGhiWPerM2(
   atMs: number,
   latitudeDeg: number,
@@ -92,7 +97,10 @@ export interface Irradiance {
   readonly diffuseHorizontalWPerM2: number;
 }
 
-/** Share of the horizontal sunshine that is diffuse, from the clearness index: Erbs, Klein & Duffie 1982, eq. 1. */
+/**
+ * Share of the horizontal sunshine that is diffuse, from the clearness index: Erbs, Klein & Duffie 1982, eq.
+ * 1.
+ */
 export function diffuseFraction(clearness: number): number {
   const k = clearness;
   if (k <= 0.22) return 1 - 0.09 * k;
@@ -153,7 +161,10 @@ export function planeOfArray(sun: SunPosition, sky: Irradiance, plane: Plane, al
   return beam + sky.diffuseHorizontalWPerM2 * skyShare + albedo * sky.globalHorizontalWPerM2 * groundShare;
 }
 
-/** Part of the daily range below the day's maximum at clock hours 0 … 23: ASHRAE Fundamentals 2009, ch. 14 table 6. */
+/**
+ * Part of the daily range below the day's maximum at clock hours 0 … 23: ASHRAE Fundamentals 2009, ch. 14
+ * table 6.
+ */
 export const DAILY_RANGE_FRACTIONS = [
   0.82, 0.88, 0.92, 0.95, 0.98, 1, 0.98, 0.91, 0.74, 0.55, 0.38, 0.23, 0.13, 0.05, 0, 0, 0.06, 0.14, 0.24,
   0.39, 0.5, 0.59, 0.68, 0.75,

@@ -1,7 +1,7 @@
 /**
- * Published performance curves of ice tanks: what a tank gives or takes at a state of charge and at its coolant's
- * entering temperature. Signs: heat is counted positive into the coolant while it freezes the tank's water (charging)
- * and positive out of the coolant while it melts ice (discharging), so both are ≥ 0.
+ * Published performance curves of ice tanks: what a tank gives or takes at a state of charge and at its
+ * coolant's entering temperature. Signs: heat is counted positive into the coolant while it freezes the
+ * tank's water (charging) and positive out of the coolant while it melts ice (discharging), so both are ≥ 0.
  */
 import { findRoot } from '../numerics/root.ts';
 
@@ -31,7 +31,10 @@ const NOMINAL_LMTD_K = 10;
 const LEAST_ENTERING_K = 0.02;
 const LEAST_LEAVING_K = 0.01;
 
-/** No freezing or melting nearer to the freezing point than this: Modelica Buildings Library, BaseClasses/Tank.mo. */
+/**
+ * No freezing or melting nearer to the freezing point than this: Modelica Buildings Library,
+ * BaseClasses/Tank.mo.
+ */
 const DEAD_BAND_K = 0.01;
 
 /** Mean temperature difference over 10 K, regularised at the freezing point; 0 or more. */
@@ -44,7 +47,10 @@ export function lmtdStar(enteringC: number, leavingC: number, freezingC: number)
   return Math.max(0, Math.abs(enteringC - leavingC) / Math.log(ratio) / NOMINAL_LMTD_K);
 }
 
-/** q*, the share of the capacity per interval of the fit, clamped at 0; x is the state of charge or its complement. */
+/**
+ * q*, the share of the capacity per interval of the fit, clamped at 0; x is the state of charge or its
+ * complement.
+ */
 export function normalisedRate(c: CurveCoefficients, x: number, star: number): number {
   return Math.max(0, c[0] + c[1] * x + c[2] * x * x + (c[3] + c[4] * x + c[5] * x * x) * star);
 }
@@ -67,8 +73,9 @@ export interface TankFlow {
 }
 
 /**
- * Solves the curve together with Q = ṁcp|Tin − Tout|. Direction null, no heat and leaving as entering when there is no
- * flow or the coolant is at the freezing point. Heat never exceeds what brings the coolant to the freezing point.
+ * Solves the curve together with Q = ṁcp|Tin − Tout|. Direction null, no heat and leaving as entering when
+ * there is no flow or the coolant is at the freezing point. Heat never exceeds what brings the coolant to the
+ * freezing point.
  */
 export function solveTank(
   curve: TankCurve,
@@ -95,8 +102,8 @@ export function solveTank(
 }
 
 /**
- * A simulated tank, both directions, capacity to be given: EnergyPlus testfiles/5ZoneDetailedIceStorage.idf, by
- * Modelica Buildings Library Data/Tank/EnergyPlus.mo.
+ * A simulated tank, both directions, capacity to be given: EnergyPlus testfiles/5ZoneDetailedIceStorage.idf,
+ * by Modelica Buildings Library Data/Tank/EnergyPlus.mo.
  */
 export function simulatedTank(capacityJ: number): TankCurve {
   const both: CurveCoefficients = [0, 0.09, -0.15, 0.612, -0.324, -0.216];
@@ -108,8 +115,8 @@ export const MEASURED_TANK_ICE_KG = 2846.35;
 export const MEASURED_TANK_FUSION_J_PER_KG = 333_550;
 
 /**
- * The full-size tank measured by Li, Fu, Pertzborn, Wen & O'Neill 2021, "An Ice Storage Tank Modelica Model" (doi
- * 10.3384/ecp21181177): Modelica Buildings Library Data/Tank/Experiment.mo.
+ * The full-size tank measured by Li, Fu, Pertzborn, Wen & O'Neill 2021, "An Ice Storage Tank Modelica Model"
+ * (doi 10.3384/ecp21181177): Modelica Buildings Library Data/Tank/Experiment.mo.
  */
 export const MEASURED_TANK: TankCurve = {
   charging: [1.76953858e-4, 0, 0, 0, 0, 0],
@@ -129,14 +136,17 @@ const UA_POLYNOMIALS: Readonly<Record<MeltForm, readonly number[]>> = {
 };
 
 /**
- * The polynomial alone; y is the ice fraction (charging) or its complement (melting). Charging uses the internal one.
- * Published with no tank loss, for entering temperatures below -1 °C (charging) or above 1 °C (melting).
+ * The polynomial alone; y is the ice fraction (charging) or its complement (melting). Charging uses the
+ * internal one. Published with no tank loss, for entering temperatures below -1 °C (charging) or above 1 °C
+ * (melting).
  */
 export function uaPolynomial(form: MeltForm, y: number): number {
   return UA_POLYNOMIALS[form].reduceRight((sum, coefficient) => sum * y + coefficient, 0);
 }
 
-/** Conductance between coolant and ice, W/K, of a tank of a nominal capacity in J: polynomial × Q/3600 s/10 K. */
+/**
+ * Conductance between coolant and ice, W/K, of a tank of a nominal capacity in J: polynomial × Q/3600 s/10 K.
+ */
 export function tankUaWPerK(form: MeltForm, y: number, capacityJ: number): number {
   return (uaPolynomial(form, y) * capacityJ) / 3600 / NOMINAL_LMTD_K;
 }

@@ -1,17 +1,24 @@
 /**
  * Liquid water and ice at atmospheric pressure.
  *
- * Liquid: IAPWS SR6-08(2011), "Revised Supplementary Release on Properties of Liquid Water at 0.1 MPa", equations for
- * the Gibbs energy, volume and heat capacity with their coefficients of Table 1, from -20 to 110 °C: supercooled water
- * is included. The 1.3 kPa to a standard atmosphere are neglected: 1.3 J/kg of enthalpy.
- * Enthalpy has the IAPWS zero: liquid at the triple point has no internal energy, so water at 0 °C has about 60 J/kg.
+ * Liquid: IAPWS SR6-08(2011), "Revised Supplementary Release on Properties of Liquid Water at 0.1 MPa",
+ * equations for the Gibbs energy, volume and heat capacity with their coefficients of Table 1, from -20 to
+ * 110 °C: supercooled water is included. The 1.3 kPa to a standard atmosphere are neglected: 1.3 J/kg of
+ * enthalpy. Enthalpy has the IAPWS zero: liquid at the triple point has no internal energy, so water at 0 °C
+ * has about 60 J/kg.
  */
 import { RimeholdError } from '../errors.ts';
 
-/** Mean heat capacity of water between 0 and 15 °C (SR6-08 gives 4201.0), rounded, for rates in that range, J/(kg K). */
+/**
+ * Mean heat capacity of water between 0 and 15 °C (SR6-08 gives 4201.0), rounded, for rates in that range,
+ * J/(kg K).
+ */
 export const WATER_CP_J_PER_KG_K = 4200;
 
-/** Heat to melt ice at the normal ice point: IAPWS-95 liquid less IAPWS R10-06(2009) ice, 0.0716 + 333.3549 kJ/kg. */
+/**
+ * Heat to melt ice at the normal ice point: IAPWS-95 liquid less IAPWS R10-06(2009) ice, 0.0716 + 333.3549
+ * kJ/kg.
+ */
 export const FUSION_J_PER_KG = 333_426.5;
 
 /** Ice at the normal ice point, kg/m³: IAPWS R10-06(2009), check table. */
@@ -21,13 +28,10 @@ export const ICE_DENSITY = 916.721463419;
 export const ICE_CP = 2096.71391024;
 
 /**
- * Thermal conductivity of ice at 0 °C, W/(m K): the middle of the printed values, 2.14 (CRC Handbook), 2.22 (FAO)
- * and 2.24; the sources differ by 5 %.
+ * Thermal conductivity of ice at 0 °C, W/(m K): the middle of the printed values, 2.14 (CRC Handbook), 2.22
+ * (FAO) and 2.24; the sources differ by 5 %.
  */
 export const ICE_CONDUCTIVITY = 2.22;
-
-/** Where ice and water meet at a standard atmosphere (air dissolved); IAPWS puts air-free water at 0.0025 °C. */
-export const ICE_POINT_C = 0;
 
 const GAS_CONSTANT_J_PER_KG_K = 461.51805;
 const KELVIN = 273.15;
