@@ -1,0 +1,344 @@
+/**
+ * How good the forecast is, walking forward: at every third hour a forecast of 36 h is issued on what was seen by then,
+ * and every hour of it in which somebody is home is held against what the truth cabin took. Baselines on the load itself:
+ * yesterday repeats (the last known value of the hour), and the bins (the last 30 days' values of the hour, as an
+ * ensemble). Panel power likewise on the measured array, hours of daylight.
+ */
+import { siteSchema, type SiteConfig } from '../../src/config.ts';
+import { expectedHome } from '../../src/comfort-hours.ts';
+import { createForecaster, type Forecaster } from '../../src/forecasting/forecaster.ts';
+import { coverage, crps, cvRmsePct, nmbePct } from '../../src/forecasting/scores.ts';
+import { quantile } from '../../src/numerics/quantile.ts';
+import { createRandom, type Random } from '../../src/numerics/random.ts';
+import { clearSkyGhiWPerM2 } from '../../src/physics/sun.ts';
+import type { CycleRecord } from '../../src/record.ts';
+import { DAY_MS, HOUR_MS } from '../../src/time.ts';
+import type { BenchOptions, BenchResult } from './bench.ts';
+import { golden, greensboro, newark, type Place, type WeatherFile } from './forecast-data.ts';
+import { QUARTER_MS, runTruth } from './forecast-truth.ts';
+
+const ISSUE_MS = 3 * HOUR_MS;
+const LEARN_DAYS = 30;
+
+interface Pair {
+  readonly lead: number;
+  readonly members: Float64Array;
+  readonly observed: number;
+  readonly yesterday: number;
+  readonly bins: readonly number[];
+}
+
+function siteAt(place: Place): SiteConfig {
+  return siteSchema.parse({
+    site: {
+      id: 'bench',
+      name: 'Bench cabin',
+      zone: place.zone,
+      latitude: `${place.latitudeDeg} deg`,
+      longitude: `${place.longitudeDeg} deg`,
+      elevation: `${place.elevationM} m`,
+    },
+    points: {},
+    bank: { form: 'ice-on-coil-external', water: '240 L', 'most-ice': '150 kg' },
+    chiller: { 'ice-making': '1.05 kW', power: '0.55 kW' },
+    delivery: { flow: '12 L/min' },
+    cabin: { floor: '52 m2', 'heat-loss': '110 W/K', 'heat-capacity': '3 kWh/K', 'solar-aperture': '3 m2' },
+    comfort: { limit: '26 degC', 'sleeping-limit': '24 degC' },
+    power: { tariff: { default: 0.2 } },
+  });
+}
+
+const BLANK = {
+  spanMs: QUARTER_MS,
+  clock: 'set',
+  chillerPowerW: null,
+  batteryPct: null,
+  chargingW: 0,
+  dischargingW: 0,
+} as const;
+
+type Heard = Pick<
+  CycleRecord,
+  | 'outdoorC'
+  | 'outdoorHumidityPct'
+  | 'roomC'
+  | 'roomHumidityPct'
+  | 'panelPowerW'
+  | 'deliveredW'
+  | 'latentW'
+  | 'fanPowerW'
+  | 'home'
+>;
+
+/** Only what the forecaster looks at. */
+const recordAt = (startMs: number, heard: Heard): CycleRecord =>
+  ({ ...BLANK, atMs: startMs + QUARTER_MS, ...heard }) as unknown as CycleRecord;
+
+const quantised = (value: number): number => Math.round(value / 0.0625) * 0.0625;
+
+export interface Walk {
+  readonly load: readonly Pair[];
+  readonly outdoor: readonly Pair[];
+  readonly days: number;
+}
+
+/** One walk through a file. */
+export function walkFile(file: WeatherFile, random: Random, days: number): Walk {
+  const config = siteAt(file.place);
+  const scoreFrom = Date.UTC(file.year, 5, 1, 6);
+  const fromMs = scoreFrom - LEARN_DAYS * DAY_MS;
+  const toMs = scoreFrom + days * DAY_MS;
+  const truth = runTruth(config, (at) => file.at(at), fromMs - 5 * DAY_MS, toMs + 2 * DAY_MS, random).filter(
+    (quarter) => quarter.startMs >= fromMs,
+  );
+  const loadByHour = hourly(truth.map((quarter) => quarter.deliveredW));
+  const outdoorByHour = hourly(truth.map((quarter) => file.at(quarter.startMs + QUARTER_MS / 2).outdoorC));
+  const noise = random.fork('probes');
+  const forecaster = createForecaster(config, { seed: 1 });
+  const load: Pair[] = [];
+  const outdoor: Pair[] = [];
+  for (const [i, quarter] of truth.entries()) {
+    const nowMs = quarter.startMs;
+    if (nowMs >= toMs) break;
+    if (nowMs % ISSUE_MS === 0 && i > 0) {
+      const forecast = forecaster.forecast(nowMs, null);
+      if (nowMs >= scoreFrom) {
+        const hour = i / 4;
+        const perHour = HOUR_MS / forecast.slotMs;
+        for (let lead = 1; lead <= 36; lead += 1) {
+          const atMs = nowMs + (lead - 1) * HOUR_MS;
+          const slot = (lead - 1) * perHour;
+          const members = (pick: (s: (typeof forecast.scenarios)[number]) => Float64Array): Float64Array =>
+            Float64Array.from(forecast.scenarios, (s) => meanOf(pick(s).subarray(slot, slot + perHour)));
+          const pair = (values: Float64Array, byHour: readonly number[]): Pair => ({
+            lead,
+            members: values,
+            observed: byHour[hour + lead - 1],
+            ...baselines(byHour, hour, hour + lead - 1),
+          });
+          outdoor.push(
+            pair(
+              members((s) => s.outdoorC),
+              outdoorByHour,
+            ),
+          );
+          if (expectedHome(config.cabin, file.place.zone, atMs))
+            load.push(
+              pair(
+                members((s) => s.loadW),
+                loadByHour,
+              ),
+            );
+        }
+      }
+    }
+    const weather = file.at(nowMs + QUARTER_MS / 2);
+    const heard = file.known(nowMs + QUARTER_MS / 2);
+    const rhPct =
+      100 *
+      Math.exp(17.6 * (weather.dewC / (243 + weather.dewC) - weather.outdoorC / (243 + weather.outdoorC)));
+    forecaster.observe(
+      recordAt(nowMs, {
+        outdoorC: heard ? quantised(weather.outdoorC + 0.1 * noise.normal()) : null,
+        outdoorHumidityPct: heard ? Math.min(100, Math.max(1, rhPct + noise.normal())) : null,
+        roomC: quantised(quarter.roomC + 0.05 * noise.normal()),
+        roomHumidityPct: quarter.roomHumidityPct,
+        panelPowerW: file.sunMeasured ? 1.1 * weather.sky.globalHorizontalWPerM2 : null,
+        deliveredW: quarter.deliveredW * (1 + 0.03 * noise.normal()),
+        latentW: quarter.latentW,
+        fanPowerW: quarter.fanW,
+        home: expectedHome(config.cabin, file.place.zone, nowMs),
+      }),
+    );
+  }
+  return { load, outdoor, days };
+}
+
+const meanOf = (values: ArrayLike<number>): number =>
+  Array.from(values).reduce((sum, v) => sum + v, 0) / values.length;
+
+function hourly(quarters: readonly number[]): number[] {
+  return Array.from({ length: Math.floor(quarters.length / 4) }, (_, hour) =>
+    meanOf(quarters.slice(hour * 4, hour * 4 + 4)),
+  );
+}
+
+/** `now` and `target` are hours; nothing at or after `now` is known. */
+function baselines(
+  byHour: readonly number[],
+  now: number,
+  target: number,
+): { yesterday: number; bins: number[] } {
+  let back = target - 24;
+  while (back >= now) back -= 24;
+  const bins: number[] = [];
+  for (let at = back; at >= 0 && bins.length < 30; at -= 24) bins.push(byHour[at]);
+  return { yesterday: byHour[back], bins };
+}
+
+function walkPanels(days: number): Pair[] | null {
+  const data = golden();
+  if (!data) return null;
+  const config = siteAt(data.place);
+  const byTime = new Map(data.lines.map((line) => [line.atMs, line]));
+  const first = Math.ceil(data.lines[0].atMs / HOUR_MS) * HOUR_MS;
+  const last = data.lines[data.lines.length - 1].atMs;
+  const scoreFrom = Math.ceil((first + LEARN_DAYS * DAY_MS) / ISSUE_MS) * ISSUE_MS;
+  const quarters: (number | null)[] = [];
+  for (let at = first; at <= last; at += QUARTER_MS) quarters.push(byTime.get(at)?.powerW ?? null);
+  const byHour = hourly(quarters.map((value, i) => value ?? quarters[i - 1] ?? 0));
+  const forecaster = createForecaster(config, { seed: 1 });
+  const pairs: Pair[] = [];
+  let outdoorC: number | null = null;
+  for (const [i] of quarters.entries()) {
+    const nowMs = first + i * QUARTER_MS;
+    if (nowMs % ISSUE_MS === 0 && i > 0)
+      scorePanels(forecaster, nowMs, i / 4, scoreFrom, days, byHour, data.place, pairs);
+    const line = byTime.get(nowMs);
+    outdoorC = line?.outdoorC ?? outdoorC;
+    forecaster.observe(
+      recordAt(nowMs, {
+        outdoorC: line ? outdoorC : null,
+        outdoorHumidityPct: null,
+        roomC: null,
+        roomHumidityPct: null,
+        panelPowerW: line?.powerW ?? null,
+        deliveredW: null,
+        latentW: null,
+        fanPowerW: null,
+        home: false,
+      }),
+    );
+  }
+  return pairs;
+}
+
+function scorePanels(
+  forecaster: Forecaster,
+  nowMs: number,
+  hour: number,
+  scoreFrom: number,
+  days: number,
+  byHour: readonly number[],
+  place: Place,
+  pairs: Pair[],
+): void {
+  const forecast = forecaster.forecast(nowMs, null);
+  if (nowMs < scoreFrom || nowMs >= scoreFrom + days * DAY_MS) return;
+  const perHour = HOUR_MS / forecast.slotMs;
+  for (let lead = 1; lead <= 36 && hour + lead - 1 < byHour.length; lead += 1) {
+    const atMs = nowMs + (lead - 0.5) * HOUR_MS;
+    if (clearSkyGhiWPerM2(atMs, place.latitudeDeg, place.longitudeDeg, place.elevationM) < 20) continue;
+    const slot = (lead - 1) * perHour;
+    const members = Float64Array.from(forecast.scenarios, (s) =>
+      meanOf(s.panelW.subarray(slot, slot + perHour)),
+    );
+    pairs.push({
+      lead,
+      members,
+      observed: byHour[hour + lead - 1],
+      ...baselines(byHour, hour, hour + lead - 1),
+    });
+  }
+}
+
+interface Score {
+  readonly cvRmsePct: number;
+  readonly nmbePct: number;
+  readonly skillVsYesterdayPct: number;
+  readonly skillVsBinsPct: number;
+  readonly coverage80Pct: number;
+  readonly crps: number;
+}
+
+export function scoreOf(pairs: readonly Pair[]): Score {
+  const observed = pairs.map((pair) => pair.observed);
+  const means = pairs.map((pair) => meanOf(pair.members));
+  const mean = (score: (pair: Pair) => number): number => meanOf(pairs.map(score));
+  const own = mean((pair) => crps(pair.members, pair.observed));
+  const yesterday = mean((pair) => Math.abs(pair.yesterday - pair.observed));
+  const bins = mean((pair) => crps(pair.bins, pair.observed));
+  const inside = coverage(
+    pairs.map((pair) => quantile(pair.members, 0.1)),
+    pairs.map((pair) => quantile(pair.members, 0.9)),
+    observed,
+  );
+  return {
+    cvRmsePct: cvRmsePct(means, observed) ?? -1,
+    nmbePct: nmbePct(means, observed) ?? -1,
+    skillVsYesterdayPct: 100 * (1 - own / yesterday),
+    skillVsBinsPct: 100 * (1 - own / bins),
+    coverage80Pct: 100 * (inside ?? -1),
+    crps: own,
+  };
+}
+
+function rowOf(name: string, pairs: readonly Pair[]): (string | number)[] {
+  const score = scoreOf(pairs);
+  return [
+    name,
+    pairs.length,
+    meanOf(pairs.map((pair) => pair.observed)),
+    score.cvRmsePct,
+    score.nmbePct,
+    score.skillVsYesterdayPct,
+    score.skillVsBinsPct,
+    score.coverage80Pct,
+  ];
+}
+
+export function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
+  const random = createRandom(seed);
+  const files = [newark(), greensboro()].filter((file) => file !== null);
+  const walks = files.map((file) => ({ file, ...walkFile(file, random.fork(file.name), quick ? 20 : 100) }));
+  const panels = walkPanels(quick ? 15 : 70);
+  const rows: (string | number)[][] = [];
+  for (const { file, load, outdoor } of walks) {
+    rows.push(rowOf(`${file.name}: load, W`, load));
+    for (const [from, to] of [
+      [1, 6],
+      [7, 12],
+      [13, 24],
+      [25, 36],
+    ]) {
+      rows.push(
+        rowOf(
+          `  lead ${from}-${to} h`,
+          load.filter((pair) => pair.lead >= from && pair.lead <= to),
+        ),
+      );
+    }
+    rows.push(rowOf(`${file.name}: outdoor, °C`, outdoor));
+  }
+  if (panels) rows.push(rowOf('Golden 2016: panels, W', panels));
+  const all = walks.flatMap((walk) => walk.load);
+  const total = all.length > 0 ? scoreOf(all) : null;
+  const panelScore = panels && scoreOf(panels);
+  const result: BenchResult = {
+    title: 'Forecast of the load and of panel power, 36 h ahead, issued every 3 h on the past alone',
+    budget:
+      'CV-RMSE ≤ 25 %, |NMBE| ≤ 5 %, CRPS ≥ 30 % better than yesterday and ≥ 10 % than 30-day bins, 80 % covers 75–85 %',
+    columns: [
+      'what',
+      'hours',
+      'mean',
+      'CV-RMSE %',
+      'NMBE %',
+      'vs yesterday %',
+      'vs bins %',
+      'in 80 % interval',
+    ],
+    rows,
+    figures: {
+      loadCvRmsePct: total?.cvRmsePct ?? 'no data',
+      loadNmbePct: total?.nmbePct ?? 'no data',
+      skillVsYesterdayPct: total?.skillVsYesterdayPct ?? 'no data',
+      skillVsBinsPct: total?.skillVsBinsPct ?? 'no data',
+      coverage80Pct: total?.coverage80Pct ?? 'no data',
+      panelSkillVsYesterdayPct: panelScore?.skillVsYesterdayPct ?? 'no data',
+      panelCoverage80Pct: panelScore?.coverage80Pct ?? 'no data',
+      scoredDays: walks[0]?.days ?? 0,
+    },
+  };
+  return Promise.resolve(result);
+}
