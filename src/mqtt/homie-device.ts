@@ -1,0 +1,292 @@
+/**
+ * The Homie device of the site: announces itself on every connection, publishes values when they change, takes the
+ * owner's settings, tells alerts to people. Only a cleared command can be published as an order, by type.
+ *
+ * A value that is not known has no retained message; it is published once it is known and cleared when it no longer
+ * is. The command, its expiry and the order are published in every cycle and vanish from the broker when they expire
+ * (MQTT 5), so that no hub acts on the word of a daemon that is gone.
+ */
+import type { SiteConfig } from '../config.ts';
+import type { ClearedCommand } from '../order.ts';
+import type { CycleRecord, PlanRecord } from '../record.ts';
+import {
+  describeDevice,
+  deviceTopic,
+  propertiesOf,
+  type Path,
+  type Property,
+  type SettablePath,
+} from './homie.ts';
+import { formatValue, isNews, parseSet, type Value } from './homie-format.ts';
+import {
+  cycleValues,
+  nightValues,
+  orderValues,
+  planValues,
+  settingValues,
+  type Beside,
+  type NightFigures,
+  type Settings,
+  type Values,
+} from './homie-values.ts';
+import type { Message } from './intake.ts';
+import type { Publisher } from './link.ts';
+import { LogVoice, type LogLevel } from './log-voice.ts';
+
+export interface HomieDeviceOptions {
+  readonly config: SiteConfig;
+  readonly publisher: Publisher;
+  readonly settings: Settings;
+  readonly nowMs: () => number;
+  /** Takes a setting; returns null when it is accepted, else one sentence why not. */
+  readonly onSet: (path: SettablePath, value: number | string) => string | null;
+}
+
+/** What the broker still keeps of an earlier life comes at once on subscribing; this long without more is all of it. */
+const SWEEP_QUIET_MS = 250;
+const SWEEP_MOST_MS = 3000;
+/** These are published in every cycle, changed or not, and expire with the order. */
+const REPEATED: readonly Path[] = ['dispatch/command', 'dispatch/expires', 'dispatch/order'];
+const ALERT_ID = /^[a-z0-9]([a-z0-9-]*[a-z0-9])?$/;
+
+export class HomieDevice {
+  readonly #options: HomieDeviceOptions;
+  readonly #publisher: Publisher;
+  readonly #root: string;
+  readonly #properties: ReadonlyMap<Path, Property>;
+  readonly #voice: LogVoice;
+  readonly #values = new Map<Path, Value>();
+  /** What was published on this connection. */
+  readonly #published = new Map<Path, Value>();
+  /** Values that the broker keeps for us, on whichever connection they were published. */
+  readonly #kept = new Set<Path>();
+  /** `$target` of each settable property: the bytes of the last accepted `/set`, else the value. */
+  readonly #targets = new Map<Path, string | Uint8Array>();
+  readonly #alerts = new Map<string, string>();
+  /** Retained topics of an earlier life, while they are gathered. */
+  #leftovers: { topics: Set<string>; lastMs: number } | null = null;
+  #swept = false;
+  /** Counts connections: an announcement that a newer one has overtaken ends. */
+  #life = 0;
+  #announced = false;
+  #expiresMs = 0;
+  #firstCycle: (() => void) | null = null;
+  readonly #cycled: Promise<void>;
+
+  constructor(options: HomieDeviceOptions) {
+    this.#options = options;
+    this.#publisher = options.publisher;
+    this.#root = deviceTopic(options.config);
+    this.#properties = propertiesOf(options.config);
+    this.#voice = new LogVoice(options.config.announce.logLevel, options.nowMs);
+    this.#cycled = new Promise((resolve) => (this.#firstCycle = resolve));
+    this.#store(settingValues(options.settings));
+    this.#store({ 'plan/schedule': {}, 'night/sheet': {} });
+  }
+
+  /**
+   * Call on every (re)connection. `init`, leftovers of an earlier life cleared, description, values, `/set`
+   * subscriptions, then `ready`; the first time it waits for the first cycle, so that a device that is ready has values.
+   */
+  async announce(): Promise<void> {
+    const life = ++this.#life;
+    this.#announced = false;
+    this.#published.clear();
+    void this.#state('init');
+    await this.#publish('$description', describeDevice(this.#options.config));
+    await this.#cycled;
+    if (!this.#swept && life === this.#life) await this.#sweep();
+    if (life !== this.#life) return;
+    this.#announced = true;
+    for (const path of this.#properties.keys()) this.#publishValue(path);
+    for (const [id, text] of this.#alerts) void this.#publish(`$alert/${id}`, text);
+    await this.#publisher.subscribe(this.#settable().map((path) => this.#setSubscription(path)));
+    if (life === this.#life) await this.#state('ready');
+  }
+
+  /** Call when the broker is away: values are kept until the next announcement. */
+  away(): void {
+    this.#life += 1;
+    this.#announced = false;
+  }
+
+  publishCycle(record: CycleRecord, beside: Beside): void {
+    this.#update(cycleValues(record, beside));
+    this.#firstCycle?.();
+    this.#firstCycle = null;
+  }
+
+  publishPlan(plan: PlanRecord): void {
+    this.#update(planValues(plan));
+  }
+
+  publishNight(night: NightFigures): void {
+    this.#update(nightValues(night));
+  }
+
+  publishSettings(settings: Settings): void {
+    this.#update(settingValues(settings));
+  }
+
+  /** Every cycle; nothing but a cleared command is taken. */
+  publishOrder(cleared: ClearedCommand): void {
+    this.#expiresMs = cleared.expiresMs;
+    for (const path of REPEATED) this.#published.delete(path);
+    this.#update(orderValues(cleared));
+  }
+
+  /** A plain sentence for people that stands until it is resolved (`null`). */
+  alert(id: string, text: string | null): void {
+    if (!ALERT_ID.test(id))
+      throw new TypeError(`"${id}" is no alert id: expected a-z, 0-9 and inner hyphens`);
+    if ((this.#alerts.get(id) ?? null) === text) return;
+    if (text === null) this.#alerts.delete(id);
+    else this.#alerts.set(id, text);
+    if (this.#announced) void this.#publish(`$alert/${id}`, text ?? '');
+  }
+
+  /** Tells the log of the device, at a limited rate and only from the owner's level on. */
+  log(level: LogLevel, sentence: string): void {
+    if (!this.#voice.mayTell(level, sentence)) return;
+    void this.#publisher.publish({
+      topic: `${this.#root}/$log/${level}`,
+      payload: sentence,
+      qos: 0,
+      retain: false,
+    });
+  }
+
+  /** Takes a message; whether it was one of the device's own. */
+  hear(message: Message): boolean {
+    if (!message.topic.startsWith(`${this.#root}/`)) return false;
+    if (message.retained) this.#gather(message);
+    const path = this.#settable().find((one) => message.topic === `${this.#root}/${one}/set`);
+    // a retained command is of unknown age: whoever left it there may have changed their mind long ago
+    if (path && !message.retained) this.#set(path, message.payload);
+    return true;
+  }
+
+  /** Says goodbye: `disconnected`. */
+  async stop(): Promise<void> {
+    this.away();
+    await this.#state('disconnected');
+  }
+
+  /** Takes everything that was ever retained off the broker, `$state` first. */
+  async remove(): Promise<void> {
+    this.away();
+    await this.#state('');
+    await this.#publish('$description', '');
+    const targets = this.#settable().map((path) => `${path}/$target`);
+    const alerts = [...this.#alerts.keys()].map((id) => `$alert/${id}`);
+    await Promise.all(
+      [...this.#properties.keys(), ...targets, ...alerts].map((topic) => this.#publish(topic, '')),
+    );
+    await this.#clearLeftovers(() => false);
+  }
+
+  #settable(): SettablePath[] {
+    return [...this.#properties].flatMap(([path, property]) =>
+      property.settable ? [path as SettablePath] : [],
+    );
+  }
+
+  #setSubscription(path: Path): { filter: string; qos: 2; retained: false } {
+    return { filter: `${this.#root}/${path}/set`, qos: 2, retained: false };
+  }
+
+  #set(path: SettablePath, payload: Uint8Array): void {
+    const property = this.#property(path);
+    const parsed = parseSet(property, Buffer.from(payload).toString());
+    const refusal = parsed.ok ? this.#options.onSet(path, parsed.value) : parsed.fault;
+    if (!parsed.ok || refusal !== null) return this.log('warn', `${path} was not set: ${refusal}.`);
+    this.#values.set(path, parsed.value);
+    this.#targets.set(path, payload);
+    this.#published.delete(path);
+    if (this.#announced) this.#publishValue(path);
+  }
+
+  #store(values: Values): Path[] {
+    const paths = Object.keys(values) as Path[];
+    for (const path of paths) this.#values.set(path, values[path] ?? null);
+    return paths;
+  }
+
+  #update(values: Values): void {
+    const before = new Map(this.#values);
+    for (const path of this.#store(values)) {
+      // a setting that changed by itself, as a wish that has run out, is its own target again
+      if (isNews(this.#property(path), before.get(path), this.#values.get(path) ?? null))
+        this.#targets.delete(path);
+      if (this.#announced) this.#publishValue(path);
+    }
+  }
+
+  #publishValue(path: Path): void {
+    const property = this.#property(path);
+    const value = this.#values.get(path) ?? null;
+    const published = this.#published.get(path);
+    if (!isNews(property, published, value)) return;
+    this.#published.set(path, value);
+    const payload = formatValue(property, value);
+    if (property.settable) void this.#publish(`${path}/$target`, this.#targets.get(path) ?? payload);
+    // a value that was never there need not be cleared
+    if (payload === '' && !this.#kept.delete(path)) return;
+    if (payload !== '') this.#kept.add(path);
+    void this.#publish(path, payload, REPEATED.includes(path) ? this.#expiresMs : null);
+  }
+
+  #property(path: Path): Property {
+    const property = this.#properties.get(path);
+    if (!property) throw new TypeError(`no property ${path}`);
+    return property;
+  }
+
+  #state(state: 'init' | 'ready' | 'disconnected' | ''): Promise<boolean> {
+    return this.#publish('$state', state);
+  }
+
+  #publish(topic: string, payload: string | Uint8Array, expiresMs: number | null = null): Promise<boolean> {
+    const expiry = expiresMs === null ? {} : { expiresInS: (expiresMs - this.#options.nowMs()) / 1000 };
+    return this.#publisher.publish({
+      topic: `${this.#root}/${topic}`,
+      payload,
+      qos: 2,
+      retain: true,
+      ...expiry,
+    });
+  }
+
+  /** Clears what an earlier life left behind: removed properties, values not known now, alerts that are resolved. */
+  async #sweep(): Promise<void> {
+    const life = this.#life;
+    const alive = new Set(['$state', '$description', ...this.#settable().map((path) => `${path}/$target`)]);
+    for (const [path, value] of this.#values) if (value !== null) alive.add(path);
+    for (const id of this.#alerts.keys()) alive.add(`$alert/${id}`);
+    const cleared = await this.#clearLeftovers((topic) => alive.has(topic));
+    this.#swept = cleared && life === this.#life;
+  }
+
+  /** Clears all that the broker still keeps but what is to stay; whether the broker took it. */
+  async #clearLeftovers(keep: (topic: string) => boolean): Promise<boolean> {
+    const filter = `${this.#root}/#`;
+    const leftovers = { topics: new Set<string>(), lastMs: Date.now() };
+    const until = leftovers.lastMs + SWEEP_MOST_MS;
+    this.#leftovers = leftovers;
+    await this.#publisher.subscribe([{ filter, qos: 0, retained: true }]);
+    while (Date.now() < until && Date.now() - leftovers.lastMs < SWEEP_QUIET_MS) {
+      await new Promise((done) => setTimeout(done, 25));
+    }
+    this.#leftovers = null;
+    await this.#publisher.unsubscribe(filter);
+    const dead = [...leftovers.topics].filter((topic) => !keep(topic));
+    const cleared = await Promise.all(dead.map((topic) => this.#publish(topic, '')));
+    return cleared.every(Boolean);
+  }
+
+  #gather(message: Message): void {
+    if (!this.#leftovers || message.payload.length === 0) return;
+    this.#leftovers.topics.add(message.topic.slice(this.#root.length + 1));
+    this.#leftovers.lastMs = Date.now();
+  }
+}
