@@ -10,6 +10,8 @@ import { Layers } from './layers.ts';
 import { Shells } from './shells.ts';
 
 const CP = WATER_CP_J_PER_KG_K;
+/** Number of layers. */
+const N = LAYERS;
 /** Heat of fusion, J/kg; a local name because the inner loop reads it most. */
 const FUSION_J = FUSION_J_PER_KG;
 /** Enthalpy that vapour carries off, reckoned from liquid at 0 °C, J/kg; the same figure in the room's balance. */
@@ -41,8 +43,8 @@ export class IceBank {
   readonly shells: Shells;
   floatKg = 0;
   /** Conductance from coolant and temperature that it works against, by layer: what the ice machine has to meet. */
-  readonly coilWPerK = new Float64Array(LAYERS);
-  readonly coilFaceC = new Float64Array(LAYERS);
+  readonly coilWPerK = new Float64Array(N);
+  readonly coilFaceC = new Float64Array(N);
   // What the last step did.
   coilJ = 0;
   loopJ = 0;
@@ -51,8 +53,8 @@ export class IceBank {
   leavingC: number;
   readonly leakWPerK: number;
   private readonly leakPart: Float64Array;
-  private readonly solidKg = new Float64Array(LAYERS);
-  private readonly floatingKg = new Float64Array(LAYERS);
+  private readonly solidKg = new Float64Array(N);
+  private readonly floatingKg = new Float64Array(N);
   private readonly drawSupercoolingK: () => number;
   private supercoolingK: number;
   private restS = 0;
@@ -67,10 +69,10 @@ export class IceBank {
     this.supercoolingK = drawSupercoolingK();
     this.leakWPerK = site.bank.heatLeakWPerK;
     this.leakPart = leakParts();
-    this.shells = new Shells(LAYERS, this.shape.wall, drawSupercoolingK);
+    this.shells = new Shells(N, this.shape.wall, drawSupercoolingK);
     this.layers = this.fill(start.iceKg, start.waterC);
     this.coil = new CoilIce(this.shape, this.layers, this.shells);
-    this.leavingC = this.layers.temperatureC(LAYERS - 1);
+    this.leavingC = this.layers.temperatureC(N - 1);
     this.settle();
   }
 
@@ -78,18 +80,18 @@ export class IceBank {
     const { shape } = this;
     const free =
       shape.sealed || shape.floats ? shape.freeKg - (shape.floats ? iceKg : 0) : shape.freeKg - iceKg;
-    for (let i = 0; i < LAYERS; i++) {
-      const ice = iceKg / LAYERS;
-      if (shape.sealed) this.fillContainer(i, Math.min(ice, shape.shutKg / LAYERS), waterC);
+    for (let i = 0; i < N; i++) {
+      const ice = iceKg / N;
+      if (shape.sealed) this.fillContainer(i, Math.min(ice, shape.shutKg / N), waterC);
       else if (!shape.floats && ice > 0) this.shells.growOuter(i, ice);
     }
     if (shape.floats) this.floatKg = iceKg;
-    return new Layers(LAYERS, free, waterC, shape.areaM2, shape.heightM, shape.sealed);
+    return new Layers(N, free, waterC, shape.areaM2, shape.heightM, shape.sealed);
   }
 
   /** Ice on the wall and water within; all molten, the water is at `waterC`. */
   private fillContainer(i: number, iceKg: number, waterC: number): void {
-    const kg = this.shape.shutKg / LAYERS;
+    const kg = this.shape.shutKg / N;
     if (iceKg > 1e-3) {
       this.shells.fill(i, kg - iceKg > 1e-3 ? [iceKg, kg - iceKg] : [kg], false);
     } else {
@@ -100,21 +102,21 @@ export class IceBank {
 
   iceKg(): number {
     let sum = this.floatKg;
-    for (let i = 0; i < LAYERS; i++) sum += this.shells.iceKg(i);
+    for (let i = 0; i < N; i++) sum += this.shells.iceKg(i);
     return sum;
   }
 
   /** All water and ice, kg. */
   totalKg(): number {
     let sum = this.layers.totalKg() + this.floatKg;
-    for (let i = 0; i < LAYERS; i++) sum += this.shells.totalKg(i);
+    for (let i = 0; i < N; i++) sum += this.shells.totalKg(i);
     return sum;
   }
 
   /** Enthalpy of water and ice above liquid at 0 °C, J. */
   enthalpyJ(): number {
     let sum = this.layers.totalJ() - FUSION_J * this.iceKg();
-    for (let i = 0; i < LAYERS; i++) sum += this.shells.wallJ[i];
+    for (let i = 0; i < N; i++) sum += this.shells.wallJ[i];
     return sum;
   }
 
@@ -125,13 +127,13 @@ export class IceBank {
 
   /** Flow left when ice bridges the passages: 1 up to the allowed ice, a tenth at a fifth above it. */
   openPart(): number {
-    const over = this.iceKg() / (this.shape.mostIceKg * LAYERS) - 1;
+    const over = this.iceKg() / (this.shape.mostIceKg * N) - 1;
     return over > 0 && !this.shape.sealed ? Math.max(0.1, 1 - 4.5 * over) : 1;
   }
 
   levelMm(): number {
     let litres = this.layers.totalKg() + this.floatKg;
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       litres += this.shells.waterKg(i) + (this.shells.iceKg(i) * 1000) / ICE_DENSITY;
     }
     return litres / this.shape.areaM2;
@@ -139,7 +141,7 @@ export class IceBank {
 
   /** Works out what a coolant meets in each layer; called before the machine finds its evaporating temperature. */
   faceCoil(dtS: number): void {
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       const waterC = this.layers.temperatureC(i);
       if (this.shape.sealed) {
         this.coilWPerK[i] = boundedWPerK(this.layers.waterKg[i] * CP, this.coilInsideWPerK(), dtS);
@@ -174,7 +176,7 @@ export class IceBank {
   }
 
   private pumpThrough(dtS: number, by: BankStep): void {
-    this.leavingC = this.layers.temperatureC(LAYERS - 1);
+    this.leavingC = this.layers.temperatureC(N - 1);
     if (!(by.flowKgPerS > 0)) return;
     const kg = by.flowKgPerS * dtS;
     this.leavingC = this.layers.flow(kg, by.enteringC);
@@ -186,7 +188,7 @@ export class IceBank {
     this.pumpThrough(dtS, by);
     const inside = by.coilOn ? this.coilInsideWPerK() : 0;
     const seeded = this.iceKg() > 1e-4;
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       this.coilJ -= this.coil.wall(i, by.coolantC, inside, dtS, by.flowKgPerS > 0, seeded);
     }
   }
@@ -201,7 +203,7 @@ export class IceBank {
       this.coilJ = Math.max(0, rate * (brineC - by.coolantC) * dtS * this.brineEffectiveness(rate));
       brineC -= this.coilJ / (rate * dtS);
     }
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       const inside = rate * -Math.expm1(-this.shape.loopWPerK / rate);
       brineC -= this.coil.wall(i, brineC, inside, dtS, true, seeded) / (rate * dtS);
     }
@@ -210,7 +212,7 @@ export class IceBank {
   }
 
   brineEffectiveness(rateWPerK: number): number {
-    return -Math.expm1((-this.coilInsideWPerK() * LAYERS) / rateWPerK);
+    return -Math.expm1((-this.coilInsideWPerK() * N) / rateWPerK);
   }
 
   private coilInsideWPerK(): number {
@@ -221,7 +223,7 @@ export class IceBank {
   private stepContainers(dtS: number, by: BankStep): void {
     this.pumpThrough(dtS, by);
     const side = by.flowKgPerS > 0 ? this.shape.loopWPerK * this.coil.meltFactor : this.shape.stillLoopWPerK;
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       const capacity = this.layers.waterKg[i] * CP;
       if (by.coilOn) {
         const inside = boundedWPerK(capacity, this.coilInsideWPerK(), dtS);
@@ -237,10 +239,10 @@ export class IceBank {
   /** Loose ice lies under the surface, packed to a part of each layer, from the top down. */
   private placeFloating(): void {
     let left = this.floatKg;
-    const most = (FLOAT_PART * this.totalKg()) / LAYERS;
-    for (let i = 0; i < LAYERS; i++) {
+    const most = (FLOAT_PART * this.totalKg()) / N;
+    for (let i = 0; i < N; i++) {
       const room = Math.max(0, most - this.shells.totalKg(i));
-      this.floatingKg[i] = i === LAYERS - 1 ? left : Math.min(left, room);
+      this.floatingKg[i] = i === N - 1 ? left : Math.min(left, room);
       left -= this.floatingKg[i];
     }
   }
@@ -248,7 +250,7 @@ export class IceBank {
   private stepFloating(dtS: number, by: BankStep): void {
     this.letGo(dtS, by.coilOn);
     const film = by.flowKgPerS > 0 ? this.shape.filmWPerM2K : this.shape.stillFilmWPerM2K;
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       if (!(this.floatingKg[i] > 0)) continue;
       const face = film * this.coil.meltFactor * FLOAT_M2_PER_KG * this.floatingKg[i];
       const offeredJ =
@@ -265,7 +267,7 @@ export class IceBank {
   private letGo(dtS: number, coilOn: boolean): void {
     this.restS = coilOn ? 0 : this.restS + dtS;
     if (this.restS < LETTING_GO_S) return;
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       if (this.shells.count[i] === 0) continue;
       const kg = this.shells.meltOuter(i, Math.max(1e-4, (this.shells.iceKg(i) * dtS) / LETTING_GO_S));
       this.floatKg += kg;
@@ -289,7 +291,7 @@ export class IceBank {
 
   private leak(dtS: number, by: BankStep): void {
     const leak = this.leakWPerK * this.leakFactor * dtS;
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       this.gain(i, leak * this.leakPart[i] * (by.surroundC - this.layers.temperatureC(i)));
     }
   }
@@ -297,12 +299,12 @@ export class IceBank {
   /** First ice of a fresh charge, and slush where supercooled water borders on a bank that already holds ice. */
   private crystallise(): void {
     let coldestC = 0;
-    for (let i = 0; i < LAYERS; i++) coldestC = Math.min(coldestC, this.layers.temperatureC(i));
+    for (let i = 0; i < N; i++) coldestC = Math.min(coldestC, this.layers.temperatureC(i));
     if (coldestC === 0) return;
     const seeded = this.iceKg() > 1e-4;
     if (!seeded && coldestC > -this.supercoolingK) return;
     if (!seeded) this.supercoolingK = this.drawSupercoolingK();
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       if (this.layers.energyJ[i] >= 0 || this.shells.count[i] > 0) continue;
       const kg = -this.layers.energyJ[i] / FUSION_J;
       this.shells.growOuter(i, kg);
@@ -313,7 +315,7 @@ export class IceBank {
 
   private settle(): void {
     if (this.shape.sealed) return;
-    for (let i = 0; i < LAYERS; i++) {
+    for (let i = 0; i < N; i++) {
       this.solidKg[i] = this.shells.totalKg(i) + (this.shape.floats ? this.floatingKg[i] : 0);
     }
     this.layers.settle(this.solidKg);
@@ -322,7 +324,7 @@ export class IceBank {
 
 /** Share of the heat leak by layer: the lid and the bottom take more than a slice of the side. */
 function leakParts(): Float64Array {
-  const parts = new Float64Array(LAYERS).fill(1);
-  parts[0] = parts[LAYERS - 1] = 2;
-  return parts.map((part) => part / (LAYERS + 2));
+  const parts = new Float64Array(N).fill(1);
+  parts[0] = parts[N - 1] = 2;
+  return parts.map((part) => part / (N + 2));
 }

@@ -7,6 +7,8 @@ import { VAPOUR_J_PER_KG } from './bank.ts';
 import { AIR_CP } from './fan-coil.ts';
 import type { SaturationTable } from './saturation.ts';
 
+const CP = AIR_CP;
+const VAPOUR_J = VAPOUR_J_PER_KG;
 /** Height of a room; furnishings that follow the air, in multiples of the air; hygroscopic buffer likewise. No source. */
 const ROOM_HEIGHT_M = 2.5;
 const FURNISHINGS = 3;
@@ -74,10 +76,10 @@ export class Cabin {
     const { floorM2, heatLossWPerK, capacityKwhPerK } = site.cabin;
     const airKg = floorM2 * ROOM_HEIGHT_M * airDensity;
     const capacity = capacityKwhPerK * 3.6e6 * factors.heatCapacityFactor;
-    const leakage = (airKg * factors.infiltrationPerH * AIR_CP) / 3600;
+    const leakage = (airKg * factors.infiltrationPerH * CP) / 3600;
     const fabric = factors.heatLossFactor * Math.max(0.4 * heatLossWPerK, heatLossWPerK - leakage);
     this.airKg = this.share.map((s) => s * airKg);
-    this.airJPerK = this.share.map((s) => s * airKg * AIR_CP * (1 + FURNISHINGS));
+    this.airJPerK = this.share.map((s) => s * airKg * CP * (1 + FURNISHINGS));
     this.moistKg = this.share.map((s) => s * airKg * MOISTURE_BUFFER);
     this.fabricJPerK = this.share.map((s) => s * capacity * FABRIC_PART);
     this.massJPerK = this.share.map((s) => s * capacity * (1 - FABRIC_PART));
@@ -113,13 +115,13 @@ export class Cabin {
     const heatW = through * (this.airC[0] - this.airC[r]);
     this.heatW[0] -= heatW;
     this.heatW[r] += heatW;
-    const movedKg = (through / AIR_CP) * (this.ratio[0] - this.ratio[r]) * dtS;
+    const movedKg = (through / CP) * (this.ratio[0] - this.ratio[r]) * dtS;
     this.ratio[0] -= movedKg / this.moistKg[0];
     this.ratio[r] += movedKg / this.moistKg[r];
   }
 
   private stepHeat(r: number, dtS: number, air: CabinAir): void {
-    const leak = (this.airKg[r] * air.changesPerH * AIR_CP) / 3600;
+    const leak = (this.airKg[r] * air.changesPerH * CP) / 3600;
     const fabric = this.fabricWPerK[r];
     const mass = this.massWPerK[r];
     const oldC = this.airC[r];
@@ -138,13 +140,13 @@ export class Cabin {
     const changeKg = ((this.airKg[r] * air.changesPerH) / 3600) * (air.outdoorRatio - this.ratio[r]) * dtS;
     this.ratio[r] += (changeKg + this.moistureKgPerS[r] * dtS) / this.moistKg[r];
     this.envelopeKg += changeKg;
-    this.envelopeJ += changeKg * VAPOUR_J_PER_KG;
+    this.envelopeJ += changeKg * VAPOUR_J;
     const most = this.saturation.ratio(this.airC[r]);
     if (this.ratio[r] <= most) return;
     const settledKg = (this.ratio[r] - most) * this.moistKg[r];
     this.ratio[r] = most;
     this.settledKg += settledKg;
-    this.airC[r] += (settledKg * VAPOUR_J_PER_KG) / this.airJPerK[r];
+    this.airC[r] += (settledKg * VAPOUR_J) / this.airJPerK[r];
   }
 
   /** Sensible and latent heat held above 0 °C and dry air, J. */
@@ -152,7 +154,7 @@ export class Cabin {
     let sum = 0;
     for (let r = 0; r < this.rooms; r++) {
       sum += this.airJPerK[r] * this.airC[r] + this.fabricJPerK[r] * this.fabricC[r];
-      sum += this.massJPerK[r] * this.massC[r] + this.moistKg[r] * this.ratio[r] * VAPOUR_J_PER_KG;
+      sum += this.massJPerK[r] * this.massC[r] + this.moistKg[r] * this.ratio[r] * VAPOUR_J;
     }
     return sum;
   }

@@ -1,11 +1,12 @@
 /** Who is home and what they do: home hours of the site file with late arrivals, early departures and evenings out. */
 import type { SiteConfig } from '../config.ts';
 import type { Random } from '../numerics/random.ts';
-import { DAY_MS, localMinuteOfDay, toWall, utcOffsetMs } from '../time.ts';
+import { DAY_MS, localMinuteOfDay, MINUTE_MS, toWall, utcOffsetMs } from '../time.ts';
 
 const WEEKDAYS = ['SU', 'MO', 'TU', 'WE', 'TH', 'FR', 'SA'] as const;
 /** Minutes by which people come and go early or late (standard deviation); no source. */
 const SHIFT_MIN = 30;
+const LOOK_MS = 5 * MINUTE_MS;
 
 interface DayHabits {
   readonly comesLateMin: number;
@@ -22,6 +23,8 @@ export class Household {
   private readonly awayChance: number;
   private habits: DayHabits = { comesLateMin: 0, leavesLateMin: 0, away: false };
   private habitsDay = Number.NaN;
+  private lookedSlot = Number.NaN;
+  private lookedHome = false;
 
   constructor(site: SiteConfig, random: Random, awayChance: number) {
     this.zone = site.site.zone;
@@ -30,8 +33,18 @@ export class Household {
     this.awayChance = awayChance;
   }
 
-  /** Whether somebody is home. Habits change at local noon, so an evening and its night belong together. */
+  /** Whether somebody is home, looked at in steps of five minutes. */
   isHome(atMs: number): boolean {
+    const slot = Math.floor(atMs / LOOK_MS);
+    if (slot !== this.lookedSlot) {
+      this.lookedSlot = slot;
+      this.lookedHome = this.lookHome(slot * LOOK_MS);
+    }
+    return this.lookedHome;
+  }
+
+  /** Habits change at local noon, so an evening and its night belong together. */
+  private lookHome(atMs: number): boolean {
     this.drawHabits(atMs);
     const minute = localMinuteOfDay(this.zone, atMs);
     const weekday = toWall(this.zone, atMs).weekday;

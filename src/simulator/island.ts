@@ -11,6 +11,8 @@ const CELL_RISE_K = 28;
 const BATTERY_PART = 0.96;
 const GENERATOR_STOPS_PCT = 70;
 
+type Battery = NonNullable<IslandConfig['battery']>;
+
 export class Island {
   readonly config: IslandConfig;
   chargeKwh: number;
@@ -55,7 +57,7 @@ export class Island {
     const battery = this.config.battery;
     const fromGenerator = this.generatorOn ? (this.config.generator?.powerW ?? 0) : 0;
     const spareW = this.availableW + fromGenerator - loadW;
-    const chargeW = battery ? this.takeOrGive(dtS, spareW) : 0;
+    const chargeW = battery ? this.takeOrGive(battery, dtS, spareW) : 0;
     const leftW = spareW - chargeW;
     this.powered = leftW >= -1;
     this.curtailedW = Math.max(0, Math.min(this.availableW, leftW));
@@ -64,10 +66,8 @@ export class Island {
   }
 
   /** Power into the battery (negative out of it) within its limits and content, W. */
-  private takeOrGive(dtS: number, spareW: number): number {
-    const { capacityKwh, mostChargeW, mostDischargeW } = this.config.battery as NonNullable<
-      IslandConfig['battery']
-    >;
+  private takeOrGive(battery: Battery, dtS: number, spareW: number): number {
+    const { capacityKwh, mostChargeW, mostDischargeW } = battery;
     const perW = dtS / 3.6e6;
     if (spareW > 0) {
       const roomW = (capacityKwh - this.chargeKwh) / perW / BATTERY_PART;

@@ -54,18 +54,29 @@ const SPREAD: Readonly<TruthFactors> = {
   apertureFactor: 0.18,
 };
 
-export const FACTOR_NAMES = Object.keys(SPREAD) as readonly FactorName[];
+/** A value for every factor, made by name, in this order. */
+function eachFactor(make: (name: FactorName) => number): TruthFactors {
+  return {
+    copFactor: make('copFactor'),
+    capacityFactor: make('capacityFactor'),
+    leakFactor: make('leakFactor'),
+    flowFactor: make('flowFactor'),
+    meltFactor: make('meltFactor'),
+    freezeFactor: make('freezeFactor'),
+    pumpPowerFactor: make('pumpPowerFactor'),
+    coilFactor: make('coilFactor'),
+    heatLossFactor: make('heatLossFactor'),
+    heatCapacityFactor: make('heatCapacityFactor'),
+    apertureFactor: make('apertureFactor'),
+  };
+}
 
 /** Factors that make the plant exactly what the site file says; for analytic tests. */
-export const AS_WRITTEN: TruthFactors = Object.fromEntries(
-  FACTOR_NAMES.map((name) => [name, 1]),
-) as unknown as TruthFactors;
+export const AS_WRITTEN: TruthFactors = eachFactor(() => 1);
 
 /** Draws every factor in a fixed order, so that setting one leaves the others what the seed says. */
 export function drawParameters(random: Random, overrides: TruthOverrides): TruthParameters {
-  const factors = Object.fromEntries(
-    FACTOR_NAMES.map((name) => [name, Math.exp(SPREAD[name] * clipped(random.normal()))]),
-  ) as unknown as TruthFactors;
+  const factors = eachFactor((name) => Math.exp(SPREAD[name] * clipped(random.normal())));
   return {
     ...factors,
     infiltrationPerH: 0.3 + 0.4 * random.next(),
@@ -82,10 +93,7 @@ const clipped = (normal: number): number => Math.max(-2, Math.min(2, normal));
 
 /** The factors after some days of drift; never below a hundredth of their start. */
 export function driftedFactors(parameters: TruthParameters, days: number): TruthFactors {
-  return Object.fromEntries(
-    FACTOR_NAMES.map((name) => [
-      name,
-      parameters[name] * Math.max(0.01, 1 + (parameters.driftPerDay[name] ?? 0) * days),
-    ]),
-  ) as unknown as TruthFactors;
+  return eachFactor(
+    (name) => parameters[name] * Math.max(0.01, 1 + (parameters.driftPerDay[name] ?? 0) * days),
+  );
 }

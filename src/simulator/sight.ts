@@ -1,5 +1,5 @@
 /** What each point would show of the true plant if its probe were perfect. */
-import { pointSpec, type PointId } from '../points.ts';
+import type { PointId } from '../points.ts';
 import { LAYERS } from './bank-shape.ts';
 import { upperRoomNames, type Plant } from './plant.ts';
 import type { Sight } from './probes.ts';
@@ -10,12 +10,11 @@ const PIPE_AT_REST = 0.5;
 /** Current of a resting machine's electronics, W. No source. */
 const STANDBY_W = 1.5;
 
-export type View = () => number;
+type View = () => number;
 
 /** One view for each point that the plant can show; points that come from elsewhere (forecast, prices) have none. */
-export function viewsOf(plant: Plant): Map<PointId, View> {
-  const views: [string, View][] = [...bankViews(plant), ...powerViews(plant), ...airViews(plant)];
-  return new Map(views.filter(([id]) => pointSpec(id) !== null) as [PointId, View][]);
+function viewsOf(plant: Plant): Map<string, View> {
+  return new Map([...bankViews(plant), ...powerViews(plant), ...airViews(plant)]);
 }
 
 function bankViews(plant: Plant): [string, View][] {
@@ -24,7 +23,7 @@ function bankViews(plant: Plant): [string, View][] {
     bank.layers.temperatureC(Math.min(LAYERS - 1, Math.floor(part * LAYERS)));
   const electrodeKg = plant.site.bank.electrodeIceKg;
   const emptyMm = plant.site.bank.emptyLevelMm;
-  const startMm = (bank.totalKg() / plant.site.bank.waterAreaM2) * 1;
+  const startMm = bank.totalKg() / plant.site.bank.waterAreaM2;
   const leaving = (): number =>
     plant.flowKgPerS > 0
       ? bank.leavingC

@@ -5,7 +5,7 @@
 import type { SiteConfig } from '../config.ts';
 import { createRandom } from '../numerics/random.ts';
 import type { Machine } from '../order.ts';
-import { pointSpec, type PointId, type Reading } from '../points.ts';
+import { isPointId, pointSpec, type PointId, type Reading } from '../points.ts';
 import { MINUTE_MS } from '../time.ts';
 import { VAPOUR_J_PER_KG } from './bank.ts';
 import type { Balance } from './ledger.ts';
@@ -149,9 +149,9 @@ class TruthSimulator implements Simulator {
 /** One probe for each configured point that the plant can show, each with a stream of its own. */
 function buildProbes(o: SimulatorOptions, sight: { has(point: PointId): boolean }): Probe[] {
   const random = createRandom(o.seed).fork('probes');
-  return (Object.keys(o.site.points) as PointId[]).flatMap((point) => {
+  return Object.keys(o.site.points).flatMap((point) => {
     const spec = pointSpec(point);
-    if (!spec || !sight.has(point)) return [];
+    if (!spec || !isPointId(point) || !sight.has(point)) return [];
     const own = random.fork(point);
     const faults = { ...ordinaryProbe(point, spec, own), ...o.probes?.[point] };
     return [new Probe(point, faults, own.fork('run'), o.startMs)];
