@@ -7,6 +7,7 @@ import type { SiteConfig } from '../config.ts';
 import type { Mode } from '../commands.ts';
 import type { CycleRecord } from '../record.ts';
 import { formatInstant, type Night } from '../time.ts';
+import type { Display } from './display.ts';
 import type { ProbeState } from './coverage.ts';
 import type { NightSheet } from './night-schema.ts';
 import { energyKwh, extreme, hoursOf, rounded, type Span } from './spans.ts';
@@ -85,6 +86,7 @@ export interface BalanceInput {
   readonly night: Night;
   readonly probes: readonly ProbeState[];
   readonly doubtfulMinutes: number;
+  readonly show: Display;
 }
 
 export function balanceOf(input: BalanceInput): Balance {
@@ -120,7 +122,8 @@ export function balanceOf(input: BalanceInput): Balance {
     heardOutKwh: heard.kwh === null ? null : rounded(heard.kwh, 3),
     heardOutHoursPct: rounded(heard.hoursPct, 1),
     verdict,
-    sentence: sentenceFor(verdict, residualKwh, residualPct, uncertaintyKwh, culprit),
+    culprit,
+    sentence: sentenceFor(verdict, residualKwh, residualPct, uncertaintyKwh, culprit, input.show),
   };
 }
 
@@ -232,13 +235,14 @@ function sentenceFor(
   pct: number | null,
   uncertaintyKwh: number,
   culprit: string,
+  show: Display,
 ): string {
   if (pct === null) return 'Too little heat moved for a balance.';
-  const amount = `${Math.abs(residualKwh).toFixed(2)} kWh (${Math.abs(pct).toFixed(1)} % of throughput)`;
+  const amount = `${show.heat(Math.abs(residualKwh))} ${show.heatUnit} (${Math.abs(pct).toFixed(1)} % of throughput)`;
   const what = `${amount} of cold ${residualKwh > 0 ? 'went unaccounted' : 'came unaccounted'}`;
   if (verdict === 'closes') return `The balance closes to ${amount}.`;
   if (verdict === 'within-estimate') {
-    return `${what}, within the ${uncertaintyKwh.toFixed(2)} kWh that the ice estimate leaves open; first to look at: ${culprit}.`;
+    return `${what}, within the ${show.heat(uncertaintyKwh)} ${show.heatUnit} that the ice estimate leaves open; first to look at: ${culprit}.`;
   }
   return `${what}; most likely ${culprit}.`;
 }

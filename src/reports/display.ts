@@ -20,7 +20,10 @@ export interface Display {
   money(amount: number): string;
   price(perKwh: number): string;
   clock(instant: string): string;
+  /** "Tuesday 14 July 2026". */
   day(instant: string): string;
+  /** "14 July 2026". */
+  date(instant: string): string;
 }
 
 const WEEKDAYS = ['Sunday', 'Monday', 'Tuesday', 'Wednesday', 'Thursday', 'Friday', 'Saturday'] as const;
@@ -70,7 +73,9 @@ export function displayFor(site: { units: DisplayUnits; currency: string; zone: 
     money: (amount) => fixed(amount, digits),
     price: (perKwh) => fixed(perKwh, digits + 1),
     clock: (instant) => localClock(site.zone, at(instant)),
-    day: (instant) => dayWords(site.zone, at(instant)),
+    day: (instant) =>
+      `${WEEKDAYS[toWall(site.zone, at(instant)).weekday]} ${dateWords(site.zone, at(instant))}`,
+    date: (instant) => dateWords(site.zone, at(instant)),
   };
 }
 
@@ -81,10 +86,9 @@ function minorDigits(currency: string): number {
   );
 }
 
-/** "Tuesday 14 July 2026". */
-function dayWords(zone: string, atMs: number): string {
+function dateWords(zone: string, atMs: number): string {
   const wall = toWall(zone, atMs);
-  return `${WEEKDAYS[wall.weekday]} ${wall.day} ${MONTHS[wall.month - 1]} ${wall.year}`;
+  return `${wall.day} ${MONTHS[wall.month - 1]} ${wall.year}`;
 }
 
 /** "July 2026" of a local month given as `YYYY-MM`. */

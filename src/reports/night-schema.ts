@@ -31,6 +31,7 @@ const balance = z.strictObject({
   heardOutKwh: describe(maybe, 'heat brought in, from heard flow and temperatures alone'),
   heardOutHoursPct: describe(number, 'of the discharging hours in which these were heard'),
   verdict: z.enum(['closes', 'within-estimate', 'open', 'unknown']),
+  culprit: describe(z.string(), 'where to look when it does not close; empty otherwise'),
   sentence: z.string(),
 });
 
@@ -140,6 +141,7 @@ export const nightSheetSchema = z
       units: z.enum(['SI', 'IP']),
     }),
     night: z.strictObject({ date: z.iso.date(), start: instant, end: instant, hours: number }),
+    summary: z.array(z.string()).describe('the night in a few sentences, in the units of the site'),
     revision: z.int().min(1),
     issued: instant,
     whole: z.boolean(),

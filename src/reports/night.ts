@@ -12,12 +12,14 @@ import { CAUTION } from './caution.ts';
 import { likeForLike, type WayRun } from './compare.ts';
 import { coverageOf, probesOf, type ProbeState } from './coverage.ts';
 import { copOf, electricityOf, machineMoney, supplyOf } from './electricity.ts';
+import { displayFor } from './display.ts';
 import { conditionsOf, figuresOf } from './figures.ts';
 import { forecastOf, noonPlan } from './forecast-check.ts';
 import { NIGHT_SHEET_SCHEMA, type NightSheet } from './night-schema.ts';
 import { commandsOf, interlocksOf, wishesOf } from './orders.ts';
 import { comfortOf, deliveredOf, weatherOf } from './service.ts';
 import { rounded, roundedOrNull, spansOf, type Span } from './spans.ts';
+import { summaryOf } from './summary.ts';
 import { traceOf } from './trace.ts';
 
 export type { NightSheet } from './night-schema.ts';
@@ -54,11 +56,13 @@ export function nightSheet(input: NightInput): NightSheet {
   const start = iceAtStart(spans, before.at(-1) ?? null);
   const probes = input.probes ?? [];
   const coverage = coverageOf(spans, night, input.issuedMs, site.site.zone);
-  const balance = balanceOf({ spans, start, night, probes, doubtfulMinutes: coverage.clockDoubtfulMinutes });
+  const show = displayFor(site.site);
+  const doubtfulMinutes = coverage.clockDoubtfulMinutes;
+  const balance = balanceOf({ spans, start, night, probes, show, doubtfulMinutes });
   const electricity = electricityOf(site, spans);
   const worth = worthOfIce(site, spans, balance.inKwh);
-  return {
-    schema: NIGHT_SHEET_SCHEMA,
+  const figures = {
+    schema: NIGHT_SHEET_SCHEMA as typeof NIGHT_SHEET_SCHEMA,
     site: headOf(site),
     night: nightHead(night),
     revision: input.revision,
@@ -94,7 +98,8 @@ export function nightSheet(input: NightInput): NightSheet {
     conditions: conditionsOf(spans),
     trace: traceOf(spans, night),
     caution: CAUTION,
-  };
+  } satisfies Omit<NightSheet, 'summary'>;
+  return { ...figures, summary: summaryOf(figures, show) };
 }
 
 function headOf(site: SiteConfig): NightSheet['site'] {

@@ -13,8 +13,8 @@ export function wrapped(text: string, width: number = PAPER_WIDTH): string[] {
       line = word;
     }
     while (lengthOf(line) > width) {
-      lines.push([...line].slice(0, width).join(''));
-      line = [...line].slice(width).join('');
+      lines.push(Array.from(line).slice(0, width).join(''));
+      line = Array.from(line).slice(width).join('');
     }
   }
   if (line !== '') lines.push(line);
@@ -49,14 +49,21 @@ export function table(rows: readonly (readonly string[])[], leftColumns = 1): st
   );
 }
 
-/** Two texts on one line, the second at the right margin. */
+/** Two texts on one line, the second at the right margin and cut where it does not fit. */
 export function bothEnds(left: string, right: string): string {
-  return `${left}${' '.repeat(Math.max(1, PAPER_WIDTH - lengthOf(left) - lengthOf(right)))}${right}`;
+  const room = PAPER_WIDTH - lengthOf(left) - 1;
+  const cut =
+    lengthOf(right) > room
+      ? `${Array.from(right)
+          .slice(0, room - 1)
+          .join('')}\u2026`
+      : right;
+  return `${left}${' '.repeat(PAPER_WIDTH - lengthOf(left) - lengthOf(cut))}${cut}`;
 }
 
 /** Characters as a reader counts them. */
 export function lengthOf(text: string): number {
-  return [...text].length;
+  return Array.from(text).length;
 }
 
 export function padEnd(text: string, width: number): string {

@@ -3,7 +3,6 @@ import { displayFor, fixed, type Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
 import { bothEnds, heading, noted, rule, table, wrapped } from './paper.ts';
 import { stripOf } from './strip.ts';
-import { summaryOf } from './summary.ts';
 
 const MARGIN = 12;
 const MOST_COMMANDS = 14;
@@ -14,7 +13,7 @@ export function renderText(sheet: NightSheet): string {
   const lines = [
     ...titleBlock(sheet, show),
     '',
-    ...summaryOf(sheet, show).flatMap((sentence) => wrapped(sentence)),
+    ...sheet.summary.flatMap((sentence) => wrapped(sentence)),
     ...(sheet.partialBecause === '' ? [] : noted('PARTIAL', `${sheet.partialBecause}.`, MARGIN)),
     '',
     ...stripOf(sheet, show),
@@ -40,15 +39,16 @@ export function renderText(sheet: NightSheet): string {
 function titleBlock(sheet: NightSheet, show: Display): string[] {
   const { night } = sheet;
   const hours = night.hours === 24 ? '' : ` (${night.hours} h)`;
-  const clock =
-    sheet.clockDoubtfulMinutes > 0 ? `clock doubtful ${sheet.clockDoubtfulMinutes} min` : 'clock set';
   return [
     bothEnds('NIGHT SHEET', sheet.site.name),
     bothEnds(show.day(night.start), `night ${night.date}, revision ${sheet.revision}`),
     bothEnds(
       `noon to noon${hours}, ${sheet.whole ? 'whole' : `partial, ${fixed(sheet.coveredPct, 0)} % recorded`}`,
-      `issued ${show.day(sheet.issued)} ${show.clock(sheet.issued)}, ${clock}`,
+      `issued ${show.date(sheet.issued)} ${show.clock(sheet.issued)}`,
     ),
+    ...(sheet.clockDoubtfulMinutes > 0
+      ? [bothEnds('', `clock doubtful for ${sheet.clockDoubtfulMinutes} min`)]
+      : []),
     rule(),
   ];
 }

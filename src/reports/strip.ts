@@ -61,7 +61,7 @@ function axis(sheet: NightSheet, show: Display): string {
     const clock = show.clock(formatInstant(atMs));
     const [hour, minute] = clock.split(':').map(Number);
     if (minute !== 0 || hour % 3 !== 0 || column < free) continue;
-    for (const [offset, letter] of [...clock].entries()) cells[column + offset] = letter;
+    for (const [offset, letter] of clock.split('').entries()) cells[column + offset] = letter;
     free = column + 6;
   }
   return cells.join('');

@@ -2,11 +2,13 @@
 import type { Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
 
-export function summaryOf(sheet: NightSheet, show: Display): string[] {
+type Figures = Omit<NightSheet, 'summary'>;
+
+export function summaryOf(sheet: Figures, show: Display): string[] {
   return [iceSentence(sheet, show), moneySentence(sheet, show), comfortSentence(sheet, show)];
 }
 
-function iceSentence(sheet: NightSheet, show: Display): string {
+function iceSentence(sheet: Figures, show: Display): string {
   const { made, melted, leaked, ice } = sheet;
   return (
     `Made ${show.heat(made.kwh)}, melted ${show.heat(melted.kwh)} and leaked ${show.heat(leaked.kwh)} ${show.heatUnit} of ice; ` +
@@ -14,7 +16,7 @@ function iceSentence(sheet: NightSheet, show: Display): string {
   );
 }
 
-function moneySentence(sheet: NightSheet, show: Display): string {
+function moneySentence(sheet: Figures, show: Display): string {
   const { electricity, comparisons } = sheet;
   const spent = `${electricity.totalKwh.toFixed(2)} kWh of electricity for ${show.money(electricity.money)} ${show.currency}`;
   const against = comparisons.find((one) => one.strategy === 'no-storage') ?? comparisons.at(0);
@@ -28,7 +30,7 @@ function moneySentence(sheet: NightSheet, show: Display): string {
   return `${spent}, ${amount} ${against.savedMoney >= 0 ? 'less' : 'more'} than with ${name}${short}.`;
 }
 
-function comfortSentence(sheet: NightSheet, show: Display): string {
+function comfortSentence(sheet: Figures, show: Display): string {
   const { comfort } = sheet;
   if (comfort.warmestC === null || comfort.warmestAt === null)
     return 'No room temperature was heard while somebody was home.';
