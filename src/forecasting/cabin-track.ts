@@ -66,7 +66,7 @@ function followFabric(
   outdoorC: number,
   sunWPerM2: number,
 ): { meanC: number; endC: number } {
-  const input = { outdoorC, sunWPerM2, heatW: 0 };
+  const input = { outdoorC, sunWPerM2 };
   let fabricC = beginC;
   let sum = 0;
   for (let step = 1; step <= STEPS; step += 1) {

@@ -20,16 +20,10 @@ export interface CabinParameters {
   readonly gainsW: readonly number[];
 }
 
-export interface CabinState {
-  readonly airC: number;
-  readonly fabricC: number;
-}
-
+/** What acts on the fabric over a step. */
 export interface CabinInput {
   readonly outdoorC: number;
   readonly sunWPerM2: number;
-  /** All heat brought into the air, cooling counted negative. */
-  readonly heatW: number;
 }
 
 /** Air and what stands in it take up some times the heat of the air alone (common practice, no source). */
@@ -68,24 +62,55 @@ export function lossWPerK(p: CabinParameters): number {
   );
 }
 
-/** One step with the air free to move. */
-export function stepFree(p: CabinParameters, from: CabinState, input: CabinInput, stepS: number): CabinState {
-  const airRate = p.airJPerK / stepS;
-  const fabricRate = p.fabricJPerK / stepS;
-  const a = airRate + p.airFabricWPerK + p.airOutdoorWPerK;
-  const d = fabricRate + p.airFabricWPerK + p.fabricOutdoorWPerK;
-  const airIn =
-    airRate * from.airC +
-    p.airOutdoorWPerK * input.outdoorC +
-    p.airApertureM2 * input.sunWPerM2 +
-    input.heatW;
-  const fabricIn =
-    fabricRate * from.fabricC + p.fabricOutdoorWPerK * input.outdoorC + p.fabricApertureM2 * input.sunWPerM2;
-  const determinant = a * d - p.airFabricWPerK * p.airFabricWPerK;
-  return {
-    airC: (d * airIn + p.airFabricWPerK * fabricIn) / determinant,
-    fabricC: (a * fabricIn + p.airFabricWPerK * airIn) / determinant,
-  };
+/** Runs a cabin on in steps of one length; the state is its own and moves with each step. */
+export class CabinRun {
+  airC: number;
+  fabricC: number;
+  private readonly p: CabinParameters;
+  private readonly airRate: number;
+  private readonly fabricRate: number;
+  private readonly airSum: number;
+  private readonly fabricSum: number;
+  private readonly determinant: number;
+
+  constructor(p: CabinParameters, airC: number, fabricC: number, stepS: number) {
+    this.p = p;
+    this.airC = airC;
+    this.fabricC = fabricC;
+    this.airRate = p.airJPerK / stepS;
+    this.fabricRate = p.fabricJPerK / stepS;
+    this.airSum = this.airRate + p.airFabricWPerK + p.airOutdoorWPerK;
+    this.fabricSum = this.fabricRate + p.airFabricWPerK + p.fabricOutdoorWPerK;
+    this.determinant = this.airSum * this.fabricSum - p.airFabricWPerK * p.airFabricWPerK;
+  }
+
+  /** Heat that would have to be taken out, beside `heatW`, to end a step at `airC`. Negative: to be added. */
+  heatToEndAt(airC: number, outdoorC: number, sunWPerM2: number, heatW: number): number {
+    const fabricIn = this.fabricIn(outdoorC, sunWPerM2);
+    const through = this.p.airFabricWPerK * fabricIn - this.determinant * airC;
+    return this.airIn(outdoorC, sunWPerM2) + heatW + through / this.fabricSum;
+  }
+
+  /** One step with `heatW` brought into the air. */
+  step(outdoorC: number, sunWPerM2: number, heatW: number): void {
+    const airIn = this.airIn(outdoorC, sunWPerM2) + heatW;
+    const fabricIn = this.fabricIn(outdoorC, sunWPerM2);
+    const between = this.p.airFabricWPerK;
+    this.airC = (this.fabricSum * airIn + between * fabricIn) / this.determinant;
+    this.fabricC = (this.airSum * fabricIn + between * airIn) / this.determinant;
+  }
+
+  private airIn(outdoorC: number, sunWPerM2: number): number {
+    return this.airRate * this.airC + this.p.airOutdoorWPerK * outdoorC + this.p.airApertureM2 * sunWPerM2;
+  }
+
+  private fabricIn(outdoorC: number, sunWPerM2: number): number {
+    return (
+      this.fabricRate * this.fabricC +
+      this.p.fabricOutdoorWPerK * outdoorC +
+      this.p.fabricApertureM2 * sunWPerM2
+    );
+  }
 }
 
 /** The fabric after a step that ends with the air at a known temperature. */
@@ -103,23 +128,6 @@ export function stepFabric(
     p.fabricApertureM2 * input.sunWPerM2 +
     p.airFabricWPerK * airC;
   return fabricIn / (fabricRate + p.airFabricWPerK + p.fabricOutdoorWPerK);
-}
-
-/** Heat that has to be taken out of the air, beside `input.heatW`, to end a step at `airC`. Negative: to be added. */
-export function heatToHoldW(
-  p: CabinParameters,
-  from: CabinState,
-  airC: number,
-  input: CabinInput,
-  stepS: number,
-): { takeW: number; fabricC: number } {
-  const fabricC = stepFabric(p, from.fabricC, airC, input, stepS);
-  const inflowW =
-    p.airFabricWPerK * (fabricC - airC) +
-    p.airOutdoorWPerK * (input.outdoorC - airC) +
-    p.airApertureM2 * input.sunWPerM2 +
-    input.heatW;
-  return { takeW: inflowW - (p.airJPerK / stepS) * (airC - from.airC), fabricC };
 }
 
 /** Fabric that is at rest with the air and outdoors as they are. */

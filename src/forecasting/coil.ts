@@ -4,7 +4,7 @@
  */
 import type { SiteConfig } from '../config.ts';
 import { effectiveness } from '../physics/heat-exchanger.ts';
-import { saturationHumidityRatio, standardPressurePa } from '../physics/moist-air.ts';
+import type { Saturation } from './saturation.ts';
 
 /** Melt water as it usually comes from a bank with ice, °C (common practice, no source). */
 const LEAVING_C = 4;
@@ -23,8 +23,7 @@ export interface Coil {
   readonly fanW: number;
 }
 
-export function coilOf(config: SiteConfig): Coil {
-  const { delivery, site } = config;
+export function coilOf({ delivery }: SiteConfig, saturation: Saturation): Coil {
   const airKgPerS = (delivery.airM3PerH / 3600) * AIR_KG_PER_M3;
   const airWPerK = airKgPerS * AIR_J_PER_KG_K;
   const waterWPerK = (delivery.flowLPerMin / 60) * WATER_J_PER_KG_K;
@@ -35,14 +34,13 @@ export function coilOf(config: SiteConfig): Coil {
     'counterflow',
   );
   const touching = 1 - Math.exp(-delivery.coilWPerK / airWPerK);
-  const pressurePa = standardPressurePa(site.elevationM);
   const grossW = (roomC: number): number => share * leastWPerK * Math.max(0, roomC - LEAVING_C);
   return {
     fanW: delivery.fanW,
     sensibleMostW: (roomC) => Math.max(0, grossW(roomC) - delivery.fanW),
     latentMostW: (roomC, roomW) => {
       const surfaceC = roomC - grossW(roomC) / airWPerK / touching;
-      const dryness = roomW - saturationHumidityRatio(surfaceC, pressurePa);
+      const dryness = roomW - saturation(surfaceC);
       return airKgPerS * touching * Math.max(0, dryness) * VAPORISATION_J_PER_KG;
     },
   };

@@ -3,19 +3,19 @@
  * the cooling that would hold the comfort limit. Everything that it says is drawn from a seed and the records alone.
  */
 import type { SiteConfig } from '../config.ts';
-import { quantile } from '../numerics/quantile.ts';
 import { createRandom } from '../numerics/random.ts';
 import type { CycleRecord } from '../record.ts';
 import { HOUR_MS } from '../time.ts';
 import { BIN_DAYS } from './bins.ts';
 import { blendAt, blended, hubByLead, learnBlends, type Blend } from './blend.ts';
+import { ensembleQuantile } from './ensemble.ts';
 import { HourBook, HourGatherer } from './hours.ts';
 import { issueOf, keepIssue, type Issue } from './issues.ts';
 import { knowsSentence } from './knows.ts';
 import { packMemory, unpackMemory } from './memory.ts';
 import { createOwnCabin, unexplainedAhead } from './own-cabin.ts';
 import { createOwnWeather, weatherSeries } from './own-weather.ts';
-import { runScenario, scenarioFrame, type LastSeen, type Scenario } from './scenarios.ts';
+import { loadPlantOf, runScenario, scenarioFrame, type LastSeen, type Scenario } from './scenarios.ts';
 import { eveningSlots, leadsFor, slotGrid } from './slots.ts';
 import { drawTrajectories, type Happened } from './trajectories.ts';
 
@@ -55,6 +55,7 @@ export function createForecaster(
   const book = new HourBook(BIN_DAYS * 24);
   for (const line of remembered?.lines ?? []) book.add(line);
   const weather = createOwnWeather(config);
+  const plant = loadPlantOf(config);
   const cabin = createOwnCabin(config, remembered?.cabin ?? null);
   let issues: readonly Issue[] = remembered?.issues ?? [];
   let seen: LastSeen = { outdoorC: null, roomC: null, atMs: 0 };
@@ -81,7 +82,7 @@ export function createForecaster(
       const hubC = external ? hubByLead(external, lastHour, leads) : null;
       const past = createPast(config, book, issues, lastHour, leads, cabin.track(book).unexplainedW);
       issues = keepIssue(issues, issueOf(lastHour, ahead, hubC));
-      const frame = scenarioFrame(config, book, cabin, grid, lastHour, seen, nowMs);
+      const frame = scenarioFrame(config, plant, book, cabin, grid, lastHour, seen, nowMs);
       const random = createRandom(options.seed).fork(`forecast ${lastHour}`);
       const errors = drawTrajectories(
         past.comparable(hubC !== null),
@@ -123,7 +124,7 @@ function eveningLoad(
       (scenario.loadW.subarray(0, slots).reduce((sum, watts) => sum + watts, 0) * slotMs) / HOUR_MS / 1000,
   );
   const eveningLoadKwh = loads.reduce((sum, load) => sum + load, 0) / loads.length;
-  return { eveningLoadKwh, eveningLoadHighKwh: quantile(loads, 0.9) };
+  return { eveningLoadKwh, eveningLoadHighKwh: ensembleQuantile(loads, 0.9) };
 }
 
 function knowsOf(

@@ -3,11 +3,13 @@
  * is home or it stays below the limit, held at the limit otherwise as far as the coil can. Sensible heat, moisture and
  * the heat of the fans are counted; dry air is used first where the site has it.
  */
-import { heatToHoldW, stepFree, type CabinParameters, type CabinState } from './cabin.ts';
+import { CabinRun, type CabinParameters } from './cabin.ts';
 import { VAPORISATION_J_PER_KG, type Coil } from './coil.ts';
 import type { DryAir } from './dry-air.ts';
 
-export interface RoomState extends CabinState {
+export interface RoomState {
+  readonly airC: number;
+  readonly fabricC: number;
   /** Humidity ratio of the room air, kg/kg. */
   readonly ratio: number;
 }
@@ -36,9 +38,11 @@ export interface LoadWeather {
   readonly disturbanceW: Float64Array;
 }
 
-export interface Load {
+export interface HeldLoad {
   readonly loadW: Float64Array;
   readonly latentW: Float64Array;
+  /** Net of the heat of the fans. */
+  readonly sensibleW: Float64Array;
   /** Degree-hours above the limit that stay although the coil runs in full, K h. */
   readonly warmKh: number;
 }
@@ -50,73 +54,49 @@ const LEAKAGE_PER_H = 0.5;
 const MOISTURE_BUFFER = 8;
 const PERSON_KG_PER_S = 0.05 / 3600;
 
+/** A temperature this little above the limit is rounding, K. */
+const ROUNDING_K = 1e-6;
+
 /** Runs the cabin through one weather. `given` (W, sensible) replaces what would be delivered, slot by slot. */
 export function holdLimit(
   frame: LoadFrame,
   start: RoomState,
   weather: LoadWeather,
   given: Float64Array | null = null,
-): Load & { readonly sensibleW: Float64Array } {
+): HeldLoad {
+  const { cabin, coil, dryAir } = frame;
   const count = frame.limitC.length;
-  const loadW = new Float64Array(count);
-  const latentW = new Float64Array(count);
-  const sensibleW = new Float64Array(count);
-  const hours = frame.slotMs / 3_600_000;
-  let state: RoomState = start;
+  const stepS = frame.slotMs / 1000;
+  const room = new CabinRun(cabin, start.airC, start.fabricC, stepS);
+  const held = {
+    loadW: new Float64Array(count),
+    latentW: new Float64Array(count),
+    sensibleW: new Float64Array(count),
+  };
+  let ratio = start.ratio;
   let warmKh = 0;
   for (let i = 0; i < count; i += 1) {
-    const step = stepSlot(frame, state, weather, i, given?.[i] ?? null);
-    sensibleW[i] = step.sensibleW;
-    latentW[i] = step.latentW;
-    loadW[i] = step.sensibleW === 0 ? 0 : step.sensibleW + step.fanW + step.latentW;
-    state = step.state;
     const limitC = frame.limitC[i];
-    if (limitC !== null) warmKh += Math.max(0, state.airC - limitC - ROUNDING_K) * hours;
+    const outdoorC = weather.outdoorC[i];
+    const sun = weather.sunWPerM2[i];
+    const heatW = frame.gainsW[i] + (limitC === null ? 0 : cabin.homeW) + weather.disturbanceW[i];
+    const neededW = limitC === null ? 0 : Math.max(0, room.heatToEndAt(limitC, outdoorC, sun, heatW));
+    const dryW =
+      neededW > 0 && dryAir && limitC !== null
+        ? Math.min(neededW, dryAir(limitC, outdoorC, weather.outdoorRatio[i]))
+        : 0;
+    const mostW = coil.sensibleMostW(Math.max(room.airC, limitC ?? 0));
+    const sensibleW = given ? given[i] : Math.min(mostW, neededW - dryW);
+    const duty = mostW > 0 ? Math.min(1, sensibleW / mostW) : 0;
+    const latentW = duty > 0 ? duty * frame.latentScale * coil.latentMostW(room.airC, ratio) : 0;
+    room.step(outdoorC, sun, heatW - sensibleW - dryW);
+    ratio = nextRatio(frame, ratio, weather.outdoorRatio[i], latentW, limitC !== null, stepS);
+    held.sensibleW[i] = sensibleW;
+    held.latentW[i] = latentW;
+    held.loadW[i] = sensibleW + duty * coil.fanW + latentW;
+    if (limitC !== null) warmKh += Math.max(0, room.airC - limitC - ROUNDING_K) * (stepS / 3600);
   }
-  return { loadW, latentW, sensibleW, warmKh };
-}
-
-const ROUNDING_K = 1e-6;
-
-interface SlotStep {
-  readonly state: RoomState;
-  readonly sensibleW: number;
-  readonly latentW: number;
-  readonly fanW: number;
-}
-
-function stepSlot(
-  frame: LoadFrame,
-  from: RoomState,
-  weather: LoadWeather,
-  i: number,
-  givenW: number | null,
-): SlotStep {
-  const { cabin, coil } = frame;
-  const limitC = frame.limitC[i];
-  const stepS = frame.slotMs / 1000;
-  const home = limitC === null ? 0 : 1;
-  const input = {
-    outdoorC: weather.outdoorC[i],
-    sunWPerM2: weather.sunWPerM2[i],
-    heatW: frame.gainsW[i] + cabin.homeW * home + weather.disturbanceW[i],
-  };
-  const free = stepFree(cabin, from, input, stepS);
-  const mostW = coil.sensibleMostW(Math.max(from.airC, limitC ?? from.airC));
-  let next: CabinState = free;
-  let sensibleW = 0;
-  if (givenW !== null || (limitC !== null && free.airC > limitC)) {
-    const heldC = limitC ?? free.airC;
-    const held = heatToHoldW(cabin, from, heldC, input, stepS);
-    const dryW = home && frame.dryAir ? frame.dryAir(heldC, input.outdoorC, weather.outdoorRatio[i]) : 0;
-    sensibleW = givenW ?? Math.min(mostW, Math.max(0, held.takeW - dryW));
-    const takenW = sensibleW + Math.max(0, Math.min(dryW, held.takeW));
-    next = stepFree(cabin, from, { ...input, heatW: input.heatW - takenW }, stepS);
-  }
-  const duty = mostW > 0 ? Math.min(1, sensibleW / mostW) : 0;
-  const latentW = duty > 0 ? duty * frame.latentScale * coil.latentMostW(from.airC, from.ratio) : 0;
-  const ratio = nextRatio(frame, from.ratio, weather.outdoorRatio[i], latentW, home, stepS);
-  return { state: { ...next, ratio }, sensibleW, latentW, fanW: duty * coil.fanW };
+  return { ...held, warmKh };
 }
 
 /** Room moisture after a step, implicit in the leakage. */
@@ -125,13 +105,13 @@ function nextRatio(
   ratio: number,
   outdoorRatio: number,
   latentW: number,
-  home: number,
+  home: boolean,
   stepS: number,
 ): number {
   const airKg = frame.floorM2 * ROOM_HEIGHT_M * AIR_KG_PER_M3;
   const leakKgPerS = (airKg * LEAKAGE_PER_H) / 3600;
   const storedRate = (airKg * MOISTURE_BUFFER) / stepS;
-  const sourceKgPerS = frame.people * home * PERSON_KG_PER_S - latentW / VAPORISATION_J_PER_KG;
+  const sourceKgPerS = (home ? frame.people * PERSON_KG_PER_S : 0) - latentW / VAPORISATION_J_PER_KG;
   return Math.max(
     0,
     (storedRate * ratio + leakKgPerS * outdoorRatio + sourceKgPerS) / (storedRate + leakKgPerS),
@@ -146,7 +126,7 @@ export function warmKhPerKwh(
   frame: LoadFrame,
   start: RoomState,
   weather: LoadWeather,
-  full: Load & { readonly sensibleW: Float64Array },
+  full: HeldLoad,
 ): number {
   const loadKwh = (full.loadW.reduce((sum, w) => sum + w, 0) * frame.slotMs) / 3.6e9;
   if (!(loadKwh > 0.05)) return 0;

@@ -1,9 +1,8 @@
 /** Weather from the site's own history: outdoor temperature, dew point and clearness for the hours ahead. */
 import type { SiteConfig } from '../config.ts';
-import { HOUR_MS } from '../time.ts';
 import { fitAnomaly, predictAnomaly, type AnomalyModel } from './anomaly.ts';
 import { BIN_DAYS, type HourSeries } from './bins.ts';
-import { designBinsC, USUAL_CLEARNESS } from './design-weather.ts';
+import { designBinsC, seasonK, USUAL_CLEARNESS } from './design-weather.ts';
 import type { HourBook } from './hours.ts';
 import { MOST_CLEARNESS, clearnessOf } from './sky.ts';
 
@@ -76,14 +75,14 @@ export function createOwnWeather(config: SiteConfig): OwnWeather {
       if (!trained || trained.atHour !== atHour || trained.leads < leads) {
         trained = train(config, book, atHour, leads);
       }
-      return predictFrom(trained, weatherSeries(config, book, lastHour));
+      return predictFrom(config, trained, weatherSeries(config, book, lastHour), lastHour);
     },
   };
 }
 
 function train(config: SiteConfig, book: HourBook, atHour: number, leads: number): Trained {
-  const { outdoorC, dewC, clearness } = weatherSeries(config, book, atHour);
-  const prior = designBinsC(config, atHour * HOUR_MS);
+  const { outdoorC, dewC, clearness } = seasonless(config, weatherSeries(config, book, atHour));
+  const prior = designBinsC(config);
   const flat = (value: number): number[] => Array.from({ length: 24 }, () => value);
   return {
     atHour,
@@ -94,12 +93,28 @@ function train(config: SiteConfig, book: HourBook, atHour: number, leads: number
   };
 }
 
-function predictFrom(trained: Trained, series: WeatherSeries): HoursAhead {
-  const outdoorC = predictAnomaly(trained.outdoor, series.outdoorC, series.dewC);
+function predictFrom(
+  config: SiteConfig,
+  trained: Trained,
+  measured: WeatherSeries,
+  lastHour: number,
+): HoursAhead {
+  const series = seasonless(config, measured);
+  const seasonal = (values: Float64Array): Float64Array =>
+    values.map((value, i) => value + seasonK(config, lastHour + i + 1));
   const clearness = predictAnomaly(trained.clearness, series.clearness, null);
   return {
-    outdoorC,
-    dewC: predictAnomaly(trained.dew, series.dewC, null),
+    outdoorC: seasonal(predictAnomaly(trained.outdoor, series.outdoorC, series.dewC)),
+    dewC: seasonal(predictAnomaly(trained.dew, series.dewC, null)),
     clearness: clearness.map((value) => Math.min(MOST_CLEARNESS, Math.max(0, value))),
   };
+}
+
+/** Temperatures with the usual course of the year taken out, so that bins of the last weeks do not lag behind it. */
+function seasonless(config: SiteConfig, series: WeatherSeries): WeatherSeries {
+  const without = ({ firstHour, values }: HourSeries): HourSeries => ({
+    firstHour,
+    values: values.map((value, i) => (value === null ? null : value - seasonK(config, firstHour + i))),
+  });
+  return { ...series, outdoorC: without(series.outdoorC), dewC: without(series.dewC) };
 }

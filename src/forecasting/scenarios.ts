@@ -1,16 +1,16 @@
 /** One scenario: the weather with one error trajectory on it, the cabin run through it, the panels under it. */
 import type { SiteConfig } from '../config.ts';
-import { saturationHumidityRatio, standardPressurePa } from '../physics/moist-air.ts';
 import { HOUR_MS } from '../time.ts';
 import { hourOfDay } from './bins.ts';
 import { restingFabricC } from './cabin.ts';
-import { coilOf } from './coil.ts';
-import { dryAirOf } from './dry-air.ts';
+import { coilOf, type Coil } from './coil.ts';
+import { dryAirOf, type DryAir } from './dry-air.ts';
 import type { HourBook, HourLine } from './hours.ts';
 import { holdLimit, warmKhPerKwh, type LoadFrame, type RoomState } from './load.ts';
 import type { OwnCabin } from './own-cabin.ts';
 import { gainAt } from './own-cabin.ts';
 import type { HoursAhead } from './own-weather.ts';
+import { saturationAt, type Saturation } from './saturation.ts';
 import { clearSkyOf, MOST_CLEARNESS, panelScale } from './sky.ts';
 import { onSlots, slotLimits, slotMiddleMs, type SlotGrid } from './slots.ts';
 import type { Trajectory } from './trajectories.ts';
@@ -47,11 +47,23 @@ export interface ScenarioFrame {
   readonly last: HourLine | null;
   readonly load: LoadFrame;
   readonly start: RoomState;
-  readonly pressurePa: number;
+  readonly saturation: Saturation;
   readonly clearWPerM2: Float64Array;
   /** Panel power under a cloudless sky. */
   readonly clearPanelW: Float64Array;
   readonly hasPanels: boolean;
+}
+
+/** What the site file alone says about how the room is cooled. */
+export interface LoadPlant {
+  readonly coil: Coil;
+  readonly dryAir: DryAir | null;
+  readonly saturation: Saturation;
+}
+
+export function loadPlantOf(config: SiteConfig): LoadPlant {
+  const saturation = saturationAt(config.site.elevationM);
+  return { coil: coilOf(config, saturation), dryAir: dryAirOf(config), saturation };
 }
 
 export interface Expected extends HoursAhead {
@@ -67,6 +79,7 @@ const USUAL_RATIO = 0.0095;
 
 export function scenarioFrame(
   config: SiteConfig,
+  plant: LoadPlant,
   book: HourBook,
   cabin: OwnCabin,
   grid: SlotGrid,
@@ -81,7 +94,7 @@ export function scenarioFrame(
   const airC = (fresh ? seen.roomC : null) ?? last?.roomEndC ?? config.comfort.limitC;
   const fabricC =
     (last ? cabin.track(book).fabricC : null) ?? restingFabricC(p, airC, last?.outdoorC ?? airC, 0);
-  const coil = coilOf(config);
+  const { coil, dryAir } = plant;
   const scale = panelScale(config, book.all);
   const sky = Array.from({ length: grid.count }, (_, i) =>
     clearSkyOf(config, slotMiddleMs(grid, i) / HOUR_MS - 0.5),
@@ -93,7 +106,7 @@ export function scenarioFrame(
     nowC: fresh ? seen.outdoorC : null,
     last,
     start: { airC, fabricC, ratio: last?.roomW ?? USUAL_RATIO },
-    pressurePa: standardPressurePa(config.site.elevationM),
+    saturation: plant.saturation,
     clearWPerM2: Float64Array.from(sky, (at) => at.clearWPerM2),
     clearPanelW: Float64Array.from(sky, (at, i) =>
       scale ? at.clearOnPanelsWPerM2 * scale[hourOfDay(Math.floor(slotMiddleMs(grid, i) / HOUR_MS))] : 0,
@@ -103,7 +116,7 @@ export function scenarioFrame(
       slotMs: grid.slotMs,
       cabin: p,
       coil,
-      dryAir: dryAirOf(config),
+      dryAir,
       limitC,
       gainsW: Float64Array.from({ length: grid.count }, (_, i) => gainAt(p, slotMiddleMs(grid, i) / HOUR_MS)),
       floorM2: config.cabin.floorM2,
@@ -133,7 +146,7 @@ export function runScenario(
   const weather = {
     outdoorC,
     sunWPerM2,
-    outdoorRatio: dewC.map((dew, i) => saturationHumidityRatio(Math.min(dew, outdoorC[i]), frame.pressurePa)),
+    outdoorRatio: dewC.map((dew, i) => frame.saturation(Math.min(dew, outdoorC[i]))),
     disturbanceW: slots(sum(expected.disturbanceW, error.disturbanceW), null),
   };
   const load = holdLimit(frame.load, frame.start, weather);

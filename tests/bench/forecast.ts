@@ -6,9 +6,9 @@
  */
 import { siteSchema, type SiteConfig } from '../../src/config.ts';
 import { expectedHome } from '../../src/comfort-hours.ts';
+import { ensembleQuantile } from '../../src/forecasting/ensemble.ts';
 import { createForecaster, type Forecaster } from '../../src/forecasting/forecaster.ts';
 import { coverage, crps, cvRmsePct, nmbePct } from '../../src/forecasting/scores.ts';
-import { quantile } from '../../src/numerics/quantile.ts';
 import { createRandom, type Random } from '../../src/numerics/random.ts';
 import { clearSkyGhiWPerM2 } from '../../src/physics/sun.ts';
 import type { CycleRecord } from '../../src/record.ts';
@@ -259,8 +259,8 @@ export function scoreOf(pairs: readonly Pair[]): Score {
   const yesterday = mean((pair) => Math.abs(pair.yesterday - pair.observed));
   const bins = mean((pair) => crps(pair.bins, pair.observed));
   const inside = coverage(
-    pairs.map((pair) => quantile(pair.members, 0.1)),
-    pairs.map((pair) => quantile(pair.members, 0.9)),
+    pairs.map((pair) => ensembleQuantile(pair.members, 0.1)),
+    pairs.map((pair) => ensembleQuantile(pair.members, 0.9)),
     observed,
   );
   return {
