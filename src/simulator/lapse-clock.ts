@@ -23,7 +23,8 @@ export function createLapseClock(options: LapseClockOptions): Clock {
   if (!(factor > 0)) throw new RangeError(`Expected a lapse factor above 0, found ${factor}.`);
   const setTimer = options.setTimer ?? nodeTimer;
   const startedMs = realNowMs();
-  const nowMs = (): number => epochMs + (realNowMs() - startedMs) * factor;
+  // whole milliseconds, as every clock in the house shows them
+  const nowMs = (): number => Math.floor(epochMs + (realNowMs() - startedMs) * factor);
 
   /** Calls back when the clock has reached `atMs`, never before. */
   const when = (atMs: number, callback: () => void): (() => void) => {

@@ -99,7 +99,8 @@ const NEWARK_HEADER = 'time,dry_bulb_c,dew_point_c,rh_pct,wind_ms,pressure_hpa,p
  * by humidity and rain, which gives plausible days and no measured ones.
  */
 export function weatherFromNewark(csvText: string): WeatherFile {
-  const rows = rowsOf(csvText, NEWARK_HEADER, 'Newark');
+  // A line without a temperature or dew point is an hour that is missing.
+  const rows = rowsOf(csvText, NEWARK_HEADER, 'Newark').filter((row) => row[1] !== '' && row[2] !== '');
   const series: Series = {
     atMs: Float64Array.from(rows, (row, line) => instantIn(row, line)),
     outdoorC: Float64Array.from(rows, (row, line) => numberIn(row, 1, line)),
