@@ -42,8 +42,11 @@ export interface HomieDeviceOptions {
   readonly onSet: (path: SettablePath, value: number | string) => string | null;
 }
 
-/** What the broker still keeps of an earlier life comes at once on subscribing; this long without more is all of it. */
-const SWEEP_QUIET_MS = 250;
+/**
+ * What the broker still keeps of an earlier life comes in one go on subscribing. Our own `$state` is always among it;
+ * with it heard, this long without more is all of it. A broker that keeps nothing is not waited for for ever.
+ */
+const SWEEP_QUIET_MS = 200;
 const SWEEP_MOST_MS = 3000;
 /** These are published in every cycle, changed or not, and expire with the order. */
 const REPEATED: readonly Path[] = ['dispatch/command', 'dispatch/expires', 'dispatch/order'];
@@ -175,14 +178,15 @@ export class HomieDevice {
   /** Takes everything that was ever retained off the broker, `$state` first. */
   async remove(): Promise<void> {
     this.away();
+    const own = [
+      '$description',
+      ...this.#kept,
+      ...this.#settable().map((path) => `${path}/$target`),
+      ...[...this.#alerts.keys()].map((id) => `$alert/${id}`),
+    ];
+    const kept = await this.#keptByBroker();
     await this.#state('');
-    await this.#publish('$description', '');
-    const targets = this.#settable().map((path) => `${path}/$target`);
-    const alerts = [...this.#alerts.keys()].map((id) => `$alert/${id}`);
-    await Promise.all(
-      [...this.#properties.keys(), ...targets, ...alerts].map((topic) => this.#publish(topic, '')),
-    );
-    await this.#clearLeftovers(() => false);
+    await this.#clear([...new Set([...own, ...kept])]);
   }
 
   #settable(): SettablePath[] {
@@ -263,25 +267,30 @@ export class HomieDevice {
     const alive = new Set(['$state', '$description', ...this.#settable().map((path) => `${path}/$target`)]);
     for (const [path, value] of this.#values) if (value !== null) alive.add(path);
     for (const id of this.#alerts.keys()) alive.add(`$alert/${id}`);
-    const cleared = await this.#clearLeftovers((topic) => alive.has(topic));
+    const kept = await this.#keptByBroker();
+    const cleared = await this.#clear(kept.filter((topic) => !alive.has(topic)));
     this.#swept = cleared && life === this.#life;
   }
 
-  /** Clears all that the broker still keeps but what is to stay; whether the broker took it. */
-  async #clearLeftovers(keep: (topic: string) => boolean): Promise<boolean> {
+  /** Whether the broker took it. */
+  async #clear(topics: readonly string[]): Promise<boolean> {
+    const cleared = await Promise.all(topics.map((topic) => this.#publish(topic, '')));
+    return cleared.every(Boolean);
+  }
+
+  /** Every topic under the device that the broker keeps a message of. */
+  async #keptByBroker(): Promise<string[]> {
     const filter = `${this.#root}/#`;
     const leftovers = { topics: new Set<string>(), lastMs: Date.now() };
     const until = leftovers.lastMs + SWEEP_MOST_MS;
     this.#leftovers = leftovers;
     await this.#publisher.subscribe([{ filter, qos: 0, retained: true }]);
-    while (Date.now() < until && Date.now() - leftovers.lastMs < SWEEP_QUIET_MS) {
-      await new Promise((done) => setTimeout(done, 25));
-    }
+    const complete = (): boolean =>
+      leftovers.topics.has('$state') && Date.now() - leftovers.lastMs >= SWEEP_QUIET_MS;
+    while (Date.now() < until && !complete()) await new Promise((done) => setTimeout(done, 25));
     this.#leftovers = null;
     await this.#publisher.unsubscribe(filter);
-    const dead = [...leftovers.topics].filter((topic) => !keep(topic));
-    const cleared = await Promise.all(dead.map((topic) => this.#publish(topic, '')));
-    return cleared.every(Boolean);
+    return [...leftovers.topics];
   }
 
   #gather(message: Message): void {

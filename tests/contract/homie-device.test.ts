@@ -4,101 +4,22 @@
  * properties (14, the colour part of 16, 22, 32) is not here.
  */
 import { spawn } from 'node:child_process';
-import { afterEach, describe, expect, test } from 'vitest';
-import { BrokerClient } from '../../src/mqtt/client.ts';
-import { willOf, type SettablePath } from '../../src/mqtt/homie.ts';
-import { HomieDevice } from '../../src/mqtt/homie-device.ts';
-import type { Settings } from '../../src/mqtt/homie-values.ts';
-import type { BrokerOptions } from '../../src/mqtt/link.ts';
-import type { SiteConfig } from '../../src/config.ts';
-import { hasMosquitto, startMosquitto, type Mosquitto } from '../mqtt/mosquitto.ts';
-import { observe, pause, until, type Observer, type Seen } from '../mqtt/observer.ts';
-import { cycleRecord, NOW_MS, planRecord, pretendCleared, siteConfig } from '../mqtt/site.ts';
+import { describe, expect } from 'vitest';
+import { hasMosquitto } from '../mqtt/mosquitto.ts';
+import { pause, until, type Observer, type Seen } from '../mqtt/observer.ts';
+import { cycleRecord, NOW_MS, pretendCleared } from '../mqtt/site.ts';
+import { oneCycle, ROOT, SETTINGS, test } from '../mqtt/stage.ts';
 
-const ROOT = 'homie/5/juniper';
-const SETTINGS: Settings = { strategy: 'planned', wish: 'none', wishForMs: 7_200_000, limitC: 26 };
 const SETTABLE = ['plan/strategy', 'dispatch/wish', 'dispatch/wish-for', 'comfort/limit'];
 
-const cleanUps: (() => Promise<unknown> | void)[] = [];
-afterEach(async () => {
-  for (const cleanUp of cleanUps.splice(0).toReversed()) await cleanUp();
-});
-
-interface Rig {
-  readonly device: HomieDevice;
-  readonly client: BrokerClient;
-  readonly sets: [SettablePath, number | string][];
-  refuse: string | null;
-}
-
-interface RigOptions {
-  readonly config?: SiteConfig;
-  readonly protocol?: BrokerOptions['protocol'];
-  readonly cycle?: boolean;
-}
-
-/** The device on a connection of its own, wired as the daemon wires it. */
-async function rig(
-  url: string,
-  { config = siteConfig(), protocol = 'auto', cycle = true }: RigOptions = {},
-): Promise<Rig> {
-  const sets: Rig['sets'] = [];
-  const made: { device?: HomieDevice } = {};
-  const client = new BrokerClient(
-    {
-      url,
-      clientId: 'rimehold-juniper',
-      protocol,
-      user: null,
-      password: null,
-      tls: null,
-      will: willOf(config),
-      timing: { firstPauseMs: 50, mostPauseMs: 200, willDelayS: 1 },
-    },
-    {
-      message: (message) => void made.device?.hear(message),
-      state: (state) => (state === 'connected' ? void made.device?.announce() : made.device?.away()),
-      note: () => undefined,
-    },
-  );
-  const result: Rig = {
-    client,
-    sets,
-    refuse: null,
-    device: (made.device = new HomieDevice({
-      config,
-      publisher: client,
-      settings: SETTINGS,
-      nowMs: () => NOW_MS,
-      onSet: (path, value) => {
-        sets.push([path, value]);
-        return result.refuse;
-      },
-    })),
-  };
-  cleanUps.push(() => client.stop());
-  await client.start();
-  if (cycle) oneCycle(result.device);
-  return result;
-}
-
-function oneCycle(device: HomieDevice): void {
-  device.publishPlan(planRecord());
-  device.publishOrder(pretendCleared());
-  device.publishCycle(cycleRecord(), { pointsHeard: 4, warmTonightKh: 0 });
-}
-
-async function broker(): Promise<Mosquitto> {
-  const started = await startMosquitto();
-  cleanUps.push(() => started.stop());
-  return started;
-}
-
-async function observer(url: string, filter = `${ROOT}/#`): Promise<Observer> {
-  const made = await observe(url, filter);
-  cleanUps.push(() => made.stop());
-  return made;
-}
+/** Not known in the records of these tests: no humidity is heard and no night is closed yet. */
+const UNKNOWN = [
+  'bank/lasts-until',
+  'comfort/feels-like',
+  'night/cost',
+  'night/saved',
+  'health/balance-residual',
+];
 
 const stateOf = (seen: Observer): string | undefined => seen.latest(`${ROOT}/$state`)?.text;
 const untilReady = (seen: Observer): Promise<void> => until('ready', () => stateOf(seen) === 'ready');
@@ -152,13 +73,13 @@ function isLegal(property: Described, { text, bytes }: Seen): boolean {
   }
 }
 
-describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
-  test.each(['5', '3.1.1'] as const)(
+describe.skipIf(!hasMosquitto).concurrent('the Homie device on a real broker', () => {
+  test.for(['5', '3.1.1'] as const)(
     'announces itself by the book: 1–3, 5–9, 12–21, 23–31, 33, 35 (MQTT %s)',
-    async (protocol) => {
-      const { url } = await broker();
-      const seen = await observer(url, '#');
-      await rig(url, { protocol });
+    async (protocol, { stage }) => {
+      const { url } = await stage.broker();
+      const seen = await stage.observer(url, '#');
+      await stage.rig(url, { protocol });
       await untilReady(seen);
 
       for (const { topic } of seen.seen) {
@@ -210,12 +131,14 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     },
   );
 
-  test('the whole of it is retained: a hub that comes later sees the same (4, 6, 18, 31)', async () => {
-    const { url } = await broker();
-    const early = await observer(url);
-    await rig(url);
+  test('the whole of it is retained: a hub that comes later sees the same (4, 6, 18, 31)', async ({
+    stage,
+  }) => {
+    const { url } = await stage.broker();
+    const early = await stage.observer(url);
+    await stage.rig(url);
     await untilReady(early);
-    const late = await observer(url);
+    const late = await stage.observer(url);
     await until(
       'everything again',
       () => late.seen.length >= new Set(early.seen.map(({ topic }) => topic)).size,
@@ -224,20 +147,22 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     expect(stateOf(late)).toBe('ready');
   });
 
-  test('is not ready before the first cycle', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
-    const { device } = await rig(url, { cycle: false });
+  test('is not ready before the first cycle', async ({ stage }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
+    const { device } = await stage.rig(url, { cycle: false });
     await pause(500);
     expect(stateOf(seen)).toBe('init');
     oneCycle(device);
     await untilReady(seen);
   });
 
-  test('values are published when they change, and the order in every cycle with its expiry', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
-    const { device } = await rig(url);
+  test('values are published when they change, and the order in every cycle with its expiry', async ({
+    stage,
+  }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
+    const { device } = await stage.rig(url);
     await untilReady(seen);
     const before = seen.seen.length;
     device.publishOrder(pretendCleared({ expiresMs: NOW_MS + 120_000 }));
@@ -258,23 +183,25 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     expect(changed.find(({ topic }) => topic.endsWith('ice-mass'))?.expiryS).toBeNull();
   });
 
-  test('a value that is no longer known is cleared', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
-    const { device } = await rig(url);
+  test('a value that is no longer known is cleared', async ({ stage }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
+    const { device } = await stage.rig(url);
     await untilReady(seen);
     device.publishCycle(cycleRecord({ nextChangeMs: null }), { pointsHeard: 4, warmTonightKh: 0 });
     await until('cleared', () => seen.latest(`${ROOT}/plan/next-change`)?.bytes.length === 0);
-    const late = await observer(url, `${ROOT}/plan/next-change`);
+    const late = await stage.observer(url, `${ROOT}/plan/next-change`);
     await pause(150);
     expect(late.seen).toEqual([]);
   });
 
   describe('settings', () => {
-    test('a valid /set: $target is what was sent, byte for byte, then the value (34); twice is the same (38)', async () => {
-      const { url } = await broker();
-      const seen = await observer(url);
-      const { sets } = await rig(url);
+    test('a valid /set: $target is what was sent, byte for byte, then the value (34); twice is the same (38)', async ({
+      stage,
+    }) => {
+      const { url } = await stage.broker();
+      const seen = await stage.observer(url);
+      const { sets } = await stage.rig(url);
       await untilReady(seen);
       for (const times of [1, 2]) {
         const before = seen.seen.length;
@@ -292,14 +219,14 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
       }
     });
 
-    test.each([
+    test.for([
       ['comfort/limit', '25.04', 25, '25'],
       ['plan/strategy', 'timetable', 'timetable', 'timetable'],
       ['dispatch/wish', 'cool-now', 'cool-now', 'cool-now'],
-    ] as const)('%s takes %s', async (path, payload, value, shown) => {
-      const { url } = await broker();
-      const seen = await observer(url);
-      const { sets } = await rig(url);
+    ] as const)('%s takes %s', async ([path, payload, value, shown], { stage }) => {
+      const { url } = await stage.broker();
+      const seen = await stage.observer(url);
+      const { sets } = await stage.rig(url);
       await untilReady(seen);
       await seen.publish(`${ROOT}/${path}/set`, payload, { qos: 2 });
       await until('the value', () => seen.latest(`${ROOT}/${path}`)?.text === shown);
@@ -307,10 +234,12 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
       expect(sets).toEqual([[path, value]]);
     });
 
-    test('an invalid or refused /set changes nothing and is told once on $log/warn (36, 39)', async () => {
-      const { url } = await broker();
-      const seen = await observer(url);
-      const made = await rig(url);
+    test('an invalid or refused /set changes nothing and is told once on $log/warn (36, 39)', async ({
+      stage,
+    }) => {
+      const { url } = await stage.broker();
+      const seen = await stage.observer(url);
+      const made = await stage.rig(url);
       await untilReady(seen);
       const before = seen.seen.length;
       const bad = [
@@ -327,20 +256,20 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
       await until('six warnings', () => told().length === 6);
       await pause(100);
       expect(told().map(({ topic, retain }) => [topic, retain])).toEqual(
-        Array(6).fill([`${ROOT}/$log/warn`, false]),
+        Array.from({ length: 6 }, () => [`${ROOT}/$log/warn`, false]),
       );
       expect(told().at(-1)?.text).toBe('dispatch/wish was not set: not tonight.');
       const changed = seen.seen.slice(before).filter(({ topic }) => !/\/set$|\$log/.test(topic));
       expect(changed).toEqual([]);
     });
 
-    test.each(['5', '3.1.1'] as const)(
+    test.for(['5', '3.1.1'] as const)(
       'a retained /set that lies on the broker is ignored (37, MQTT %s)',
-      async (protocol) => {
-        const { url } = await broker();
-        const seen = await observer(url);
+      async (protocol, { stage }) => {
+        const { url } = await stage.broker();
+        const seen = await stage.observer(url);
         await seen.publish(`${ROOT}/dispatch/wish/set`, 'stand-down', { retain: true });
-        const { sets } = await rig(url, { protocol });
+        const { sets } = await stage.rig(url, { protocol });
         await untilReady(seen);
         await pause(100);
         expect(sets).toEqual([]);
@@ -348,10 +277,10 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
       },
     );
 
-    test('a setting that changes by itself is its own target again', async () => {
-      const { url } = await broker();
-      const seen = await observer(url);
-      const { device } = await rig(url);
+    test('a setting that changes by itself is its own target again', async ({ stage }) => {
+      const { url } = await stage.broker();
+      const seen = await stage.observer(url);
+      const { device } = await stage.rig(url);
       await untilReady(seen);
       await seen.publish(`${ROOT}/dispatch/wish/set`, 'cool-now', { qos: 2 });
       await until('set', () => seen.latest(`${ROOT}/dispatch/wish`)?.text === 'cool-now');
@@ -361,10 +290,12 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     });
   });
 
-  test('subscribes to /set of the settable properties and to nothing else of its own (33)', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
-    const { device, sets } = await rig(url);
+  test('subscribes to /set of the settable properties and to nothing else of its own (33)', async ({
+    stage,
+  }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
+    const { device, sets } = await stage.rig(url);
     await untilReady(seen);
     await seen.publish(`${ROOT}/bank/ice-on-hand/set`, '0', { qos: 2 });
     await seen.publish('homie/5/$broadcast/alert', 'intruder', { qos: 2 });
@@ -377,11 +308,13 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     expect(stateOf(seen)).toBe('ready');
   });
 
-  test('alerts stand until they are resolved, and an earlier life leaves none behind (40)', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
+  test('alerts stand until they are resolved, and an earlier life leaves none behind (40)', async ({
+    stage,
+  }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
     await seen.publish(`${ROOT}/$alert/old`, 'The tray is wet.', { retain: true });
-    const { device } = await rig(url);
+    const { device } = await stage.rig(url);
     await untilReady(seen);
     expect(seen.latest(`${ROOT}/$alert/old`)?.bytes).toHaveLength(0);
     device.alert('dry-pump', 'The pump has run dry.');
@@ -394,10 +327,10 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     expect(() => device.alert('Dry pump', 'x')).toThrow(TypeError);
   });
 
-  test('log levels below the least are not told (39)', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
-    const { device } = await rig(url);
+  test('log levels below the least are not told (39)', async ({ stage }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
+    const { device } = await stage.rig(url);
     await untilReady(seen);
     device.log('info', 'quiet');
     device.log('error', 'loud');
@@ -406,14 +339,16 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     expect(seen.latest(`${ROOT}/$log/error`)).toMatchObject({ text: 'loud', retain: false });
   });
 
-  test('what an earlier life left is cleared before ready, foreign topics are not (19, 44)', async () => {
-    const { url } = await broker();
-    const seen = await observer(url, 'homie/5/#');
+  test('what an earlier life left is cleared before ready, foreign topics are not (19, 44)', async ({
+    stage,
+  }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url, 'homie/5/#');
     await seen.publish(`${ROOT}/bank/colour`, 'blue', { retain: true });
     await seen.publish(`${ROOT}/old-node/thing`, '3', { retain: true });
     await seen.publish(`${ROOT}/bank/lasts-until`, '2020-01-01T00:00:00Z', { retain: true });
     await seen.publish('homie/5/juniper-2/bank/colour', 'blue', { retain: true });
-    await rig(url);
+    await stage.rig(url);
     await until('ready', () => stateOf(seen) === 'ready');
     for (const path of ['bank/colour', 'old-node/thing', 'bank/lasts-until']) {
       expect(seen.latest(`${ROOT}/${path}`)?.bytes).toHaveLength(0);
@@ -423,10 +358,10 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     expect(seen.latest('homie/5/juniper-2/bank/colour')?.text).toBe('blue');
   });
 
-  test('a clean stop ends with disconnected (41), and the will stays away', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
-    const { device, client } = await rig(url);
+  test('a clean stop ends with disconnected (41), and the will stays away', async ({ stage }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
+    const { device, client } = await stage.rig(url);
     await untilReady(seen);
     await device.stop();
     await client.stop();
@@ -434,16 +369,16 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     expect(stateOf(seen)).toBe('disconnected');
   });
 
-  test('a broker that restarted gets the whole announcement again (11, 43)', async () => {
-    const mosquitto = await broker();
-    const seen = await observer(mosquitto.url);
-    const { device } = await rig(mosquitto.url);
+  test('a broker that restarted gets the whole announcement again (11, 43)', async ({ stage }) => {
+    const mosquitto = await stage.broker();
+    const seen = await stage.observer(mosquitto.url);
+    const { device } = await stage.rig(mosquitto.url);
     await untilReady(seen);
     await mosquitto.halt();
     await pause(100);
     device.publishCycle(cycleRecord({ iceKg: 90 }), { pointsHeard: 4, warmTonightKh: 0 });
     await mosquitto.resume();
-    const again = await observer(mosquitto.url);
+    const again = await stage.observer(mosquitto.url);
     await untilReady(again);
     expect(again.latest(`${ROOT}/bank/ice-mass`)?.text).toBe('90');
     expect(described(again.latest(`${ROOT}/$description`)?.text ?? '').size).toBeGreaterThan(25);
@@ -456,10 +391,10 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     }
   });
 
-  test('removal clears $state first and leaves nothing (45, 48)', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
-    const { device, client } = await rig(url);
+  test('removal clears $state first and leaves nothing (45, 48)', async ({ stage }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
+    const { device, client } = await stage.rig(url);
     await untilReady(seen);
     device.alert('dry-pump', 'The pump has run dry.');
     const before = seen.seen.length;
@@ -467,14 +402,14 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
     await client.stop();
     expect(seen.seen[before].topic).toBe(`${ROOT}/$alert/dry-pump`);
     expect(seen.seen[before + 1]).toMatchObject({ topic: `${ROOT}/$state`, text: '' });
-    const late = await observer(url, 'homie/#');
+    const late = await stage.observer(url, 'homie/#');
     await pause(200);
     expect(late.seen).toEqual([]);
   });
 
-  test('a killed daemon is lost (3, 42)', async () => {
-    const { url } = await broker();
-    const seen = await observer(url);
+  test('a killed daemon is lost (3, 42)', async ({ stage }) => {
+    const { url } = await stage.broker();
+    const seen = await stage.observer(url);
     const child = spawn(
       process.execPath,
       ['--import', 'tsx', new URL('doomed-device.ts', import.meta.url).pathname, url],
@@ -482,19 +417,10 @@ describe.skipIf(!hasMosquitto)('the Homie device on a real broker', () => {
         stdio: 'inherit',
       },
     );
-    cleanUps.push(() => void child.kill('SIGKILL'));
+    stage.onEnd(() => void child.kill('SIGKILL'));
     await until('ready', () => stateOf(seen) === 'ready', 15_000);
     child.kill('SIGKILL');
     await until('lost', () => stateOf(seen) === 'lost', 8000);
     expect(seen.latest(`${ROOT}/$state`)).toMatchObject({ retain: true });
   });
 });
-
-/** Not known in the records of these tests: no humidity is heard and no night is closed yet. */
-const UNKNOWN = [
-  'bank/lasts-until',
-  'comfort/feels-like',
-  'night/cost',
-  'night/saved',
-  'health/balance-residual',
-];
