@@ -12,7 +12,7 @@ import type { PlanProblem } from './problem.ts';
 export interface Classes {
   /** Most classes in any slot. */
   readonly most: number;
-  /** Class of a scenario at a slot: [slot × scenarios + scenario]; slot 0 and the end have theirs too. */
+  /** Class of a scenario at a slot: [slot × scenarios + scenario]; one more slot than there are, for the end. */
   readonly of: Uint8Array;
   /** Weight of a scenario within its class at a slot, summing to 1 over the class. */
   readonly share: Float64Array;
@@ -24,6 +24,12 @@ const FADE_HOURS = 6;
 
 /** Scenarios that a class holds at the least, so that its mean means something. */
 const MEMBERS = 4;
+
+/** Differences in load and outdoor temperature below which nobody could tell two evenings apart. */
+const LEAST_LOAD_W = 50;
+const LEAST_OUTDOOR_K = 0.5;
+/** Spread of what has been seen, in those units or standard deviations, from which there are classes at all. */
+const TOLD_APART = 1;
 
 export function classify(problem: PlanProblem, mostClasses: number): Classes {
   const { scenarios, slots } = problem;
@@ -38,7 +44,8 @@ export function classify(problem: PlanProblem, mostClasses: number): Classes {
   const order = Array.from({ length: count }, (_, s) => s);
   for (let t = 0; t <= slots; t += 1) {
     order.sort((a, b) => seen[a] - seen[b] || a - b);
-    cut(order, weight, t === 0 ? 1 : most, of.subarray(t * count, (t + 1) * count));
+    const apart = seen[order[count - 1]] - seen[order[0]] >= TOLD_APART;
+    cut(order, weight, apart ? most : 1, of.subarray(t * count, (t + 1) * count));
     shareOut(of, share, weight, t, most);
     if (t < slots) see(problem, weight, t, fade, seen);
   }
@@ -65,12 +72,16 @@ function shareOut(of: Uint8Array, share: Float64Array, weight: Float64Array, t: 
 }
 
 function see(problem: PlanProblem, weight: Float64Array, t: number, fade: number, seen: Float64Array): void {
-  const load = standardised(weight, (s) => problem.scenarios[s].loadW[t]);
-  const outdoor = standardised(weight, (s) => problem.scenarios[s].outdoorC[t]);
+  const load = standardised(weight, LEAST_LOAD_W, (s) => problem.scenarios[s].loadW[t]);
+  const outdoor = standardised(weight, LEAST_OUTDOOR_K, (s) => problem.scenarios[s].outdoorC[t]);
   for (let s = 0; s < seen.length; s += 1) seen[s] = fade * seen[s] + load(s) + outdoor(s);
 }
 
-function standardised(weight: Float64Array, value: (s: number) => number): (s: number) => number {
+function standardised(
+  weight: Float64Array,
+  least: number,
+  value: (s: number) => number,
+): (s: number) => number {
   let mean = 0;
   let square = 0;
   for (let s = 0; s < weight.length; s += 1) {
@@ -78,5 +89,5 @@ function standardised(weight: Float64Array, value: (s: number) => number): (s: n
     square += weight[s] * value(s) ** 2;
   }
   const sd = Math.sqrt(Math.max(0, square - mean * mean));
-  return sd > 1e-6 ? (s) => (value(s) - mean) / sd : () => 0;
+  return (s) => (value(s) - mean) / Math.max(sd, least);
 }

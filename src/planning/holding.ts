@@ -43,9 +43,9 @@ function meanOf(problem: PlanProblem): { loadW: Float64Array; warmKhPerKwh: numb
 }
 
 /** Half width of the estimate, as a share of the bank, from which a melt-out is worth something. */
-const UNSURE = 0.12;
+const UNSURE = 0.1;
 /** Nights over which a clear estimate is taken to save the ice that doubt keeps back; a judgement, no source. */
-const NIGHTS_SERVED = 2;
+const NIGHTS_SERVED = 3;
 const EMPTY_PCT = 1;
 
 /**

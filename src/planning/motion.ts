@@ -9,6 +9,8 @@ import { rowOf, type Tables } from './tables.ts';
 export interface Slot {
   hours: number;
   loadW: number;
+  /** What a wet coil takes over what it would take dry. */
+  wetFactor: number;
   panelW: number;
   houseW: number;
   buy: number;
@@ -57,6 +59,7 @@ export const newOutcome = (): Outcome => ({
 export const newSlot = (): Slot => ({
   hours: 0,
   loadW: 0,
+  wetFactor: 1,
   panelW: 0,
   houseW: 0,
   buy: 0,
@@ -71,9 +74,9 @@ export const newSlot = (): Slot => ({
 });
 
 /**
- * Moves the bank through a slot. `makingW`, `powerW`, `meltW` (what ice and coil can take out of the room, fan heat
- * included) and `leakW` hold at the ice at the start of the slot. Pump and fan run for the share of the slot that the
- * delivery needs; both their heats end up in the bank. A machine that fills the bank stops there.
+ * Moves the bank through a slot. `makingW`, `powerW`, `meltW` (what ice and a dry coil can take out of the room) and
+ * `leakW` hold at the ice at the start of the slot. Pump and fan run for the share of the slot that the delivery needs;
+ * the pump's heat goes to the bank with it, the fan's is part of the load. A machine that fills the bank stops there.
  */
 export function move(
   plant: Plant,
@@ -96,16 +99,15 @@ export function move(
   let net = 0;
   if (discharge && needKwh > 0) {
     const limitW = runs && plant.directCooling && makingW > meltW ? makingW : meltW;
-    const mostKwh = (limitW - plant.fanW) * kWh;
+    const mostKwh = limitW * slot.wetFactor * kWh;
     if (mostKwh > 0) {
-      const auxKwh = (plant.pumpW + plant.fanW) * kWh;
       const available = ice + made;
       let duty = needKwh < mostKwh ? needKwh / mostKwh : 1;
-      const drawKwh = mostKwh + auxKwh;
+      const drawKwh = mostKwh + plant.pumpW * kWh;
       if (duty * drawKwh > available) duty = available / drawKwh;
       net = duty * mostKwh;
       ice -= duty * drawKwh;
-      energy += duty * auxKwh;
+      energy += duty * (plant.pumpW + plant.fanW) * kWh;
     }
   }
   const room = plant.capacityKwh - ice;
@@ -134,6 +136,7 @@ export function readSlot(
   const outdoorC = scenario.outdoorC[t];
   slot.hours = hours;
   slot.loadW = Math.max(0, scenario.loadW[t]);
+  slot.wetFactor = wetFactor(slot.loadW, scenario.latentW?.[t] ?? 0);
   slot.panelW = scenario.panelW[t];
   slot.houseW = power.houseW[t];
   slot.buy = power.kind === 'grid' ? power.buy[t] : 0;
@@ -147,3 +150,9 @@ export function readSlot(
   slot.outdoorRow = Math.min(Math.floor(at), tables.outdoorRows - 2);
   slot.outdoorPart = at - slot.outdoorRow;
 }
+
+/** A coil that dries the air as well takes more heat in all; held below what fan coils do (no source). */
+const MOST_WET = 2;
+
+const wetFactor = (loadW: number, latentW: number): number =>
+  latentW > 0 ? Math.min(MOST_WET, loadW / Math.max(1, loadW - latentW)) : 1;

@@ -8,8 +8,10 @@ import type { DisplayUnits } from '../units.ts';
 export interface PlanScenario {
   readonly weight: number;
   readonly outdoorC: ArrayLike<number>;
-  /** Cooling that the rooms need to hold the comfort limit, W; heat of pump, fan and condenser left out. */
+  /** Cooling that the coil must give to hold the comfort limit, W: sensible, moisture and the fan's own heat. */
   readonly loadW: ArrayLike<number>;
+  /** The part of it that is moisture; none when left out. */
+  readonly latentW?: ArrayLike<number>;
   /** Power of the own panels, W. */
   readonly panelW: ArrayLike<number>;
   /** Degree-hours above the limit for each kWh of cooling that is not delivered. */

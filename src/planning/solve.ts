@@ -17,8 +17,8 @@ export interface SolveOptions {
   readonly batteryPoints?: number;
   /** Classes of weather that the plan tells apart. */
   readonly classes?: number;
-  /** False leaves nothing its worth at the end: for comparison with solvers that know no tail. */
-  readonly tail?: boolean;
+  /** What a kWh of ice is worth at the end, money; without it the plan finds out, see `setEnd`. */
+  readonly endMoneyPerKwh?: number;
   /** Milliseconds since any fixed instant; with `limitMs` it ends a solve that takes too long. */
   readonly stopwatch?: () => number;
   readonly limitMs?: number;
@@ -89,11 +89,21 @@ function limits(work: Work): void {
   }
 }
 
+/**
+ * Points of the ice grid. Between points the value is linear, which blurs the cliff where the ice just suffices. The
+ * spread of many scenarios blurs it more than the grid does; a single one needs a fine grid to show it.
+ */
+function pointsFor(problem: PlanProblem): number {
+  if (problem.power.kind === 'island') return 37;
+  return problem.scenarios.length >= 8 ? 61 : 241;
+}
+
 /** Solves to the value of every state at every slot. Throws `TooSlow` past its limit. */
 export function solve(problem: PlanProblem, options: SolveOptions = {}): Work {
-  const tables = buildTables(problem, options.points ?? (problem.power.kind === 'island' ? 37 : 61));
+  const tables = buildTables(problem, options.points ?? pointsFor(problem));
   const work = createWork(problem, options, tables, options.classes ?? 4);
-  if (options.tail !== false) setEnd(work, options);
+  if (options.endMoneyPerKwh === undefined) setEnd(work, options);
+  else setEndWorth(work, options.endMoneyPerKwh);
   backward(work, options);
   return work;
 }
@@ -108,6 +118,13 @@ function backward(work: Work, options: SolveOptions): void {
       chooseBest(work, t, c);
     }
   }
+}
+
+function setEndWorth(work: Work, moneyPerKwh: number): void {
+  const from = valueAt(work, work.problem.slots, 0, 0);
+  const { points, stepKwh } = work.tables;
+  for (let k = from; k < work.value.length; k += 1)
+    work.value[k] = -moneyPerKwh * stepKwh * ((k - from) % points);
 }
 
 const DAY_SLOTS_MS = 86_400_000;
