@@ -82,6 +82,14 @@ export class CondensingUnit {
     this.evaporatingC = MOST_EVAPORATING_C;
   }
 
+  /** Its start was not carried: the overload protector holds it off for five minutes. */
+  stall(): void {
+    this.cutOutS = CUT_OUT_S;
+    this.running = false;
+    this.runS = 0;
+    this.rest();
+  }
+
   /** The maps at this condensing temperature, as cubics of the evaporating temperature. */
   private foldCondensing(): void {
     fold(LOW_TEMPERATURE_R22.coolingW, this.condensingC, this.capacity);

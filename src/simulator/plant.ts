@@ -35,6 +35,8 @@ const WINDOWS: readonly (readonly [part: number, plane: Plane])[] = [
 /** Mean electric load of a house on the grid, W, and the part of it that warms the rooms. No source. */
 const GRID_HOUSE_W = 220;
 const HOUSE_TO_ROOM = 0.7;
+/** Part of its power that a pump still takes when it runs dry; common practice, no source. */
+const DRY_PUMP_PART = 0.35;
 const OPEN_WINDOW_PER_H = 6;
 /** Coolant pipes at rest come to the bank's temperature with this time constant, s. */
 const COOLANT_REST_S = 900;
@@ -89,6 +91,8 @@ export class Plant {
 
   /** Set by a caller: water stands in the drip tray. */
   trayWet = false;
+  /** Set by a caller: the pump draws air. */
+  pumpDry = false;
   readonly stepS: number;
 
   constructor(o: PlantOptions, stepS: number) {
@@ -207,9 +211,9 @@ export class Plant {
     const powered = this.island?.powered ?? true;
     const { delivery } = this.site;
     const pumping = this.on.pump && powered;
-    const open = pumping ? this.bank.openPart() : 1;
-    this.flowKgPerS = pumping ? (delivery.flowLPerMin / 60) * this.flowFactor * open : 0;
-    this.pumpW = pumping ? delivery.pumpW * this.pumpPowerFactor : 0;
+    const open = pumping && !this.pumpDry ? this.bank.openPart() : 0;
+    this.flowKgPerS = (delivery.flowLPerMin / 60) * this.flowFactor * open;
+    this.pumpW = pumping ? delivery.pumpW * this.pumpPowerFactor * (this.pumpDry ? DRY_PUMP_PART : 1) : 0;
     const blowing = this.on.fan && powered;
     this.fanW = blowing ? delivery.fanW : 0;
     this.surroundC = this.surround();
@@ -230,6 +234,7 @@ export class Plant {
     const inside = rejects === 'cooled-room' ? this.cabin.airC[0] : this.site.bank.surroundC;
     this.machine.on = this.on.chiller;
     this.machine.prepare(dtS, rejects === 'outdoors' ? this.sky.outdoorC : inside, powered);
+    if (this.machine.running && !this.canStart()) this.machine.stall();
     if (!this.machine.running) return;
     if (this.bank.shape.throughTube && this.flowKgPerS > 0) {
       const rate = this.flowKgPerS * WATER_CP_J_PER_KG_K;
@@ -239,6 +244,13 @@ export class Plant {
       this.bank.faceCoil(dtS);
       this.machine.solve(this.bank.coilWPerK, this.bank.coilFaceC);
     }
+  }
+
+  /** A small inverter must carry the surge of a start beside all other load. */
+  private canStart(): boolean {
+    const { startW } = this.site.chiller;
+    if (!this.island || this.machine.runningS() > this.stepS) return true;
+    return startW + this.houseW + this.pumpW + this.fanW <= this.island.config.inverterW;
   }
 
   private stepBank(dtS: number): void {

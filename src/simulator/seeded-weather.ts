@@ -2,6 +2,7 @@
  * Weather from a seed: warm and cool spells, clear and cloudy days, each day on the published daily profile. Any instant
  * can be asked for in any order: each day's figures come from its number and the seed alone.
  */
+import type { SiteConfig } from '../config.ts';
 import { createRandom, type Random } from '../numerics/random.ts';
 import { relativeHumidityPct, saturationHumidityRatio, standardPressurePa } from '../physics/moist-air.ts';
 import { clearSkyGhiWPerM2, designProfileC } from '../physics/sun.ts';
@@ -42,6 +43,20 @@ interface Day {
 
 export function seededWeather(options: SeededWeatherOptions): WeatherSource {
   return new SeededWeather(options);
+}
+
+/** Summers of a site by its own design day, where the site file has one. */
+export function weatherForSite(site: SiteConfig, seed: number): WeatherSource {
+  const { latitudeDeg, longitudeDeg, elevationM } = site.site;
+  const { designDayC, designRangeK } = site.cabin;
+  return seededWeather({
+    seed,
+    latitudeDeg,
+    longitudeDeg,
+    elevationM,
+    rangeK: designRangeK,
+    ...(designDayC === null ? {} : { hotDayC: designDayC }),
+  });
 }
 
 class SeededWeather implements WeatherSource {

@@ -44,6 +44,8 @@ export interface Simulator {
   setOccupied(occupied: boolean | null): void;
   openWindow(open: boolean): void;
   wetTray(wet: boolean): void;
+  /** The pump draws air: it runs, takes little power and moves nothing. */
+  dryPump(dry: boolean): void;
 }
 
 export function createSimulator(options: SimulatorOptions): Simulator {
@@ -143,6 +145,10 @@ class TruthSimulator implements Simulator {
 
   wetTray(wet: boolean): void {
     this.plant.trayWet = wet;
+  }
+
+  dryPump(dry: boolean): void {
+    this.plant.pumpDry = dry;
   }
 }
 

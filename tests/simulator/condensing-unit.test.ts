@@ -17,6 +17,24 @@ function settled(outdoorC: number, coilWPerK: number, mostCondensingC = 64): Con
   return unit;
 }
 
+const mapped = (s: number, d: number) => ({
+  coolingW: evaluateMap(LOW_TEMPERATURE_R22.coolingW, s, d),
+  powerW: evaluateMap(LOW_TEMPERATURE_R22.powerW, s, d),
+});
+
+const copOf = (unit: CondensingUnit, coilWPerK: number): number => (-coilWPerK * unit.coolantC) / unit.powerW;
+
+const roomAfter = (on: boolean): number => {
+  const simulator = simulate({
+    site: siteNamed('saltmarsh'),
+    weather: stillAir(20),
+    start: { iceKg: 10, roomC: 22 },
+  });
+  simulator.switch('chiller', on);
+  simulator.advance(simulator.nowMs() + 6 * 3_600_000);
+  return simulator.truth().roomC;
+};
+
 describe('the scaled map', () => {
   it('gives the nameplate at the nameplate conditions', () => {
     // At −8 °C evaporating a coil that gives 1,050 W has 131.25 W/K.
@@ -29,13 +47,9 @@ describe('the scaled map', () => {
   it('keeps the right slopes where its cubic is extrapolated', () => {
     for (let suction = -30; suction <= 0; suction += 2) {
       for (let discharge = 20; discharge <= 60; discharge += 5) {
-        const at = (s: number, d: number) => ({
-          coolingW: evaluateMap(LOW_TEMPERATURE_R22.coolingW, s, d),
-          powerW: evaluateMap(LOW_TEMPERATURE_R22.powerW, s, d),
-        });
-        const here = at(suction, discharge);
-        const warmer = at(suction + 1, discharge);
-        const hotter = at(suction, discharge + 1);
+        const here = mapped(suction, discharge);
+        const warmer = mapped(suction + 1, discharge);
+        const hotter = mapped(suction, discharge + 1);
         expect(warmer.coolingW).toBeGreaterThan(here.coolingW);
         expect(warmer.powerW).toBeGreaterThan(here.powerW);
         expect(hotter.coolingW).toBeLessThan(here.coolingW);
@@ -50,10 +64,8 @@ describe('the scaled map', () => {
     const thick = settled(25, 60);
     const hot = settled(38, 180);
     expect(thick.evaporatingC).toBeLessThan(bare.evaporatingC - 3);
-    const cop = (unit: CondensingUnit, coilWPerK: number): number =>
-      (-coilWPerK * unit.coolantC) / unit.powerW;
-    expect(cop(thick, 60)).toBeLessThan(cop(bare, 180));
-    expect(cop(hot, 180)).toBeLessThan(0.85 * cop(bare, 180));
+    expect(copOf(thick, 60)).toBeLessThan(copOf(bare, 180));
+    expect(copOf(hot, 180)).toBeLessThan(0.85 * copOf(bare, 180));
   });
 });
 
@@ -107,16 +119,6 @@ describe('in the plant', () => {
   });
 
   it('heats the room that it stands in by its ice making and its power together', () => {
-    const run = (on: boolean): number => {
-      const simulator = simulate({
-        site: siteNamed('saltmarsh'),
-        weather: stillAir(20),
-        start: { iceKg: 10, roomC: 22 },
-      });
-      simulator.switch('chiller', on);
-      simulator.advance(simulator.nowMs() + 6 * 3_600_000);
-      return simulator.truth().roomC;
-    };
-    expect(run(true)).toBeGreaterThan(run(false) + 1);
+    expect(roomAfter(true)).toBeGreaterThan(roomAfter(false) + 1);
   });
 });

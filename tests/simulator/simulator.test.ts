@@ -13,14 +13,36 @@ function evening(simulator: Simulator): void {
   simulator.switch('fan', true);
 }
 
+const sixHours = (): unknown => {
+  const simulator = simulate({ site: SITE, seed: 11, truth: {} });
+  evening(simulator);
+  return [simulator.advance(START_MS + 6 * HOUR_MS), simulator.truth()];
+};
+
+const leakWPerK = (truth: object): number => {
+  const simulator = simulate({ site: SITE, truth, weather: stillAir(24), start: { iceKg: 100 } });
+  simulator.advance(START_MS + 2 * DAY_MS);
+  const { leakW: watts, surroundC } = simulator.truth();
+  return watts / surroundC;
+};
+
+const powerAtCop = (copFactor: number): number => {
+  const simulator = simulate({ site: SITE, truth: { copFactor }, weather: stillAir(25) });
+  simulator.switch('chiller', true);
+  simulator.advance(START_MS + HOUR_MS);
+  return simulator.truth().chillerW;
+};
+
+const roomsAfter = (cooled: boolean) => {
+  const simulator = simulate({ site: SITE, start: { iceKg: 140, roomC: 28 } });
+  if (cooled) evening(simulator);
+  simulator.advance(START_MS + 4 * HOUR_MS);
+  return simulator.truth();
+};
+
 describe('one seed', () => {
   it('gives one plant, reading for reading', () => {
-    const run = (): unknown => {
-      const simulator = simulate({ site: SITE, seed: 11, truth: {} });
-      evening(simulator);
-      return [simulator.advance(START_MS + 6 * HOUR_MS), simulator.truth()];
-    };
-    expect(run()).toEqual(run());
+    expect(sixHours()).toEqual(sixHours());
   });
 
   it('gives the same readings however the time is cut up', () => {
@@ -49,30 +71,18 @@ describe('one seed', () => {
 
 describe('the plant as written and as it ages', () => {
   it('leaks what the leak factor and its drift say', () => {
-    const leakW = (truth: object): number => {
-      const simulator = simulate({ site: SITE, truth, weather: stillAir(24), start: { iceKg: 100 } });
-      simulator.advance(START_MS + 2 * DAY_MS);
-      const { leakW: watts, surroundC } = simulator.truth();
-      return watts / surroundC;
-    };
-    const written = leakW({ leakFactor: 1 });
+    const written = leakWPerK({ leakFactor: 1 });
     // The water stands some tenths above 0 °C, and higher with the greater leak: a few per cent less than in proportion.
-    const doubled = leakW({ leakFactor: 2 }) / written;
+    const doubled = leakWPerK({ leakFactor: 2 }) / written;
     expect(doubled).toBeGreaterThan(1.9);
     expect(doubled).toBeLessThan(2);
-    const aged = leakW({ leakFactor: 1, driftPerDay: { leakFactor: 0.1 } }) / written;
+    const aged = leakWPerK({ leakFactor: 1, driftPerDay: { leakFactor: 0.1 } }) / written;
     expect(aged).toBeGreaterThan(1.16);
     expect(aged).toBeLessThan(1.2);
   });
 
   it('takes more electricity for the same cold with a poor COP', () => {
-    const powerW = (copFactor: number): number => {
-      const simulator = simulate({ site: SITE, truth: { copFactor }, weather: stillAir(25) });
-      simulator.switch('chiller', true);
-      simulator.advance(START_MS + HOUR_MS);
-      return simulator.truth().chillerW;
-    };
-    expect(powerW(0.8) / powerW(1)).toBeCloseTo(1.25, 1);
+    expect(powerAtCop(0.8) / powerAtCop(1)).toBeCloseTo(1.25, 1);
   });
 
   it('warns of high pressure and does not run in air that is far too hot', () => {
@@ -90,14 +100,8 @@ describe('the plant as written and as it ages', () => {
 
 describe('the cabin', () => {
   it('is cooled by ice, and dried where the coil is wet', () => {
-    const run = (cooled: boolean) => {
-      const simulator = simulate({ site: SITE, start: { iceKg: 140, roomC: 28 } });
-      if (cooled) evening(simulator);
-      simulator.advance(START_MS + 4 * HOUR_MS);
-      return simulator.truth();
-    };
-    expect(run(true).roomC).toBeLessThan(run(false).roomC - 2);
-    expect(run(true).condensateKg).toBeGreaterThan(0);
+    expect(roomsAfter(true).roomC).toBeLessThan(roomsAfter(false).roomC - 2);
+    expect(roomsAfter(true).condensateKg).toBeGreaterThan(0);
   });
 
   it('settles where heat lost through fabric and air equals what is put in', () => {
@@ -181,5 +185,28 @@ describe('an island', () => {
     simulator.advance(START_MS + DAY_MS);
     expect(simulator.truth().powered).toBe(false);
     expect(simulator.truth().chillerW).toBe(0);
+  });
+
+  it('does not start a machine whose surge the inverter cannot carry', () => {
+    const site = siteNamed('juniper-island');
+    const heavy = { ...site, chiller: { ...site.chiller, startW: 4000 } };
+    const simulator = simulate({ site: heavy });
+    simulator.switch('chiller', true);
+    simulator.advance(START_MS + HOUR_MS);
+    expect(heavy.power.island?.inverterW).toBeLessThan(4000);
+    expect(simulator.truth().totals.chillerKwh).toBe(0);
+  });
+});
+
+describe('a pump that draws air', () => {
+  it("moves nothing and takes less power than the owner's dry-pump limit", () => {
+    const simulator = simulate({ site: SITE, start: { iceKg: 60 } });
+    simulator.switch('pump', true);
+    simulator.dryPump(true);
+    simulator.advance(START_MS + HOUR_MS / 4);
+    const { flowLPerMin, pumpW } = simulator.truth();
+    expect(flowLPerMin).toBe(0);
+    expect(pumpW).toBeGreaterThan(SITE.delivery.runningAboveW);
+    expect(pumpW).toBeLessThan(SITE.delivery.dryPumpW ?? 0);
   });
 });

@@ -8,6 +8,8 @@ import { openData, START_MS } from './site.ts';
 const PLACE = { latitudeDeg: 38.4, longitudeDeg: -2.9, elevationM: 1080 };
 const hours = (count: number): number[] => Array.from({ length: count }, (_, i) => START_MS + i * HOUR_MS);
 
+const meanOf = (values: number[]): number => values.reduce((a, b) => a + b, 0) / values.length;
+
 describe('seeded weather', () => {
   it('is the same in whatever order it is asked', () => {
     const forward = seededWeather({ seed: 7, ...PLACE });
@@ -29,8 +31,7 @@ describe('seeded weather', () => {
     const weather = seededWeather({ seed: 3, ...PLACE, hotDayC: 35, rangeK: 14 });
     const samples = hours(24 * 30).map((ms) => ({ ms, ...weather.at(ms) }));
     const byHour = (hour: number) => samples.filter((s) => new Date(s.ms).getUTCHours() === hour);
-    const mean = (values: number[]): number => values.reduce((a, b) => a + b, 0) / values.length;
-    const range = mean(byHour(15).map((s) => s.outdoorC)) - mean(byHour(5).map((s) => s.outdoorC));
+    const range = meanOf(byHour(15).map((s) => s.outdoorC)) - meanOf(byHour(5).map((s) => s.outdoorC));
     expect(range).toBeGreaterThan(8);
     expect(range).toBeLessThan(15);
     expect(Math.max(...samples.map((s) => s.outdoorC))).toBeLessThan(42);
