@@ -32,8 +32,9 @@ export function issueOf(hour: number, ahead: HoursAhead, hubC: readonly (number 
   };
 }
 
-/** Drops issues that are too old; keeps one for each step of `ISSUE_EVERY_HOURS`. */
+/** Drops issues that are too old; keeps a new one when the last is `ISSUE_EVERY_HOURS` old. */
 export function keepIssue(issues: readonly Issue[], issue: Issue): Issue[] {
-  if (issue.hour % ISSUE_EVERY_HOURS !== 0 || issues.at(-1)?.hour === issue.hour) return [...issues];
+  const last = issues.at(-1);
+  if (last && issue.hour < last.hour + ISSUE_EVERY_HOURS) return [...issues];
   return [...issues.filter((old) => old.hour > issue.hour - ISSUE_DAYS * 24), issue];
 }
