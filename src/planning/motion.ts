@@ -117,7 +117,8 @@ export function move(
     energy -= powerW * kWh * out.cutOff;
     made = room;
   }
-  out.iceKwh = ice + made;
+  // what is drawn to the last drop may round to just below nothing
+  out.iceKwh = Math.max(0, ice + made);
   out.energyKwh = energy;
   out.unmetKwh = needKwh - net;
   out.deliveredKwh = net;
