@@ -1,0 +1,469 @@
+/**
+ * The loop: messages in, a tick each half minute, a plan each quarter hour, sheets at noon, memory kept. It owns no
+ * logic of its own: what is decided stands in `cycle.ts`. A part that fails is named, logged and passed over; the
+ * loop goes on.
+ */
+import type { Mode } from '../commands.ts';
+import type { SiteConfig } from '../config.ts';
+import { replan, replanDue, stagesOf, startState, tick, type Ticked } from '../cycle.ts';
+import { planRecordOf } from '../cycle-plan.ts';
+import type { CycleState, Moment, Outlook, Stages } from '../cycle-values.ts';
+import { alertsOf } from '../dispatch/alerts.ts';
+import { judgeClock, type ClockVerdict } from '../dispatch/clock.ts';
+import { freshMemory } from '../dispatch/limits.ts';
+import type { DispatchMemory } from '../dispatch/types.ts';
+import { RimeholdError, sentenceOf } from '../errors.ts';
+import { createEstimator } from '../estimation/estimator.ts';
+import type { IceEstimate } from '../estimation/types.ts';
+import { createForecaster } from '../forecasting/forecaster.ts';
+import type { Message } from '../mqtt/intake.ts';
+import type { Reading } from '../points.ts';
+import type { CycleRecord, PlanRecord } from '../record.ts';
+import { parseDatedPrices, type DatedPrice } from '../tariff/dated.ts';
+import { demandSoFar, monthAt } from '../tariff/demand.ts';
+import { energyBySlot } from '../tariff/energy.ts';
+import { HOUR_MS, MINUTE_MS, nightAt, type Night } from '../time.ts';
+import { nightsToClose, writeSheet, type NightEnd } from './nights.ts';
+import { Owner } from './owner.ts';
+import type { DaemonEvents, DaemonParts } from './ports.ts';
+import {
+  checkpointBefore,
+  CHECKPOINT_MS,
+  keepCheckpoint,
+  LATE_MS,
+  replay,
+  type Checkpoint,
+} from './rewind.ts';
+
+const MEMORY_EVERY_MS = HOUR_MS;
+const HOUSEKEEPING_MS = 5 * MINUTE_MS;
+/** On a lapse clock a flush of each half minute would be one each few milliseconds. */
+const LEAST_FLUSH_REAL_MS = 1000;
+/** Points whose word stops a machine are acted upon at once, at most this often. */
+const URGENT_EVERY_MS = 1000;
+const URGENT_POINTS = new Set(['drip-tray-wet', 'high-pressure-trip', 'ice-at-electrode']);
+
+export class Daemon {
+  readonly owner: Owner;
+  readonly #parts: DaemonParts;
+  readonly #events = new Set<DaemonEvents>();
+  readonly #stops: (() => void)[] = [];
+  readonly #alerts = new Set<string>();
+  #config: SiteConfig;
+  #stages: Stages;
+  #state: CycleState;
+  #heard = 0;
+  #connected = false;
+  #connectedSinceMs: number | null = null;
+  #linkSentence = '';
+  #mode: { mode: Mode; sinceMs: number } | null = null;
+  #firstRecordMs: number | null = null;
+  #clock: ClockVerdict = { state: 'set', why: '' };
+  #pending: Reading[] = [];
+  #rewindToMs = Number.POSITIVE_INFINITY;
+  #checkpoints: Checkpoint[] = [];
+  #datedPrices: { heardMs: number; prices: readonly DatedPrice[] } | null = null;
+  #last: Ticked | null = null;
+  #lastPlan: PlanRecord | null = null;
+  #lastUrgentMs = 0;
+  #tonight: { date: string; warmKh: number } = { date: '', warmKh: 0 };
+
+  constructor(parts: DaemonParts) {
+    const { config, store, clock, seed } = parts;
+    const nowMs = clock.nowMs();
+    this.#parts = parts;
+    this.owner = new Owner(config, store.loadMemory('owner'));
+    this.#config = withLimit(config, this.owner.settings(nowMs).limitC);
+    this.#stages = stagesOf(
+      this.#config,
+      createEstimator(this.#config, { seed, startMs: nowMs }),
+      createForecaster(this.#config, { seed, memory: this.#remembered('forecaster') }),
+    );
+    this.#state = startState(nowMs, this.#rememberedDispatch(nowMs));
+  }
+
+  /** Takes up where the last life stood, then begins to look at the plant. */
+  start(): void {
+    const { clock, clockRate, config } = this.#parts;
+    this.#guarded('taking up the estimate', () => this.#takeUp());
+    this.#stops.push(
+      clock.every(config.planning.cycleMs, () => this.cycle()),
+      clock.every(Math.max(config.store.flushMs, LEAST_FLUSH_REAL_MS * clockRate), () => this.#flush()),
+      clock.every(MEMORY_EVERY_MS, () => this.#guarded('keeping what was learned', () => this.#saveMemory())),
+      clock.every(Math.max(HOUSEKEEPING_MS, LEAST_FLUSH_REAL_MS * clockRate), () =>
+        this.#guarded('thinning old records', () => this.#parts.store.compact(clock.nowMs())),
+      ),
+    );
+    this.cycle();
+  }
+
+  /** Ends the loop and keeps what was learned. The store is closed by whoever opened it. */
+  stop(): void {
+    for (const stop of this.#stops.splice(0)) stop();
+    this.#guarded('keeping what was learned', () => this.#saveMemory());
+  }
+
+  observe(events: DaemonEvents): () => void {
+    this.#events.add(events);
+    return () => this.#events.delete(events);
+  }
+
+  /** The link to the broker came or went. */
+  linked(connected: boolean, sentence: string): void {
+    if (connected !== this.#connected || this.#connectedSinceMs === null)
+      this.#connectedSinceMs = this.#parts.clock.nowMs();
+    this.#connected = connected;
+    this.#linkSentence = sentence;
+  }
+
+  /** A message from the broker. */
+  hear(message: Message): void {
+    this.#heard += 1;
+    this.#guarded('a message', () => {
+      if (this.#parts.device.hear(message)) return;
+      this.#parts.actuators.hear(message);
+      const nowMs = this.#parts.clock.nowMs();
+      const { readings, says } = this.#parts.intake.hear(message, nowMs);
+      for (const sentence of says) this.#parts.log.warn({ topic: message.topic }, sentence);
+      this.#take(readings);
+    });
+  }
+
+  #take(readings: readonly Reading[]): void {
+    this.#parts.store.addReadings(readings);
+    const horizonMs = (this.#state.lastMs ?? Number.NEGATIVE_INFINITY) - LATE_MS;
+    for (const reading of readings) {
+      if (reading.atMs > horizonMs) this.#pending.push(reading);
+      else this.#rewindToMs = Math.min(this.#rewindToMs, reading.atMs);
+    }
+    if (readings.some(({ point, value }) => URGENT_POINTS.has(point) && value === 1)) this.#urgent();
+  }
+
+  #urgent(): void {
+    const nowMs = this.#parts.clock.nowMs();
+    if (Math.abs(nowMs - this.#lastUrgentMs) < URGENT_EVERY_MS) return;
+    this.#lastUrgentMs = nowMs;
+    this.cycle();
+  }
+
+  /** One look at the plant, and a new plan when one is due. Never throws. */
+  cycle(): void {
+    this.#guarded('a cycle', () => {
+      const moment = this.#moment();
+      this.#rewind(moment.nowMs);
+      const readings = this.#pending.toSorted((a, b) => a.atMs - b.atMs);
+      this.#pending = [];
+      if (this.#state.planned === null)
+        this.#stages.estimator.advance(moment.nowMs, readings.splice(0), null);
+      if (replanDue(this.#state, this.#config, moment.nowMs))
+        this.#guarded('planning', () => this.#replan(moment));
+      this.#tick(moment, readings);
+    });
+    this.closeNights();
+  }
+
+  #moment(): Moment {
+    const { clock, intake, notBeforeMs } = this.#parts;
+    const nowMs = clock.nowMs();
+    this.#clock = judgeClock({
+      nowMs,
+      notBeforeMs,
+      lastRecordMs: this.#state.lastMs,
+      sensorsAheadMs: intake.ahead()?.medianMs ?? null,
+    });
+    return { nowMs, live: intake.live(nowMs), clock: this.#clock, brokerConnected: this.#connected };
+  }
+
+  #replan(moment: Moment): void {
+    const wanted = this.#wanted(moment.nowMs);
+    const planned = replan(this.#stages, this.#state, moment, wanted, this.#outlook(moment.nowMs));
+    this.#state = { ...this.#state, planned };
+    if (planned.plan.note !== '') this.#parts.log.warn({ outcome: planned.plan.outcome }, planned.plan.note);
+    this.#lastPlan = this.#parts.store.addPlan(planRecordOf(planned));
+    this.#parts.device.publishPlan(this.#lastPlan);
+    this.#tell((events) => events.plan?.());
+  }
+
+  #tick(moment: Moment, readings: readonly Reading[]): void {
+    const { store, device, actuators, publisher } = this.#parts;
+    const ticked = tick(this.#stages, this.#state, moment, this.#wanted(moment.nowMs), readings);
+    this.#state = ticked.state;
+    for (const publication of actuators.order(ticked.order, moment.nowMs))
+      void publisher.publish(publication);
+    device.publishOrder(ticked.order);
+    const record = store.addRecord(ticked.record);
+    this.#last = { ...ticked, record };
+    this.#countWarmth(record);
+    this.#firstRecordMs ??= record.atMs;
+    if (this.#mode?.mode !== record.mode) this.#mode = { mode: record.mode, sinceMs: record.atMs };
+    const pointsHeard = Object.values(moment.live).filter((point) => point?.value != null).length;
+    device.publishCycle(record, { pointsHeard, warmTonightKh: this.#tonight.warmKh });
+    device.publishSettings(this.#settings(moment.nowMs));
+    this.#tellAlerts(moment, ticked);
+    this.#checkpoint(moment.nowMs);
+    this.#tell((events) => events.record?.(record));
+  }
+
+  #wanted(nowMs: number) {
+    const { wish, strategy } = this.owner.settings(nowMs);
+    return { wish: wish.name === 'none' ? null : wish, strategy };
+  }
+
+  #settings(nowMs: number) {
+    const { wish, wishForMs, strategy, limitC } = this.owner.settings(nowMs);
+    return { wish: wish.name, wishForMs, strategy, limitC };
+  }
+
+  #outlook(nowMs: number): Outlook {
+    const { intake, stopwatch } = this.#parts;
+    return {
+      outdoorForecast: intake.forecast()?.value ?? null,
+      datedPrices: this.#pricesHeard(),
+      demand: this.#demand(nowMs),
+      stopwatch,
+    };
+  }
+
+  #pricesHeard(): readonly DatedPrice[] {
+    const heard = this.#parts.intake.prices();
+    if (heard === null) return [];
+    if (this.#datedPrices?.heardMs === heard.heardMs) return this.#datedPrices.prices;
+    let prices: readonly DatedPrice[] = this.#datedPrices?.prices ?? [];
+    try {
+      prices = parseDatedPrices(heard.value, this.#config.site.currency);
+    } catch (error) {
+      this.#parts.log.warn({}, `${sentenceOf(error)} The prices before it stand.`);
+    }
+    this.#datedPrices = { heardMs: heard.heardMs, prices };
+    return prices;
+  }
+
+  /** The month's peak so far, where the contract charges for it. */
+  #demand(nowMs: number): Outlook['demand'] {
+    const { tariff } = this.#config.power;
+    if (!tariff?.demand) return null;
+    const month = monthAt(tariff.zone ?? this.#config.site.zone, nowMs);
+    const records = this.#parts.store.recordsBetween(month.startMs, nowMs);
+    return demandSoFar(this.#config, energyBySlot(records, tariff.demand.overMs), nowMs);
+  }
+
+  #tellAlerts(moment: Moment, ticked: Ticked): void {
+    const { store, actuators, device, log } = this.#parts;
+    const faults = actuators.faults(moment.live, moment.nowMs);
+    const alerts = alertsOf({
+      config: this.#config,
+      live: moment.live,
+      clock: this.#clock,
+      storeFault: store.health().fault?.message ?? null,
+      switchFaults: Object.fromEntries(faults.map(({ machine, sentence }) => [machine, sentence])),
+      setAside: ticked.estimate.probes.flatMap(({ point, setAside }) =>
+        setAside === null ? [] : [{ point, why: setAside }],
+      ),
+      spoken: ticked.spoken,
+      expectedWarmKh: this.#state.planned?.plan.expectedWarmKh ?? null,
+    });
+    for (const [id, sentence] of alerts) {
+      if (!this.#alerts.has(id)) log.warn({ alert: id }, sentence);
+      this.#alerts.add(id);
+      device.alert(id, sentence);
+    }
+    for (const id of this.#alerts) {
+      if (alerts.has(id)) continue;
+      this.#alerts.delete(id);
+      device.alert(id, null);
+    }
+  }
+
+  #countWarmth(record: CycleRecord): void {
+    const { date, startMs } = nightAt(this.#config.site.zone, record.atMs);
+    if (this.#tonight.date !== date) {
+      const before = this.#parts.store.recordsBetween(startMs, record.atMs - 1);
+      this.#tonight = { date, warmKh: before.reduce((sum, one) => sum + one.warmKh, 0) };
+    }
+    this.#tonight = { date, warmKh: this.#tonight.warmKh + record.warmKh };
+  }
+
+  /** Writes the sheet of every night that is over; called by each cycle and, on real time, by the noon job. */
+  closeNights(): void {
+    this.#guarded('closing the night', () => {
+      if (this.#clock.state === 'doubtful') return;
+      const nowMs = this.#parts.clock.nowMs();
+      const { date } = nightAt(this.#config.site.zone, nowMs);
+      if (this.#closedBefore === date) return;
+      for (const night of nightsToClose(this.#parts.store, this.#config.site.zone, nowMs))
+        this.#close(night, nowMs);
+      this.#closedBefore = date;
+    });
+  }
+  #closedBefore = '';
+
+  #close(night: Night, nowMs: number): void {
+    const estimate = this.#last?.estimate ?? null;
+    const sheet = writeSheet(
+      this.#config,
+      this.#parts.store,
+      night,
+      nowMs,
+      estimate === null ? null : nightEnd(estimate),
+    );
+    if (sheet === null) return;
+    const noStorage = sheet.comparisons.find((one) => one.strategy === 'no-storage');
+    this.#parts.device.publishNight({
+      sheet,
+      costMoney: sheet.electricity.money,
+      savedMoney: noStorage?.savedMoney ?? null,
+      balanceResidualPct: sheet.balance.residualPct,
+    });
+    this.#parts.log.info(
+      { night: night.date },
+      `The night of ${night.date} is closed. ${sheet.balance.sentence}`,
+    );
+    this.#tell((events) => events.night?.(sheet));
+  }
+
+  /** Takes over a changed comfort limit; the forecaster goes on with what it has learned. */
+  limitChanged(): void {
+    const { limitC } = this.owner.settings(this.#parts.clock.nowMs());
+    const memory = this.#stages.forecaster.memory();
+    this.#config = withLimit(this.#parts.config, limitC);
+    const forecaster = createForecaster(this.#config, { seed: this.#parts.seed, memory });
+    this.#stages = stagesOf(this.#config, this.#stages.estimator, forecaster);
+    this.planAfresh();
+  }
+
+  /** Drops the plan, so that the next cycle makes a new one. */
+  planAfresh(): void {
+    this.#guarded('planning', () => this.#replan(this.#moment()));
+    this.cycle();
+  }
+
+  #takeUp(): void {
+    const { store, config, clock, seed } = this.#parts;
+    const stored = this.#remembered('estimator') as Partial<Checkpoint> | null;
+    if (stored === null || typeof stored.atMs !== 'number' || stored.atMs > clock.nowMs()) return;
+    const from: Checkpoint = { atMs: stored.atMs, memory: stored.memory };
+    this.#checkpoints = [from];
+    this.#stages = { ...this.#stages, estimator: replay(config, store, from, clock.nowMs(), seed) };
+    const last = store.latestRecord();
+    if (last !== null) this.#state = { ...this.#state, lastMs: last.atMs };
+  }
+
+  #rewind(nowMs: number): void {
+    const lateMs = this.#rewindToMs;
+    this.#rewindToMs = Number.POSITIVE_INFINITY;
+    if (!Number.isFinite(lateMs)) return;
+    const from = checkpointBefore(this.#checkpoints, lateMs);
+    if (from === null) return;
+    const { config, store, seed, log } = this.#parts;
+    this.#stages = { ...this.#stages, estimator: replay(config, store, from, nowMs, seed) };
+    this.#pending = [];
+    this.#checkpoints = this.#checkpoints.filter((one) => one.atMs <= from.atMs);
+    log.info(
+      { fromMs: from.atMs },
+      'Late readings came in; the estimate was worked out again from before them.',
+    );
+  }
+
+  #checkpoint(nowMs: number): void {
+    const last = this.#checkpoints.at(-1);
+    if (last && nowMs - last.atMs < CHECKPOINT_MS) return;
+    this.#checkpoints = keepCheckpoint(this.#checkpoints, {
+      atMs: nowMs,
+      memory: this.#stages.estimator.memory(),
+    });
+  }
+
+  #saveMemory(): void {
+    const { store, clock } = this.#parts;
+    store.saveMemory(
+      'estimator',
+      JSON.stringify({ atMs: this.#state.lastMs ?? clock.nowMs(), memory: this.#stages.estimator.memory() }),
+    );
+    store.saveMemory('forecaster', JSON.stringify(this.#stages.forecaster.memory()));
+    store.saveMemory('dispatch', JSON.stringify(this.#state.dispatch));
+    this.saveOwner();
+  }
+
+  saveOwner(): void {
+    this.#parts.store.saveMemory('owner', this.owner.memory());
+  }
+
+  #flush(): void {
+    const { store, log } = this.#parts;
+    const before = store.health().fault;
+    const { fault } = store.flush();
+    if (fault !== null && before?.code !== fault.code) log.error({ code: fault.code }, fault.message);
+    if (fault === null && before !== null)
+      log.info({}, 'The database takes data again; what waited in memory is written.');
+  }
+
+  #remembered(name: string): unknown {
+    const text = this.#parts.store.loadMemory(name);
+    if (text === null) return null;
+    try {
+      return JSON.parse(text) as unknown;
+    } catch {
+      this.#parts.log.warn(
+        { name },
+        `What was learned (${name}) is damaged in the store; it is learned anew.`,
+      );
+      return null;
+    }
+  }
+
+  /** Latches outlive a restart; the compressor counts as just stopped, whatever it did before. */
+  #rememberedDispatch(nowMs: number): DispatchMemory {
+    const stored = this.#remembered('dispatch') as Partial<DispatchMemory> | null;
+    return { ...freshMemory(nowMs), ...stored, chillerOn: false, chillerSinceMs: nowMs, pumpOnSinceMs: null };
+  }
+
+  #tell(call: (events: DaemonEvents) => void): void {
+    for (const events of this.#events) this.#guarded('telling an observer', () => call(events));
+  }
+
+  #guarded(what: string, work: () => void): void {
+    try {
+      work();
+    } catch (error) {
+      const code = error instanceof RimeholdError ? error.code : 'internal';
+      this.#parts.log.error(
+        { code, err: error },
+        `Something failed in ${what}: ${sentenceOf(error)} The loop goes on.`,
+      );
+      this.#parts.device.log('error', `Something failed in ${what}: ${sentenceOf(error)}`);
+    }
+  }
+
+  /** Since when the plant does what it does; null before the first cycle. */
+  modeSinceMs(): number | null {
+    return this.#mode?.sinceMs ?? null;
+  }
+
+  /** Time of the first record there is; null before it. */
+  firstRecordMs(): number | null {
+    return this.#firstRecordMs;
+  }
+
+  /** For the page: what is known now. */
+  view() {
+    return {
+      config: this.#config,
+      state: this.#state,
+      clock: this.#clock,
+      heard: this.#heard,
+      connected: this.#connected,
+      connectedSinceMs: this.#connectedSinceMs,
+      linkSentence: this.#linkSentence,
+      last: this.#last,
+      plan: this.#lastPlan,
+    };
+  }
+}
+
+function withLimit(config: SiteConfig, limitC: number): SiteConfig {
+  return { ...config, comfort: { ...config.comfort, limitC } };
+}
+
+function nightEnd({ probes, learned }: IceEstimate): NightEnd {
+  return { probes, learned };
+}

@@ -1,0 +1,268 @@
+/** What the page shows, read from the daemon and its store. No figure is worked out a second time. */
+import type { WishName } from '../commands.ts';
+import type { ActuatorFault } from '../mqtt/actuators.ts';
+import type { PointStatus } from '../mqtt/intake.ts';
+import { bankLimits } from '../plant/bank.ts';
+import { pointSpec, valueOf, type LivePoints } from '../points.ts';
+import { CAUTION } from '../reports/caution.ts';
+import type { NightSheet } from '../reports/night-schema.ts';
+import { readSheet } from '../reports/night-schema.ts';
+import { renderCsv } from '../reports/render-csv.ts';
+import { renderHtml } from '../reports/render-html.ts';
+import { HOUR_MS, nightAt, type Clock } from '../time.ts';
+import type { InterlockRow, NightRow, NowView, PointRow, WebSource, WishPreview } from '../web/source.ts';
+import { INTERLOCKS } from '../dispatch/interlocks.ts';
+import type { Daemon } from './daemon.ts';
+import { storedSheet } from './nights.ts';
+import type { DaemonParts } from './ports.ts';
+
+export interface PageSourceOptions {
+  readonly daemon: Daemon;
+  readonly parts: DaemonParts;
+  readonly version: string;
+}
+
+export function pageSource({ daemon, parts, version }: PageSourceOptions): WebSource {
+  const { store, clock, config } = parts;
+  const sheets = (from: string, to: string): NightSheet[] =>
+    store.sheets(from, to).flatMap(({ body }) => readSheet(body) ?? []);
+  return {
+    now: () => nowView({ daemon, parts, version }, clock),
+    records: (fromMs, toMs) => store.recordsBetween(fromMs, toMs),
+    plansBetween: (fromMs, toMs) => store.plansBetween(fromMs - 1, toMs),
+    nights: (from, to) => ({ rows: sheets(from, to).map(nightRow), drifts: [] }),
+    night: (date) => storedSheet(store, date),
+    nightHtml: (date) => {
+      const sheet = storedSheet(store, date);
+      return sheet === null ? null : renderHtml(sheet);
+    },
+    nightsCsv: (from, to) => renderCsv(sheets(from, to)),
+    setWish: (name, durationMs) => {
+      const wish = daemon.owner.wish(name, durationMs, clock.nowMs());
+      daemon.saveOwner();
+      daemon.cycle();
+      return wish;
+    },
+    setStrategy: (strategy) => {
+      daemon.owner.strategy(strategy);
+      daemon.saveOwner();
+      daemon.planAfresh();
+    },
+    setLimit: (limitC) => {
+      daemon.owner.limit(limitC);
+      daemon.saveOwner();
+      daemon.limitChanged();
+    },
+    wishPreview: (name, durationMs) => preview(daemon, config.site.currency, name, durationMs),
+    subscribe: (listener) =>
+      daemon.observe({
+        record: (record) => listener({ kind: 'record', record }),
+        plan: () => {
+          const { plan } = daemon.view();
+          if (plan !== null) listener({ kind: 'plan', plan });
+        },
+        night: (sheet) => listener({ kind: 'night', date: sheet.night.date }),
+      }),
+  };
+}
+
+function nowView({ daemon, parts, version }: PageSourceOptions, clock: Clock): NowView {
+  const { store, intake, config, clockRate } = parts;
+  const { site, planning } = config;
+  const nowMs = clock.nowMs();
+  const view = daemon.view();
+  const settings = daemon.owner.settings(nowMs);
+  const estimate = view.last?.estimate ?? null;
+  const live = intake.live(nowMs);
+  return {
+    nowMs,
+    clockRate,
+    site: {
+      id: site.id,
+      name: site.name,
+      zone: site.zone,
+      currency: site.currency,
+      units: site.units,
+      capacityKwh: bankLimits(config).capacityKwh,
+      reserveKwh: planning.reserveKwh,
+      island: config.power.island !== null,
+      revision: version,
+    },
+    night: nightAt(site.zone, nowMs),
+    record: view.last?.record ?? null,
+    plan: view.plan,
+    modeSinceMs: daemon.modeSinceMs(),
+    wish: settings.wish,
+    strategy: settings.strategy,
+    limitC: settings.limitC,
+    firstRecordMs: daemon.firstRecordMs(),
+    nightsClosed: store.sheets().length,
+    helpsMost: estimate?.helpsMost ?? null,
+    points: intake.status().map((status) => pointRow(status, live, nowMs, estimate?.probes ?? [])),
+    learned: estimate?.learned ?? [],
+    interlocks: interlockRows(view.last?.spoken ?? [], parts.actuators.faults(live, nowMs)),
+    cautions: [CAUTION],
+    health: health(daemon, parts),
+  };
+}
+
+function pointRow(
+  status: PointStatus,
+  live: LivePoints,
+  nowMs: number,
+  probes: readonly {
+    point: string;
+    errorAtIcePointK: number | null;
+    sd: number | null;
+    atMs: number | null;
+    setAside: string | null;
+  }[],
+): PointRow {
+  const spec = pointSpec(status.id);
+  const probe = probes.find(({ point }) => point === status.id);
+  const fresh = valueOf(live, status.id) !== null;
+  return {
+    point: status.id,
+    unit: spec?.unit ?? '',
+    what: spec?.what ?? '',
+    required: spec?.required === true,
+    heard: status.lastHeardMs !== null,
+    last: status.last?.value ?? status.undated?.value ?? null,
+    atMs: status.last?.atMs ?? null,
+    ageMs: status.last === null ? null : Math.max(0, nowMs - status.last.atMs),
+    fresh,
+    why: fresh || spec?.kind === 'series' ? '' : whyUnused(status),
+    plausible: spec?.plausible ?? [0, 0],
+    errorAtIcePointK: probe?.errorAtIcePointK ?? null,
+    errorSdK: probe?.sd ?? null,
+    errorDateMs: probe?.atMs ?? null,
+    setAside: probe?.setAside ?? null,
+  };
+}
+
+function whyUnused(status: PointStatus): string {
+  if (status.lastHeardMs === null) return `Nothing has come on ${status.topic} yet.`;
+  if (status.lastFault !== null && status.last === null)
+    return `The payload cannot be read: ${status.lastFault}.`;
+  if (status.quarantined !== null && status.last === null)
+    return `${status.quarantined.value} is not plausible and is not used.`;
+  if (status.undated !== null)
+    return 'The broker had kept this value; how old it is nobody knows, so it is not used.';
+  return 'The last value is too old to be used.';
+}
+
+function interlockRows(
+  spoken: readonly { id: string; sentence: string }[],
+  faults: readonly ActuatorFault[],
+): InterlockRow[] {
+  const rows = INTERLOCKS.map(({ id }) => {
+    const word = spoken.find((one) => one.id === id);
+    return { name: id, speaks: word !== undefined, sentence: word?.sentence ?? '' };
+  });
+  return [
+    ...rows,
+    ...faults.map(({ machine, sentence }) => ({ name: `switch of the ${machine}`, speaks: true, sentence })),
+  ];
+}
+
+function health(daemon: Daemon, { store }: DaemonParts): NowView['health'] {
+  const view = daemon.view();
+  const { fault } = store.health();
+  return {
+    broker: {
+      state: view.connected ? 'connected' : 'away',
+      sinceMs: view.connectedSinceMs,
+      detail: view.linkSentence,
+    },
+    clock: { state: view.clock.state, detail: view.clock.why },
+    store: {
+      state: fault === null ? 'ok' : fault.code === 'store-full' ? 'full' : 'broken',
+      detail: fault?.message ?? '',
+    },
+  };
+}
+
+/** What a wish would probably cost, by the worth that the plan gives to ice. */
+function preview(daemon: Daemon, currency: string, name: WishName, durationMs: number): WishPreview {
+  const { last, state } = daemon.view();
+  const hours = durationMs / HOUR_MS;
+  const plan = state.planned?.plan ?? null;
+  const worth = plan?.worthOfIceMoneyPerKwh ?? null;
+  if (name === 'none' || last === null || plan === null || worth === null)
+    return { sentence: 'What it would cost cannot be told yet.', costMoney: null };
+  const price = last.record.priceMoneyPerKwh ?? 0;
+  const { iceKwh, powerKwh, sentence } = wishDraws(daemon, name, hours);
+  const costMoney = powerKwh * price + iceKwh * worth;
+  return {
+    sentence: `${sentence} That is ${costMoney >= 0 ? 'about' : 'a saving of about'} ${Math.abs(costMoney).toFixed(2)} ${currency} against the plan.`,
+    costMoney,
+  };
+}
+
+/** Ice spent (negative: made or kept) and electricity drawn by a wish, beyond what the plan has in the same hours. */
+function wishDraws(
+  daemon: Daemon,
+  name: WishName,
+  hours: number,
+): { iceKwh: number; powerKwh: number; sentence: string } {
+  const { config, last, state } = daemon.view();
+  const nowMs = last?.record.atMs ?? 0;
+  const steps = (state.planned?.plan.steps ?? []).filter(
+    (step) => step.startMs >= nowMs - 1 && step.startMs < nowMs + hours * HOUR_MS,
+  );
+  const share = (test: (command: string) => boolean): number =>
+    steps.length === 0 ? 0 : steps.filter((step) => test(step.command)).length / steps.length;
+  const chargingH = hours * share((command) => command.startsWith('charge'));
+  const coolingH = hours * share((command) => command.endsWith('discharge'));
+  const { iceMakingW, powerW } = config.chiller;
+  const coolW = Math.min(last?.record.iceOnHandKwh ?? 0, (hours - coolingH) * 1.5);
+  switch (name) {
+    case 'cool-now':
+      return {
+        iceKwh: coolW,
+        powerKwh: 0,
+        sentence: `Up to ${coolW.toFixed(1)} kWh of ice more would be spent.`,
+      };
+    case 'save-ice':
+      return {
+        iceKwh: -coolingH,
+        powerKwh: 0,
+        sentence: `The rooms would go without cooling for ${coolingH.toFixed(1)} h that the plan has cooled.`,
+      };
+    case 'make-ice': {
+      const moreH = hours - chargingH;
+      return {
+        iceKwh: (-moreH * iceMakingW) / 1000,
+        powerKwh: (moreH * powerW) / 1000,
+        sentence: `Up to ${((moreH * iceMakingW) / 1000).toFixed(1)} kWh of ice more would be made.`,
+      };
+    }
+    default:
+      return {
+        iceKwh: (chargingH * iceMakingW) / 1000 - coolingH,
+        powerKwh: (-chargingH * powerW) / 1000,
+        sentence: `Everything would rest; ${chargingH.toFixed(1)} h of making ice and ${coolingH.toFixed(1)} h of cooling fall out.`,
+      };
+  }
+}
+
+function nightRow(sheet: NightSheet): NightRow {
+  const noStorage = sheet.comparisons.find((one) => one.strategy === 'no-storage');
+  return {
+    date: sheet.night.date,
+    partial: !sheet.whole,
+    revision: sheet.revision,
+    iceStartKwh: sheet.ice.startKwh,
+    iceEndKwh: sheet.ice.endKwh,
+    madeKwh: sheet.made.kwh,
+    meltedKwh: sheet.melted.kwh,
+    leakedKwh: sheet.leaked.kwh,
+    electricityKwh: sheet.electricity.totalKwh,
+    costMoney: sheet.electricity.money,
+    savedMoney: noStorage?.savedMoney ?? null,
+    cop: sheet.cop.machine,
+    warmKh: sheet.comfort.warmKh,
+    residualPct: sheet.balance.residualPct,
+    note: sheet.whole ? '' : sheet.partialBecause,
+  };
+}

@@ -1,0 +1,41 @@
+/** Settings that come over MQTT; each is refused with a sentence or taken and kept. */
+import type { Strategy, WishName } from '../commands.ts';
+import { sentenceOf } from '../errors.ts';
+import type { SettablePath } from '../mqtt/homie.ts';
+import type { Clock } from '../time.ts';
+import type { Daemon } from './daemon.ts';
+
+/** Takes a setting; null when it is accepted, else why not. The effect comes after the answer, so that it is told first. */
+export function setByOwner(
+  daemon: Daemon,
+  clock: Clock,
+  path: SettablePath,
+  value: number | string,
+): string | null {
+  try {
+    const after = take(daemon, clock, path, value);
+    daemon.saveOwner();
+    queueMicrotask(after);
+    return null;
+  } catch (error) {
+    return sentenceOf(error);
+  }
+}
+
+function take(daemon: Daemon, clock: Clock, path: SettablePath, value: number | string): () => void {
+  const nowMs = clock.nowMs();
+  switch (path) {
+    case 'plan/strategy':
+      daemon.owner.strategy(value as Strategy);
+      return () => daemon.planAfresh();
+    case 'dispatch/wish':
+      daemon.owner.wish(value as WishName, daemon.owner.settings(nowMs).wishForMs, nowMs);
+      return () => daemon.cycle();
+    case 'dispatch/wish-for':
+      daemon.owner.wishFor(Number(value), nowMs);
+      return () => daemon.cycle();
+    case 'comfort/limit':
+      daemon.owner.limit(Number(value));
+      return () => daemon.limitChanged();
+  }
+}

@@ -1,0 +1,49 @@
+/** `rimehold estimate`: ice on hand through a reading log, offline, by the same estimator. */
+import { writeFileSync } from 'node:fs';
+import { EXIT } from '../errors.ts';
+import { estimateLog, type LogRow } from '../estimation/offline.ts';
+import type { Reading } from '../points.ts';
+import { formatInstant } from '../time.ts';
+import { logWords, readLog } from './import.ts';
+import { loadSite } from './site.ts';
+
+const HEADER = 'time,ice_on_hand_kwh,low_kwh,high_kwh,ice_kg,inventory_pct';
+
+export async function estimate(options: {
+  config: string;
+  readings: string;
+  out: string;
+  json?: boolean;
+}): Promise<number> {
+  const config = loadSite(options.config);
+  const readings: Reading[] = [];
+  const summary = await readLog(options.readings, (batch) => {
+    for (const reading of batch) readings.push(reading);
+  });
+  for (const words of logWords(summary)) console.error(words);
+  readings.sort((a, b) => a.atMs - b.atMs);
+  const rows = estimateLog(config, readings);
+  writeFileSync(options.out, `${[HEADER, ...rows.map(csvRow)].join('\r\n')}\r\n`);
+  const last = rows.at(-1) ?? null;
+  if (options.json) console.log(JSON.stringify({ out: options.out, rows: rows.length, ...summary, last }));
+  else console.log(words(options.out, rows.length, last));
+  if (rows.length === 0) return EXIT.no;
+  return summary.faulty === 0 ? EXIT.yes : EXIT.no;
+}
+
+function csvRow(row: LogRow): string {
+  const { atMs, iceOnHandKwh, lowKwh, highKwh, iceKg, inventoryPct } = row;
+  return [
+    formatInstant(atMs),
+    iceOnHandKwh.toFixed(4),
+    lowKwh.toFixed(4),
+    highKwh.toFixed(4),
+    iceKg.toFixed(3),
+    inventoryPct.toFixed(3),
+  ].join(',');
+}
+
+function words(out: string, count: number, last: LogRow | null): string {
+  if (last === null) return `The log holds no reading, so ${out} holds only its header.`;
+  return `${count} rows are in ${out}. At the end: ${last.iceOnHandKwh.toFixed(2)} kWh of ice on hand (${last.lowKwh.toFixed(2)} to ${last.highKwh.toFixed(2)}), ${last.iceKg.toFixed(1)} kg.`;
+}

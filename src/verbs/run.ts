@@ -1,0 +1,67 @@
+/** `rimehold run`: the daemon, until it is told to stop. */
+import type { SiteConfig } from '../config.ts';
+import { EXIT, RimeholdError } from '../errors.ts';
+import { startSite, type Running } from '../main.ts';
+import { renderText } from '../reports/render-text.ts';
+import { createLapseClock } from '../simulator/lapse-clock.ts';
+import { parseInstant, type Clock } from '../time.ts';
+import { loadSite } from './site.ts';
+import { systemClock } from './system-clock.ts';
+
+export interface RunOptions {
+  readonly config: string;
+  readonly lapse?: string;
+  readonly epoch?: string;
+}
+
+export async function run(options: RunOptions): Promise<number> {
+  const config = loadSite(options.config);
+  const { clock, clockRate } = clockOf(options);
+  const running = await startSite(config, { clock, clockRate });
+  printSheets(config, running);
+  console.error(
+    `rimehold watches ${config.site.name} through ${running.brokerUrl}${running.pageUrl === null ? '' : `; its page is at ${running.pageUrl}`}`,
+  );
+  await stopSignal();
+  await running.stop();
+  return EXIT.yes;
+}
+
+export function printSheets(config: SiteConfig, { daemon }: Running): void {
+  if (config.nights.print)
+    daemon.observe({ night: (sheet) => void process.stdout.write(`${renderText(sheet)}\n`) });
+}
+
+function clockOf({ lapse, epoch }: RunOptions): { clock: Clock; clockRate: number } {
+  if (lapse === undefined && epoch === undefined) return { clock: systemClock(), clockRate: 1 };
+  const factor = Number(lapse ?? '1');
+  if (!(factor > 0 && factor <= 100_000)) {
+    throw new RimeholdError(
+      'usage',
+      `Expected --lapse with a factor above 0 and up to 100000, found "${lapse}".`,
+    );
+  }
+  const epochMs = epoch === undefined ? Date.now() : parseInstant(epoch);
+  if (epochMs === null) {
+    throw new RimeholdError(
+      'usage',
+      `Expected --epoch with a time as 2026-07-14T12:00:00Z, found "${epoch}".`,
+    );
+  }
+  return {
+    clock: createLapseClock({ epochMs, factor, realNowMs: () => performance.now() }),
+    clockRate: factor,
+  };
+}
+
+/** Resolves at the first SIGINT or SIGTERM; a second one ends the process at once. */
+export function stopSignal(): Promise<void> {
+  return new Promise((resolve) => {
+    const once = (): void => {
+      resolve();
+      process.once('SIGINT', () => process.exit(EXIT.couldNotRun));
+    };
+    process.once('SIGINT', once);
+    process.once('SIGTERM', once);
+  });
+}
