@@ -39,7 +39,7 @@ export class Island {
     return capacity > 0 ? (100 * this.chargeKwh) / capacity : 0;
   }
 
-  /** Once a minute: sunshine on the panels' plane, and whether the generator must be silent. */
+  /** Now and then: sunshine on the panels' plane, and whether the generator must be silent. */
   look(atMs: number, planeWPerM2: number, outdoorC: number): void {
     const cellC = outdoorC + (CELL_RISE_K * planeWPerM2) / 1000;
     const part = PANEL_PART * (1 - LOSS_PER_K * (cellC - 25));

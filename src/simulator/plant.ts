@@ -126,7 +126,7 @@ export class Plant {
       surfaceRatio: 0,
     };
     this.cabinBy = { outdoorC: 0, outdoorRatio: 0, ghiWPerM2: 0, changesPerH: 0 };
-    this.minute(o.startMs);
+    this.look(o.startMs);
     this.surroundC = this.surround();
     this.ledger = new Ledger(this.bank, this.cabin);
   }
@@ -150,8 +150,8 @@ export class Plant {
     return this.saturation.ratioAt(this.sky.outdoorC, this.sky.outdoorRhPct);
   }
 
-  /** Once a minute: weather, sun through the windows, people, ageing. */
-  minute(atMs: number): void {
+  /** Every two minutes: weather, sun through the windows, people, ageing. */
+  look(atMs: number): void {
     this.sky = this.weather.at(atMs);
     this.age((atMs - this.startMs) / DAY_MS);
     const { latitudeDeg, longitudeDeg } = this.site.site;

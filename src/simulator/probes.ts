@@ -6,8 +6,8 @@ import type { ProbeFaults } from './probe-faults.ts';
 
 /** What a probe sees: the true value at its place, and that of the air which it would fall into. */
 export interface Sight {
-  valueOf(point: PointId): number;
-  surroundC(): number;
+  readonly own: () => number;
+  readonly surroundC: () => number;
 }
 
 /** Where a reading goes; `arrivesMs` is when the hub hears it. */
@@ -26,11 +26,14 @@ export class Probe {
   private reportedMs = Number.NEGATIVE_INFINITY;
   private silentUntilMs = 0;
   private stuckAt = Number.NaN;
-  /** Chances for each sample, worked out once. */
-  private readonly dropoutChance: number;
-  private readonly glitchChance: number;
+  private readonly sight: Sight;
+  private nextSilenceMs: number;
+  private nextGlitchMs: number;
+  /** What the element follows of the difference within one period; other spans are worked out as they come. */
+  private readonly followsInPeriod: number;
 
-  constructor(point: PointId, faults: ProbeFaults, random: Random, startMs: number) {
+  constructor(point: PointId, sight: Sight, faults: ProbeFaults, random: Random, startMs: number) {
+    this.sight = sight;
     const spec = pointSpec(point);
     if (!spec) throw new TypeError(`${point} is no point`);
     this.point = point;
@@ -38,22 +41,23 @@ export class Probe {
     this.faults = faults;
     this.random = random;
     this.startMs = startMs;
-    this.dropoutChance = (faults.dropoutPerDay * faults.periodMs) / DAY_MS;
-    const oneWire = spec.kind === 'temperature';
-    this.glitchChance = oneWire ? (faults.glitchPerDay * faults.periodMs) / DAY_MS : 0;
+    this.followsInPeriod = this.follows(faults.periodMs);
+    this.nextSilenceMs = startMs + this.waitMs(faults.dropoutPerDay);
+    const glitchPerDay = spec.kind === 'temperature' ? faults.glitchPerDay : 0;
+    this.nextGlitchMs = startMs + this.waitMs(glitchPerDay);
     // Probes do not all speak at once.
     this.nextMs = startMs + Math.floor(random.next() * Math.min(faults.periodMs, 60_000));
   }
 
   /** Samples if it is due; `sooner` (a plug that sees its machine switch) samples now. */
-  look(atMs: number, sight: Sight, report: Report, sooner = false): void {
+  look(atMs: number, report: Report, sooner = false): void {
     if (atMs < this.nextMs && !sooner) return;
     if (atMs >= this.nextMs) {
       this.nextMs += this.faults.periodMs * Math.ceil((atMs - this.nextMs + 1) / this.faults.periodMs);
     }
-    this.sense(atMs, sight);
+    this.sense(atMs);
     if (this.isSilent(atMs)) return;
-    const value = this.glitch() ?? this.shown(atMs);
+    const value = this.glitch(atMs) ?? this.shown(atMs);
     const { onChangeOnly, atLeastMs } = this.faults;
     const same = onChangeOnly !== null && Math.abs(value - this.reported) < onChangeOnly;
     if (same && atMs - this.reportedMs < atLeastMs) return;
@@ -62,15 +66,23 @@ export class Probe {
     this.send({ point: this.point, atMs, value }, report);
   }
 
+  /** Time to the next of some rare events, exponentially distributed. */
+  private waitMs(perDay: number): number {
+    return perDay > 0 ? (-DAY_MS / perDay) * Math.log(1 - this.random.next()) : Number.POSITIVE_INFINITY;
+  }
+
+  private follows(spanMs: number): number {
+    return this.faults.lagS > 0 ? -Math.expm1(-spanMs / 1000 / this.faults.lagS) : 1;
+  }
+
   /** The sensing element follows the truth at its place with a first-order lag. */
-  private sense(atMs: number, sight: Sight): void {
-    const { fallenOutAtMs, swappedWith, lagS } = this.faults;
+  private sense(atMs: number): void {
+    const { fallenOutAtMs, periodMs } = this.faults;
     const fallen = fallenOutAtMs !== null && atMs >= fallenOutAtMs;
-    const trueValue = fallen ? sight.surroundC() : sight.valueOf(swappedWith ?? this.point);
-    const follows = lagS > 0 ? -Math.expm1((this.sensedMs - atMs) / 1000 / lagS) : 1;
-    this.sensedC = Number.isNaN(this.sensedC)
-      ? trueValue
-      : this.sensedC + follows * (trueValue - this.sensedC);
+    const trueValue = fallen ? this.sight.surroundC() : this.sight.own();
+    const spanMs = atMs - this.sensedMs;
+    const part = spanMs === periodMs ? this.followsInPeriod : this.follows(spanMs);
+    this.sensedC = Number.isNaN(this.sensedC) ? trueValue : this.sensedC + part * (trueValue - this.sensedC);
     this.sensedMs = atMs;
   }
 
@@ -92,13 +104,15 @@ export class Probe {
 
   private isSilent(atMs: number): boolean {
     if (atMs < this.silentUntilMs) return true;
-    if (this.dropoutChance === 0 || this.random.next() >= this.dropoutChance) return false;
+    if (atMs < this.nextSilenceMs) return false;
     this.silentUntilMs = atMs - this.faults.dropoutS * 1000 * Math.log(1 - this.random.next());
+    this.nextSilenceMs = this.silentUntilMs + this.waitMs(this.faults.dropoutPerDay);
     return true;
   }
 
-  private glitch(): number | null {
-    if (this.glitchChance === 0 || this.random.next() >= this.glitchChance) return null;
+  private glitch(atMs: number): number | null {
+    if (atMs < this.nextGlitchMs) return null;
+    this.nextGlitchMs = atMs + this.waitMs(this.faults.glitchPerDay);
     return this.random.next() < 0.5 ? 85 : -127;
   }
 

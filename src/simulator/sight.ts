@@ -1,8 +1,6 @@
 /** What each point would show of the true plant if its probe were perfect. */
-import type { PointId } from '../points.ts';
 import { LAYERS } from './bank-shape.ts';
 import { upperRoomNames, type Plant } from './plant.ts';
-import type { Sight } from './probes.ts';
 import { roomRhPct } from './truth.ts';
 
 /** Share of the pipe's water in what a probe at the bank's outlet shows at rest; the bank conducts the remainder. */
@@ -10,10 +8,10 @@ const PIPE_AT_REST = 0.5;
 /** Current of a resting machine's electronics, W. No source. */
 const STANDBY_W = 1.5;
 
-type View = () => number;
+export type View = () => number;
 
 /** One view for each point that the plant can show; points that come from elsewhere (forecast, prices) have none. */
-function viewsOf(plant: Plant): Map<string, View> {
+export function viewsOf(plant: Plant): Map<string, View> {
   return new Map([...bankViews(plant), ...powerViews(plant), ...airViews(plant)]);
 }
 
@@ -78,13 +76,4 @@ function airViews(plant: Plant): [string, View][] {
     ...rooms.map((name, r): [string, View] => [`room-temperature${name}`, () => plant.cabin.airC[r]]),
     ...rooms.map((name, r): [string, View] => [`room-humidity${name}`, () => roomRhPct(plant, r)]),
   ];
-}
-
-export function sightOf(plant: Plant): Sight & { has(point: PointId): boolean } {
-  const views = viewsOf(plant);
-  return {
-    has: (point) => views.has(point),
-    valueOf: (point) => views.get(point)?.() ?? 0,
-    surroundC: () => plant.surroundC,
-  };
 }

@@ -13,12 +13,14 @@ import type { TruthOverrides, TruthParameters } from './parameters.ts';
 import { Plant, type PlantStart } from './plant.ts';
 import { ordinaryProbe, type ProbeOverrides } from './probe-faults.ts';
 import { Probe } from './probes.ts';
-import { sightOf } from './sight.ts';
+import { viewsOf, type View } from './sight.ts';
 import { truthOf, type Truth } from './truth.ts';
 import type { WeatherSource } from './weather.ts';
 
 export const STEP_MS = 10_000;
 const STEP_S = STEP_MS / 1000;
+/** Weather, sun and people are looked at this often. */
+const LOOK_MS = 2 * MINUTE_MS;
 
 export interface SimulatorOptions {
   readonly site: SiteConfig;
@@ -60,7 +62,6 @@ interface Late {
 class TruthSimulator implements Simulator {
   private readonly plant: Plant;
   private readonly probes: readonly Probe[];
-  private readonly sight: ReturnType<typeof sightOf>;
   private readonly switched = new Set<PointId>();
   private steppedMs: number;
   private toMs: number;
@@ -69,10 +70,9 @@ class TruthSimulator implements Simulator {
 
   constructor(o: SimulatorOptions) {
     this.plant = new Plant(o, STEP_S);
-    this.sight = sightOf(this.plant);
     this.steppedMs = o.startMs;
     this.toMs = o.startMs;
-    this.probes = buildProbes(o, this.sight);
+    this.probes = buildProbes(o, viewsOf(this.plant));
   }
 
   switch(machine: Machine, on: boolean): void {
@@ -85,8 +85,7 @@ class TruthSimulator implements Simulator {
     this.out = [];
     while (this.steppedMs + STEP_MS <= toMs) {
       const fromMs = this.steppedMs;
-      if (Math.floor(fromMs / MINUTE_MS) !== Math.floor((fromMs - STEP_MS) / MINUTE_MS))
-        this.plant.minute(fromMs);
+      if (fromMs % LOOK_MS < STEP_MS) this.plant.look(fromMs);
       this.plant.step(STEP_S);
       this.steppedMs += STEP_MS;
       this.lookAround();
@@ -97,9 +96,9 @@ class TruthSimulator implements Simulator {
 
   private lookAround(): void {
     for (const probe of this.probes) {
-      if (probe.nextMs <= this.steppedMs) probe.look(this.steppedMs, this.sight, this.report);
+      if (probe.nextMs <= this.steppedMs) probe.look(this.steppedMs, this.report);
       else if (this.switched.size > 0 && this.switched.has(probe.point)) {
-        probe.look(this.steppedMs, this.sight, this.report, true);
+        probe.look(this.steppedMs, this.report, true);
       }
     }
     if (this.switched.size > 0) this.switched.clear();
@@ -153,13 +152,15 @@ class TruthSimulator implements Simulator {
 }
 
 /** One probe for each configured point that the plant can show, each with a stream of its own. */
-function buildProbes(o: SimulatorOptions, sight: { has(point: PointId): boolean }): Probe[] {
+function buildProbes(o: SimulatorOptions, views: ReadonlyMap<string, View>): Probe[] {
   const random = createRandom(o.seed).fork('probes');
+  const surroundC = views.get('bank-surround') ?? ((): number => o.site.bank.surroundC);
   return Object.keys(o.site.points).flatMap((point) => {
     const spec = pointSpec(point);
-    if (!spec || !isPointId(point) || !sight.has(point)) return [];
-    const own = random.fork(point);
-    const faults = { ...ordinaryProbe(point, spec, own), ...o.probes?.[point] };
-    return [new Probe(point, faults, own.fork('run'), o.startMs)];
+    if (!spec || !isPointId(point)) return [];
+    const stream = random.fork(point);
+    const faults = { ...ordinaryProbe(point, spec, stream), ...o.probes?.[point] };
+    const own = views.get(faults.swappedWith ?? point);
+    return own ? [new Probe(point, { own, surroundC }, faults, stream.fork('run'), o.startMs)] : [];
   });
 }

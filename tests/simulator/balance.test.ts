@@ -8,7 +8,10 @@ const DAYS = 14;
 /** The asked-for bound is 0.1 %; sums of some 10^5 steps in double precision leave far less, so more means a leak. */
 const ROUNDING_PCT = 1e-6;
 
-describe('energy and water through weeks of partial cycles', () => {
+/** Two weeks are under a second of work; a machine shared by many may take far longer over it. */
+const PATIENCE = { timeout: 90_000 };
+
+describe('energy and water through weeks of partial cycles', PATIENCE, () => {
   it.each(BANK_FORMS)('close for a bank of the form %s', (form) => {
     const simulator = simulate({ site: juniperAs(form), truth: {}, start: { iceKg: 60 } });
     const seen = runPartialCycles(simulator, DAYS);

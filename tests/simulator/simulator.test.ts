@@ -7,6 +7,8 @@ import { DAY_MS, HOUR_MS } from '../../src/time.ts';
 import { juniperAs, simulate, siteNamed, START_MS, stillAir } from './site.ts';
 
 const SITE = siteNamed('juniper');
+/** Some of these run for simulated weeks; a machine shared by many may take long over them. */
+const PATIENCE = { timeout: 90_000 };
 
 function evening(simulator: Simulator): void {
   simulator.switch('pump', true);
@@ -69,7 +71,7 @@ describe('one seed', () => {
   });
 });
 
-describe('the plant as written and as it ages', () => {
+describe('the plant as written and as it ages', PATIENCE, () => {
   it('leaks what the leak factor and its drift say', () => {
     const written = leakWPerK({ leakFactor: 1 });
     // The water stands some tenths above 0 °C, and higher with the greater leak: a few per cent less than in proportion.
@@ -98,7 +100,7 @@ describe('the plant as written and as it ages', () => {
   });
 });
 
-describe('the cabin', () => {
+describe('the cabin', PATIENCE, () => {
   it('is cooled by ice, and dried where the coil is wet', () => {
     expect(roomsAfter(true).roomC).toBeLessThan(roomsAfter(false).roomC - 2);
     expect(roomsAfter(true).condensateKg).toBeGreaterThan(0);
@@ -157,7 +159,7 @@ describe('the cabin', () => {
   });
 });
 
-describe('an island', () => {
+describe('an island', PATIENCE, () => {
   it('lives from sun, battery and generator, and never below empty', () => {
     const simulator = simulate({ site: siteNamed('juniper-island'), truth: {} });
     let panelKwh = 0;
