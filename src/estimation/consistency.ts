@@ -13,6 +13,7 @@ export interface ProbeHealth {
   /** Steps in a row in which a doubted probe agreed. */
   agreed: number;
   lastC: number | null;
+  lastMs: number;
   sameValue: { c: number; steps: number; flowSteps: number; leastModelC: number; mostModelC: number };
   /** When it last stood on an ice-point plateau. */
   plateauMs: number | null;
@@ -26,6 +27,7 @@ export function newHealth(): ProbeHealth {
     setAside: null,
     agreed: 0,
     lastC: null,
+    lastMs: 0,
     sameValue: { c: Number.NaN, steps: 0, flowSteps: 0, leastModelC: 0, mostModelC: 0 },
     plateauMs: null,
     plateauSteps: 0,
@@ -39,6 +41,7 @@ export interface ProbeLook {
   readonly innovation: number;
   readonly variance: number;
   readonly dtS: number;
+  readonly atMs: number;
   readonly flowing: boolean;
 }
 
@@ -62,8 +65,10 @@ export function judgeProbe(health: ProbeHealth, look: ProbeLook): boolean {
   health.nis += Math.max(share, 1 / (health.steps + 2)) * (Math.min(nis, 25) - health.nis);
   health.steps = Math.min(health.steps + 1, 1000);
   const stuck = isStuck(health, look);
-  const leapt = health.lastC !== null && Math.abs(look.readC - health.lastC) > LEAP_K && nis > 9;
+  const close = look.atMs - health.lastMs <= 3000 * look.dtS;
+  const leapt = close && health.lastC !== null && Math.abs(look.readC - health.lastC) > LEAP_K && nis > 9;
   health.lastC = look.readC;
+  health.lastMs = look.atMs;
   if (health.setAside !== null) return reconsider(health, nis, stuck);
   if (stuck) health.setAside = `the same ${look.readC.toFixed(2)} °C again and again`;
   else if (leapt) health.setAside = `leapt to ${look.readC.toFixed(1)} °C, which no water does`;

@@ -57,6 +57,7 @@ export function plantModels(config: SiteConfig): PlantModels {
     ratedOutdoorC: config.chiller.ratedOutdoorC,
     nominalIceMakingW: config.chiller.iceMakingW,
     internal: config.bank.form === 'ice-on-coil-internal',
+    sealed: config.bank.form === 'sealed-containers',
   };
 }
 

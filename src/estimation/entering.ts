@@ -28,6 +28,7 @@ export function judgeEntering(core: Core, now: Circumstances): void {
     innovation: found.innovation,
     variance: found.variance,
     dtS: drive.dtS,
+    atMs: now.atMs,
     flowing: true,
   });
   if (!fits) return;

@@ -12,7 +12,7 @@ import { DAY_MS, MINUTE_MS } from '../time.ts';
 import { advanceBank } from './step.ts';
 import { newCore, type Core } from './core.ts';
 import { helpsMost } from './helps.ts';
-import { isProbe, PROBE_OFFSET, PROBE_POINTS, X } from './layout.ts';
+import { isProbe, LAYERS, PROBE_OFFSET, PROBE_POINTS, X } from './layout.ts';
 import { remember, restoreInto } from './memory.ts';
 import { newHealth } from './consistency.ts';
 import { learned, marginal, onHand, phaseOf, probeStates } from './report.ts';
@@ -79,8 +79,7 @@ function anchor(core: Core, what: Anchor, point?: PointId): void {
     for (const belief of core.beliefs) {
       restate(belief, X.levelZero, core.priors.mean[X.levelZero], core.priors.sd[X.levelZero]);
       restate(belief, X.ice, 0.02, 0.1);
-      restate(belief, X.out, 10, 8);
-      restate(belief, X.bulk, 10, 8);
+      for (const layer of LAYERS) restate(belief, layer, 10, 8);
     }
     core.beliefs.length = 1;
     return;

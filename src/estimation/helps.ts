@@ -2,14 +2,14 @@
 import { POINTS, type PointName } from '../points.ts';
 import { levelRiseMm } from '../plant/bank.ts';
 import type { Belief } from './filter.ts';
-import { STATES, X } from './layout.ts';
+import { X } from './layout.ts';
 import { freezeWPerKOf, type PlantModels } from './process.ts';
-import { onHandSlopes } from './report.ts';
+import { onHandSlopes, shared, type Slope } from './report.ts';
 
 interface Trial {
   readonly point: PointName;
   /** Sensitivity of its reading to the state, and the noise variance of some hours of readings. */
-  readonly gradient: readonly (readonly [number, number])[];
+  readonly gradient: Slope;
   readonly noise: number;
 }
 
@@ -47,8 +47,8 @@ function trials(models: PlantModels, belief: Belief): Trial[] {
     {
       point: 'bank-middle',
       gradient: [
-        [X.out, 0.5],
-        [X.bulk, 0.5],
+        [X.upper, 0.5],
+        [X.lower, 0.5],
       ],
       noise: 0.3 ** 2,
     },
@@ -60,35 +60,20 @@ export function helpsMost(
   belief: Belief,
   heard: (point: PointName) => boolean,
 ): PointName | null {
-  const [ice, out, bulk] = onHandSlopes(models, belief);
-  const slope: readonly (readonly [number, number])[] = [
-    [X.ice, ice],
-    [X.out, out],
-    [X.bulk, bulk],
-  ];
-  const total = quadratic(belief, slope, slope);
+  const slope = onHandSlopes(models, belief);
+  const total = shared(belief, slope, slope);
   let best: PointName | null = null;
   let most = WORTH_NAMING;
   for (const trial of trials(models, belief)) {
     if (heard(trial.point) || !(trial.point in POINTS)) continue;
     if (trial.point === 'bank-level' && !models.bank.guess.iceHeld) continue;
-    const shared = quadratic(belief, slope, trial.gradient);
-    const variance = quadratic(belief, trial.gradient, trial.gradient) + trial.noise;
-    const narrowed = 1 - Math.sqrt(Math.max(0, 1 - (shared * shared) / (variance * total)));
+    const common = shared(belief, slope, trial.gradient);
+    const variance = shared(belief, trial.gradient, trial.gradient) + trial.noise;
+    const narrowed = 1 - Math.sqrt(Math.max(0, 1 - (common * common) / (variance * total)));
     if (narrowed > most) {
       most = narrowed;
       best = trial.point;
     }
   }
   return best;
-}
-
-function quadratic(
-  belief: Belief,
-  a: readonly (readonly [number, number])[],
-  b: readonly (readonly [number, number])[],
-): number {
-  let sum = 0;
-  for (const [i, u] of a) for (const [j, v] of b) sum += u * v * belief.cov[i * STATES + j];
-  return sum;
 }

@@ -8,42 +8,46 @@ import type { BankModel } from '../plant/bank.ts';
 export const X = {
   /** Ice as a fraction of the most the bank may hold. */
   ice: 0,
-  /** Water on the leaving side, °C; in internal melt the coolant at the end of the coil. */
-  out: 1,
-  /** Water on the entering side, °C; in internal melt the bulk of the water. */
-  bulk: 2,
-  cop: 3,
+  /** Water in four layers, °C, from where it enters to where it leaves. In internal melt the first is all of the water and
+   * the last the coolant at the end of the coil. */
+  top: 1,
+  upper: 2,
+  lower: 3,
+  out: 4,
+  cop: 5,
   /** Change of that gain for each 10 K outdoors above the rating. */
-  copOutdoor: 4,
+  copOutdoor: 6,
   /** Change of that gain from no ice to full. */
-  copIce: 5,
-  melt: 6,
-  meltExponent: 7,
-  meltBend: 8,
-  /** What layers and lopsided ice do to melting for some hours. */
-  meltNow: 9,
-  freeze: 10,
-  thickening: 11,
-  freezeNow: 12,
-  leak: 13,
-  flow: 14,
-  coil: 15,
+  copIce: 7,
+  melt: 8,
+  meltExponent: 9,
+  meltBend: 10,
+  /** What lopsided ice does to melting for some hours. */
+  meltNow: 11,
+  freeze: 12,
+  thickening: 13,
+  freezeNow: 14,
+  leak: 15,
+  flow: 16,
+  coil: 17,
   /** Half of the coolant's rise through the coil, for each watt, relative to its guess. */
-  span: 16,
-  power: 17,
-  powerIce: 18,
-  enteringOffset: 19,
+  span: 18,
+  power: 19,
+  powerIce: 20,
+  enteringOffset: 21,
   /** From here on nothing moves the bank: what instruments add. */
-  levelZero: 20,
-  leavingOffset: 21,
-  topOffset: 22,
-  middleOffset: 23,
-  bottomOffset: 24,
-  supplyOffset: 25,
-  returnOffset: 26,
+  levelZero: 22,
+  leavingOffset: 23,
+  topOffset: 24,
+  middleOffset: 25,
+  bottomOffset: 26,
+  supplyOffset: 27,
+  returnOffset: 28,
 } as const;
 
-export const STATES = 27;
+export const STATES = 29;
+/** The layers of water, from where it enters to where it leaves. */
+export const LAYERS = [X.top, X.upper, X.lower, X.out] as const;
 /** States before this one drive the process; the others only show in readings. */
 export const DYNAMIC = X.levelZero;
 
@@ -83,17 +87,19 @@ function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [n
   const level = bank.config.emptyLevelMm;
   return {
     ice: [0.5, 0.3, SLOW_S],
+    top: [5, 5, SLOW_S],
+    upper: [5, 5, SLOW_S],
+    lower: [5, 5, SLOW_S],
     out: [5, 5, SLOW_S],
-    bulk: [5, 5, SLOW_S],
     cop: [0, 0.1, SLOW_S],
-    copOutdoor: [0, 0.05, SLOW_S],
-    copIce: [0, 0.08, SLOW_S],
+    copOutdoor: [0, 0.06, SLOW_S],
+    copIce: [0, 0.1, SLOW_S],
     melt: [0, 0.35, SLOW_S],
     meltExponent: [bank.guess.meltExponent, 0.25, SLOW_S],
-    meltBend: [0.3, 0.4, SLOW_S],
-    meltNow: [0, 0.18, HOURS_S],
+    meltBend: [0, 0.3, SLOW_S],
+    meltNow: [0, 0.1, HOURS_S],
     freeze: [0, 0.3, SLOW_S],
-    thickening: [Math.log(bank.guess.freezeThickening), 0.5, SLOW_S],
+    thickening: [Math.log(bank.guess.freezeThickening), 0.6, SLOW_S],
     freezeNow: [0, 0.12, HOURS_S],
     leak: [0, 0.25, 30 * DAY_S],
     flow: [0, 0.12, SLOW_S],

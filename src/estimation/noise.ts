@@ -2,7 +2,7 @@
  * How far model and instruments are trusted. Readings a few seconds apart err alike, because layers and lags outlast
  * them: an error of `alike` kelvin that lasts `lastsS` counts once in that time, not once in every step.
  */
-import { STATES, X } from './layout.ts';
+import { LAYERS, STATES, X } from './layout.ts';
 import { latentKwh, type Flows, type PlantModels } from './process.ts';
 
 export interface Alike {
@@ -14,7 +14,7 @@ export interface Alike {
 
 export const NOISE = {
   waterFlowing: { fresh: 0.05, alike: 0.12, lastsS: 400 },
-  waterResting: { fresh: 0.05, alike: 0.15, lastsS: 3600 },
+  waterResting: { fresh: 0.05, alike: 0.25, lastsS: 3600 },
   /** Water without ice, above and below the density maximum, and a warm reading where ice is believed. */
   waterWarm: { fresh: 0.06, alike: 0.25, lastsS: 1800 },
   waterLayered: { fresh: 0.1, alike: 0.7, lastsS: 1800 },
@@ -55,6 +55,5 @@ export function processNoise(
   const wander = flowing > 0 ? WATER_WANDER_K.flowing : WATER_WANDER_K.resting;
   into.fill(0, 0, STATES);
   into[X.ice] = part * part * Math.max(1, HEAT_LASTS_S / dtS) + (ICE_WANDER ** 2 * dtS) / 3600;
-  into[X.out] = (wander ** 2 * dtS) / 60;
-  into[X.bulk] = (wander ** 2 * dtS) / 60;
+  for (const layer of LAYERS) into[layer] = (wander ** 2 * dtS) / 60;
 }

@@ -1,12 +1,15 @@
 /** What each instrument would read for a state of the bank: the sensing side of the model. */
 import { levelRiseMm } from '../plant/bank.ts';
 import type { Sense } from './filter.ts';
-import { COOLANT_RISE_K, PROBE_OFFSET, X, type ProbePoint } from './layout.ts';
-import { chargingWOf, freezeWPerKOf, waterCOf, type Drive, type PlantModels } from './process.ts';
+import { COOLANT_RISE_K, LAYERS, PROBE_OFFSET, X, type ProbePoint } from './layout.ts';
+import { chargingWOf, facedC, freezeWPerKOf, type Drive, type PlantModels } from './process.ts';
 
-const water = (point: ProbePoint, read: (x: Float64Array) => number): Sense => {
+const water = (point: ProbePoint, layers: readonly number[]): Sense => {
   const offset = PROBE_OFFSET[point];
-  return { states: [X.out, X.bulk, offset], predict: (x) => read(x) + x[offset] };
+  return {
+    states: [...layers, offset],
+    predict: (x) => layers.reduce((sum, i) => sum + x[i], 0) / layers.length + x[offset],
+  };
 };
 
 export interface Senses {
@@ -20,15 +23,12 @@ export interface Senses {
 
 export function sensesOf(models: PlantModels): Senses {
   const mostKg = models.bank.mostIceKg;
-  const halfK = models.internal
-    ? (x: Float64Array): number => x[X.bulk]
-    : (x: Float64Array): number => 0.5 * (x[X.out] + x[X.bulk]);
   return {
     water: {
-      'leaving-water': water('leaving-water', (x) => x[X.out]),
-      'bank-top': water('bank-top', (x) => x[X.bulk]),
-      'bank-middle': water('bank-middle', halfK),
-      'bank-bottom': water('bank-bottom', models.internal ? halfK : (x) => x[X.out]),
+      'leaving-water': water('leaving-water', [X.out]),
+      'bank-top': water('bank-top', [X.top]),
+      'bank-middle': water('bank-middle', models.internal ? [X.top] : [X.upper, X.lower]),
+      'bank-bottom': water('bank-bottom', [models.internal ? X.top : X.out]),
     },
     level: {
       states: [X.ice, X.levelZero],
@@ -50,12 +50,11 @@ function coolantSense(models: PlantModels, point: 'coolant-supply' | 'coolant-re
   const side = point === 'coolant-supply' ? -0.5 : 0.5;
   const risePerW = COOLANT_RISE_K / models.nominalIceMakingW;
   return {
-    states: [X.ice, X.bulk, X.out, X.cop, X.copIce, X.freeze, X.freezeNow, X.thickening, X.span, offset],
+    states: [X.ice, ...LAYERS, X.cop, X.copIce, X.freeze, X.freezeNow, X.thickening, X.span, offset],
     predict: (x) => {
       const heatW = chargingWOf(models, x, drive);
-      const facedC = x[X.ice] > 0.01 ? 0 : waterCOf(models, x);
       const rise = side * risePerW * Math.exp(x[X.span]) * heatW;
-      return facedC - heatW / freezeWPerKOf(models, x) + rise + x[offset];
+      return facedC(models, x) - heatW / freezeWPerKOf(models, x) + rise + x[offset];
     },
   };
 }
@@ -63,10 +62,13 @@ function coolantSense(models: PlantModels, point: 'coolant-supply' | 'coolant-re
 /** Electrical power of the running machine: falls or rises with the ice on the coil in a way that this plant repeats. */
 function powerSense(models: PlantModels, drive: Drive): Sense {
   return {
-    states: [X.ice, X.power, X.powerIce, X.freeze, X.freezeNow, X.thickening],
+    states: [X.ice, ...LAYERS, X.power, X.powerIce, X.freeze, X.freezeNow, X.thickening],
     predict: (x) => {
-      const facedC = x[X.ice] > 0.01 ? 0 : waterCOf(models, x);
-      const balance = models.machine.balance(drive.condenserAirC, freezeWPerKOf(models, x), facedC);
+      const balance = models.machine.balance(
+        drive.condenserAirC,
+        freezeWPerKOf(models, x),
+        facedC(models, x),
+      );
       const learned = x[X.power] + x[X.powerIce] * (Math.min(1.2, Math.max(0, x[X.ice])) - 0.5);
       return Math.log(balance.powerW) + learned;
     },

@@ -13,6 +13,7 @@ import {
 import type { DeliveryModel } from '../plant/delivery.ts';
 import type { IceMachineModel } from '../plant/ice-machine.ts';
 import { X } from './layout.ts';
+import { meanOf, overturn, passLayers, scale, shift, type Passed } from './water.ts';
 
 /** What drives one step; means over it. */
 export interface Drive {
@@ -41,6 +42,8 @@ export interface PlantModels {
   readonly ratedOutdoorC: number;
   readonly nominalIceMakingW: number;
   readonly internal: boolean;
+  /** Ice shut in containers: the water that moves is another than the water that freezes. */
+  readonly sealed: boolean;
 }
 
 /** Heat flows of the last evaluation, W, means over the step. */
@@ -57,20 +60,37 @@ const LEAST_LIQUID = 0.06;
 const COIL_CONTENT_S = 90;
 /** The last ice round an internal-melt coil still meets it through water; share of the conductance at half inventory. */
 const LEAST_SHARE = 0.45;
-/** Mixing between the two halves of the water at rest, as a share of heat capacity a second; no source. */
-const REST_MIXING_PER_S = 1 / 5400;
+/** Containers start to freeze better than they melt at half inventory: no water stands at the wall. No source. */
+const FREEZE_OVER_MELT = 1.5;
+/** A container that freezes inward carries this much less at its core than at its wall. No source. */
+const INWARD_THICKENING = 1.5;
+
+/**
+ * In sealed containers the state's ice may go below none: it then stands for the warmth of the molten water in them,
+ * on the same scale of heat.
+ */
+const SEALED_LEAST = -0.4;
 
 export function iceKgOf(models: PlantModels, x: Float64Array): number {
   return Math.max(0, x[X.ice]) * models.bank.mostIceKg;
 }
 
-/** Mean temperature of the water that is not frozen. */
+/** Mean temperature of the water that moves: of what is not frozen, or of the bath round sealed containers. */
 export function waterCOf(models: PlantModels, x: Float64Array): number {
-  return models.internal ? x[X.bulk] : 0.5 * (x[X.out] + x[X.bulk]);
+  return models.internal ? x[X.top] : meanOf(x);
 }
 
 export function onHandKwhOf(models: PlantModels, x: Float64Array): number {
-  return iceOnHandKwh(models.bank, iceKgOf(models, x), waterCOf(models, x));
+  if (!models.sealed) return iceOnHandKwh(models.bank, iceKgOf(models, x), waterCOf(models, x));
+  const storedJ =
+    x[X.ice] * FUSION_J_PER_KG * models.bank.mostIceKg - bathJPerK(models) * waterCOf(models, x);
+  const usefulJ = models.bank.heatCapacityJPerK * models.bank.config.usefulLeavingC;
+  return Math.max(0, (storedJ + usefulJ) / J_PER_KWH);
+}
+
+/** Heat capacity of the bath round sealed containers, J/K. */
+function bathJPerK({ bank }: PlantModels): number {
+  return bank.heatCapacityJPerK * Math.max(LEAST_LIQUID, 1 - bank.mostIceKg / bank.waterKg);
 }
 
 /** Melt conductance, pump on, with what is learned of it. */
@@ -84,13 +104,16 @@ export function meltWPerKOf(models: PlantModels, x: Float64Array): number {
   );
 }
 
+/** From coolant to the freezing front; to the bath where containers stand between. */
 export function freezeWPerKOf(models: PlantModels, x: Float64Array): number {
   const gain = x[X.freeze] + x[X.freezeNow];
+  if (models.sealed) return freezeConductanceWPerK(models.bank, 0, 0, gain);
   return freezeConductanceWPerK(models.bank, x[X.ice], Math.exp(x[X.thickening]), gain);
 }
 
-/** What the freezing coil faces: ice, or the water that has to be cooled first. */
-function facedC(models: PlantModels, x: Float64Array): number {
+/** What the freezing coil faces: ice, or the water that has to be cooled first, or the bath round containers. */
+export function facedC(models: PlantModels, x: Float64Array): number {
+  if (models.sealed) return waterCOf(models, x);
   return x[X.ice] > 0.01 ? 0 : Math.max(0, waterCOf(models, x));
 }
 
@@ -126,11 +149,15 @@ export function loopWPerKOf(models: PlantModels, x: Float64Array, drive: Drive):
 
 /** One step in place; `flows` is filled with what went where. */
 export function advance(models: PlantModels, x: Float64Array, drive: Drive, flows: Flows): void {
-  if (x[X.ice] < 0) meltDebt(models, x);
+  if (x[X.ice] < 0 && !models.sealed) meltDebt(models, x);
   const leakW = models.bank.leakWPerK * Math.exp(x[X.leak]) * (drive.surroundC - waterCOf(models, x));
   const chargingW = drive.charging > 0 ? drive.charging * chargingWOf(models, x, drive) : 0;
   flows.leakW = leakW;
   flows.chargingW = chargingW;
+  if (models.sealed) {
+    flows.loopW = advanceSealed(models, x, drive, leakW - chargingW);
+    return;
+  }
   flows.loopW = models.internal
     ? advanceInternal(models, x, drive, leakW)
     : advanceExternal(models, x, drive, leakW);
@@ -149,42 +176,95 @@ function melt(models: PlantModels, x: Float64Array, heatJ: number): void {
   const before = liquidJPerK(models, x[X.ice]);
   x[X.ice] -= heatJ / (FUSION_J_PER_KG * models.bank.mostIceKg);
   const dilution = before / liquidJPerK(models, x[X.ice]);
-  x[X.bulk] *= dilution;
-  if (!models.internal) x[X.out] *= dilution;
+  if (models.internal) x[X.top] *= dilution;
+  else scale(x, dilution);
 }
 
-/** Water round ice, in two halves that the melt water passes one after the other. Gives the heat brought in, W. */
+/** Melting is better with the pump on. */
+function stirredShare(models: PlantModels, drive: Drive): number {
+  const { restFactor } = models.bank.guess;
+  return restFactor + (1 - restFactor) * drive.flowing;
+}
+
+/** The loop of a step as the layers feel it. */
+function loopOf(
+  models: PlantModels,
+  x: Float64Array,
+  drive: Drive,
+): { loopWPerK: number; enteringC: number } {
+  if (!(drive.flowing > 0)) return { loopWPerK: 0, enteringC: 0 };
+  const full = loopWPerKOf(models, x, drive);
+  return { loopWPerK: drive.flowing * full, enteringC: enteringCOf(models, x, drive, full) };
+}
+
+/** Water round ice. Gives the heat brought in by the loop, W. */
 function advanceExternal(models: PlantModels, x: Float64Array, drive: Drive, leakW: number): number {
-  const half = liquidJPerK(models, x[X.ice]) / 2;
-  const loop = drive.flowing > 0 ? drive.flowing * loopWPerKOf(models, x, drive) : 0;
-  const enteringC = loop > 0 ? enteringCOf(models, x, drive, loop / drive.flowing) : 0;
-  const stirred = models.bank.guess.restFactor + (1 - models.bank.guess.restFactor) * drive.flowing;
-  const toIce = 0.5 * stirred * meltWPerKOf(models, x);
-  const mixing = half * REST_MIXING_PER_S;
-  const dt = drive.dtS;
-  const { bulk, out } = X;
+  const layerJPerK = liquidJPerK(models, x[X.ice]) / 4;
+  const toIce = stirredShare(models, drive) * meltWPerKOf(models, x);
+  const passed: Passed = { loopW: 0, toIceJ: 0 };
+  passLayers(
+    x,
+    {
+      layerJPerK,
+      ...loopOf(models, x, drive),
+      toIceWPerK: spread(models, x, toIce),
+      iceC: 0,
+      otherW: leakW / 4,
+      dtS: drive.dtS,
+    },
+    passed,
+  );
+  if (toIce > 0) melt(models, x, passed.toIceJ);
+  else shift(x, passed.toIceJ / (4 * layerJPerK));
+  overturn(x, false);
+  return passed.loopW;
+}
 
-  const bulkPull = loop + toIce + mixing;
-  const bulkLeads = (loop * enteringC + leakW / 2 + mixing * x[out]) / bulkPull;
-  const bulkKept = Math.exp((-bulkPull * dt) / half);
-  const bulkMean = bulkLeads + ((x[bulk] - bulkLeads) * (1 - bulkKept) * half) / (bulkPull * dt);
-  const outPull = loop + toIce + mixing;
-  const outLeads = (loop * bulkMean + leakW / 2 + mixing * bulkMean) / outPull;
-  const outKept = Math.exp((-outPull * dt) / half);
-  const outMean = outLeads + ((x[out] - outLeads) * (1 - outKept) * half) / (outPull * dt);
+/** Floating ice fills this part of a layer's water before it reaches into the next (loose packing; no source). */
+const PACKING = 0.6;
 
-  const before = x[bulk] + x[out];
-  x[bulk] = bulkLeads + (x[bulk] - bulkLeads) * bulkKept;
-  x[out] = outLeads + (x[out] - outLeads) * outKept;
-  const loopW = loop * (enteringC - outMean);
-  // Whatever came in and is not in the water has melted ice; without ice it stays in the water.
-  const meltJ = (loopW + leakW) * dt - half * (x[bulk] + x[out] - before);
-  if (toIce > 0) melt(models, x, meltJ);
-  else {
-    x[bulk] += meltJ / (2 * half);
-    x[out] += meltJ / (2 * half);
-  }
-  return loopW;
+/** Conductance by layer: alike where ice is held at all heights, from the top down where it floats. */
+function spread(models: PlantModels, x: Float64Array, total: number): readonly number[] {
+  const each = total / 4;
+  if (models.bank.guess.iceHeld) return [each, each, each, each];
+  const filled = (Math.max(0, x[X.ice]) * models.bank.mostIceKg) / (PACKING * 0.25 * models.bank.waterKg);
+  const parts = [0, 1, 2, 3].map((k) => Math.min(1, Math.max(0.02, filled - k)));
+  const sum = parts[0] + parts[1] + parts[2] + parts[3];
+  return parts.map((part) => (total * part) / sum);
+}
+
+/** A bath round containers that freeze and melt from their walls. Gives the heat brought in by the loop, W. */
+function advanceSealed(models: PlantModels, x: Float64Array, drive: Drive, otherW: number): number {
+  const fullJ = FUSION_J_PER_KG * models.bank.mostIceKg;
+  const shutJPerK = models.bank.heatCapacityJPerK - bathJPerK(models);
+  const iceC = x[X.ice] < 0 ? (-x[X.ice] * fullJ) / shutJPerK : 0;
+  const each = 0.25 * containerWPerK(models, x, drive, meanOf(x) < iceC);
+  const passed: Passed = { loopW: 0, toIceJ: 0 };
+  passLayers(
+    x,
+    {
+      layerJPerK: bathJPerK(models) / 4,
+      ...loopOf(models, x, drive),
+      toIceWPerK: [each, each, each, each],
+      iceC,
+      otherW: otherW / 4,
+      dtS: drive.dtS,
+    },
+    passed,
+  );
+  x[X.ice] = Math.max(SEALED_LEAST, x[X.ice] - passed.toIceJ / fullJ);
+  overturn(x, true);
+  return passed.loopW;
+}
+
+/** Bath to the front inside the containers: ice at the wall while freezing, water at the wall while melting. */
+function containerWPerK(models: PlantModels, x: Float64Array, drive: Drive, freezing: boolean): number {
+  const ice = Math.min(1, Math.max(0, x[X.ice]));
+  const least = LEAST_SHARE * models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
+  if (!freezing) return Math.max(least, stirredShare(models, drive) * meltWPerKOf(models, x));
+  const full = x[X.ice] > 1 ? Math.max(0.02, 1 - 10 * (x[X.ice] - 1)) : 1;
+  const walls = models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
+  return (full * FREEZE_OVER_MELT * walls) / (1 + INWARD_THICKENING * ice);
 }
 
 /** Coolant in a coil within ice or water. Colder coolant than the bank freezes. Gives the heat brought in, W. */
@@ -196,19 +276,19 @@ function advanceInternal(models: PlantModels, x: Float64Array, drive: Drive, lea
   const toIce = iced ? models.bank.guess.restFactor * meltWPerKOf(models, x) : 0;
   const leads = toIce > 0 ? leakW / toIce : 0;
   const kept = toIce > 0 ? Math.exp((-toIce * dt) / capacity) : 1;
-  const before = x[X.bulk];
-  if (iced) x[X.bulk] = leads + (x[X.bulk] - leads) * kept;
-  const storedJ = capacity * (x[X.bulk] - before);
+  const before = x[X.top];
+  if (iced) x[X.top] = leads + (x[X.top] - leads) * kept;
+  const storedJ = capacity * (x[X.top] - before);
   const heatJ = (loopW + leakW) * dt - storedJ;
   if (iced) melt(models, x, heatJ);
-  else x[X.bulk] += heatJ / capacity;
+  else x[X.top] += heatJ / capacity;
   return loopW;
 }
 
 function throughCoil(models: PlantModels, x: Float64Array, drive: Drive, dt: number): number {
   const loop = loopWPerKOf(models, x, drive);
   const enteringC = enteringCOf(models, x, drive, loop);
-  const facedBankC = x[X.ice] > 0 ? 0 : x[X.bulk];
+  const facedBankC = x[X.ice] > 0 ? 0 : x[X.top];
   const conductance = coilConductanceWPerK(models, x, enteringC < facedBankC);
   const leads = facedBankC + (enteringC - facedBankC) * Math.exp(-conductance / loop);
   const kept = Math.exp(-dt / COIL_CONTENT_S);
@@ -231,8 +311,8 @@ function charge(models: PlantModels, x: Float64Array, heatJ: number): void {
   const scarce = 1 - Math.min(1, Math.max(0, x[X.ice] / 0.05));
   const fromWaterJ = heatJ * (x[X.ice] > 0 ? warm * scarce : 1);
   const cooler = fromWaterJ / liquidJPerK(models, x[X.ice]);
-  x[X.bulk] -= cooler;
-  if (!models.internal) x[X.out] -= cooler;
+  if (models.internal) x[X.top] -= cooler;
+  else shift(x, -cooler);
   melt(models, x, fromWaterJ - heatJ);
 }
 
@@ -241,8 +321,8 @@ function meltDebt(models: PlantModels, x: Float64Array): void {
   const debtJ = -x[X.ice] * models.bank.mostIceKg * FUSION_J_PER_KG;
   x[X.ice] = 0;
   const warmer = debtJ / liquidJPerK(models, 0);
-  x[X.bulk] += warmer;
-  if (!models.internal) x[X.out] += warmer;
+  if (models.internal) x[X.top] += warmer;
+  else shift(x, warmer);
 }
 
 /** Water below 0 °C is ice (supercooled water has the same enthalpy), and ice below none is warm water. */
@@ -252,8 +332,8 @@ function settle(models: PlantModels, x: Float64Array): void {
   if (waterC < 0) {
     const coldJ = -waterC * liquidJPerK(models, x[X.ice]);
     x[X.ice] += coldJ / (FUSION_J_PER_KG * models.bank.mostIceKg);
-    x[X.bulk] -= waterC;
-    if (!models.internal) x[X.out] -= waterC;
+    if (models.internal) x[X.top] -= waterC;
+    else shift(x, -waterC);
   }
 }
 

@@ -4,7 +4,7 @@ import type { PointName } from '../points.ts';
 import { iceOnHandKwh, J_PER_KWH, FUSION_J_PER_KG } from '../plant/bank.ts';
 import type { ProbeHealth } from './consistency.ts';
 import { sdOf, type Belief } from './filter.ts';
-import { PROBE_OFFSET, PROBE_POINTS, STATES, X, type ProbePoint } from './layout.ts';
+import { LAYERS, PROBE_OFFSET, PROBE_POINTS, STATES, X, type ProbePoint } from './layout.ts';
 import { momentsOf, quantileOf, weightsOf, type Bell, type Moments } from './mixture.ts';
 import { onHandKwhOf, waterCOf, type PlantModels } from './process.ts';
 import type { Learned, ProbeState } from './types.ts';
@@ -14,23 +14,35 @@ const WIDEN = 1.25;
 /** Nobody knows a bank better than this part of its capacity. */
 const LEAST_SD_PART = 0.006;
 
-/** Derivatives of ice on hand by ice, out and bulk, kWh for each unit. */
-export function onHandSlopes(models: PlantModels, belief: Belief): readonly [number, number, number] {
+export type Slope = readonly (readonly [state: number, slope: number])[];
+
+/** Derivatives of ice on hand by ice and water, kWh for each unit. */
+export function onHandSlopes(models: PlantModels, belief: Belief): Slope {
   const { bank } = models;
   const latent = (bank.mostIceKg * FUSION_J_PER_KG) / J_PER_KWH;
-  const liquid = Math.max(0, 1 - (Math.max(0, belief.mean[X.ice]) * bank.mostIceKg) / bank.waterKg);
+  const bath = Math.max(0, 1 - bank.mostIceKg / bank.waterKg);
+  const liquid = models.sealed
+    ? bath
+    : Math.max(0, 1 - (Math.max(0, belief.mean[X.ice]) * bank.mostIceKg) / bank.waterKg);
   const sensible = (-liquid * bank.heatCapacityJPerK) / J_PER_KWH;
-  return models.internal ? [latent, 0, sensible] : [latent, sensible / 2, sensible / 2];
+  if (models.internal)
+    return [
+      [X.ice, latent],
+      [X.top, sensible],
+    ];
+  return [[X.ice, latent], ...LAYERS.map((layer) => [layer, sensible / LAYERS.length] as const)];
+}
+
+/** Variance that two linear readings of the state share. */
+export function shared(belief: Belief, a: Slope, b: Slope): number {
+  let sum = 0;
+  for (const [i, u] of a) for (const [j, v] of b) sum += u * v * belief.cov[i * STATES + j];
+  return sum;
 }
 
 function onHandBell(models: PlantModels, belief: Belief, weight: number): Bell {
-  const [ice, out, bulk] = onHandSlopes(models, belief);
-  const at = (i: number, j: number): number => belief.cov[i * STATES + j];
-  const variance =
-    ice * ice * at(X.ice, X.ice) +
-    out * out * at(X.out, X.out) +
-    bulk * bulk * at(X.bulk, X.bulk) +
-    2 * (ice * out * at(X.ice, X.out) + ice * bulk * at(X.ice, X.bulk) + out * bulk * at(X.out, X.bulk));
+  const slope = onHandSlopes(models, belief);
+  const variance = shared(belief, slope, slope);
   const capacity = iceOnHandKwh(models.bank, models.bank.mostIceKg, 0);
   const least = LEAST_SD_PART * capacity;
   const sd = WIDEN * Math.sqrt(Math.max(variance, 0) + least * least);
@@ -122,7 +134,7 @@ export function probeStates(
     return {
       point,
       errorAtIcePointK: state?.plateauMs == null ? null : mean,
-      sdK: sd,
+      sd,
       atMs: state?.plateauMs ?? null,
       setAside: state?.setAside ?? swapSentence(point, swapped),
     };

@@ -18,7 +18,8 @@ export interface Running {
   readonly flowFrom: 'meter' | 'pump' | 'order' | 'temperature';
 }
 
-const LEAST_FLOW_L_PER_MIN = 0.2;
+/** A meter at rest may show a little: flow counts from this part of the pump's. */
+const LEAST_FLOW_PART = 0.08;
 /** Coolant this cold means that the machine runs, when nothing else tells. */
 const COLD_COOLANT_C = -2;
 
@@ -48,7 +49,8 @@ function flowing(
 ): Pick<Running, 'flowing' | 'flowLPerMin' | 'flowFrom'> {
   const meter = folder.held('loop-flow', nowMs);
   if (meter !== null) {
-    return { flowing: meter > LEAST_FLOW_L_PER_MIN ? 1 : 0, flowLPerMin: meter, flowFrom: 'meter' };
+    const least = LEAST_FLOW_PART * config.delivery.flowLPerMin;
+    return { flowing: meter > least ? 1 : 0, flowLPerMin: meter, flowFrom: 'meter' };
   }
   const pumpW = folder.held('pump-power', nowMs);
   if (pumpW !== null) {

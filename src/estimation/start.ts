@@ -1,6 +1,6 @@
 /** Beliefs to start from, and what happens to them when the owner or a long silence says that all is open again. */
 import { beliefFrom, type Belief } from './filter.ts';
-import { STATES, X, type Priors } from './layout.ts';
+import { LAYERS, STATES, X, type Priors } from './layout.ts';
 
 /** Inventories that the first beliefs are centred on; the first of them is a bank without ice. */
 const START_ICE = [0, 0.12, 0.3, 0.5, 0.7, 0.9, 1.02];
@@ -13,8 +13,7 @@ export function openBeliefs(priors: Priors, slow: Belief | null): Belief[] {
       ? { logWeight: 0, mean: Float64Array.from(slow.mean), cov: Float64Array.from(slow.cov) }
       : beliefFrom(priors.mean, priors.sd);
     restate(belief, X.ice, ice, ice === 0 ? 0.02 : START_SD);
-    restate(belief, X.out, ice === 0 ? 8 : 0.3, ice === 0 ? 6 : 0.6);
-    restate(belief, X.bulk, ice === 0 ? 8 : 0.3, ice === 0 ? 6 : 0.6);
+    for (const layer of LAYERS) restate(belief, layer, ice === 0 ? 8 : 0.3, ice === 0 ? 6 : 0.6);
     return belief;
   });
 }
@@ -30,11 +29,10 @@ export function restate(belief: Belief, i: number, mean: number, sd: number): vo
 }
 
 /** Keeps means where physics allows them and parameters within reach of their priors. */
-export function bound(belief: Belief, priors: Priors): void {
+export function bound(belief: Belief, priors: Priors, leastIce: number): void {
   const { mean } = belief;
-  mean[X.ice] = clamp(mean[X.ice], 0, 1.25);
-  mean[X.out] = clamp(mean[X.out], -8, 45);
-  mean[X.bulk] = clamp(mean[X.bulk], -8, 45);
+  mean[X.ice] = clamp(mean[X.ice], leastIce, 1.25);
+  for (const layer of LAYERS) mean[layer] = clamp(mean[layer], -15, 45);
   for (let i = X.cop; i < STATES; i++) {
     mean[i] = clamp(mean[i], priors.mean[i] - 3.5 * priors.sd[i], priors.mean[i] + 3.5 * priors.sd[i]);
   }

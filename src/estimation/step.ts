@@ -5,7 +5,7 @@ import type { PointName } from '../points.ts';
 import type { Core } from './core.ts';
 import { watchSwap } from './consistency.ts';
 import { forget, predict, type Belief } from './filter.ts';
-import { METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
+import { LAYERS, METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
 import { tidy, weightsOf } from './mixture.ts';
 import { processNoise } from './noise.ts';
 import { advance, type Drive } from './process.ts';
@@ -23,6 +23,8 @@ const ROOM_C = 24;
 const HUMIDITY_PCT = 50;
 /** Pump power that ends in the loop (common practice, no source). */
 const PUMP_HEAT_PART = 0.8;
+/** Until then the return pipe's resting water and the probe's lag make it read what does not count. */
+const FLUSHED_S = 180;
 /** Start surges and meter glitches above this multiple of the nameplate are cut. */
 const MOST_POWER_FACTOR = 1.8;
 
@@ -34,6 +36,7 @@ export function advanceBank(core: Core, nowMs: number, ordered: Command | null):
   const heard = heardOf(core, drive, nowMs);
   start(core, heard);
   const now: Circumstances = {
+    atMs: nowMs,
     drive,
     heard,
     chargingS: core.chargingS,
@@ -46,7 +49,7 @@ export function advanceBank(core: Core, nowMs: number, ordered: Command | null):
   core.predictedLeavingC = drive.flowing > 0 ? expectedLeavingC(core) : null;
   judgeEntering(core, now);
   learn(learnerOf(core), core.beliefs, now);
-  for (const belief of core.beliefs) bound(belief, core.priors);
+  for (const belief of core.beliefs) bound(belief, core.priors, core.models.sealed ? -0.4 : 0);
   datePlateaus(core, nowMs);
   core.folder.close();
 }
@@ -126,7 +129,7 @@ function driveOf(core: Core, running: Running, nowMs: number): Drive {
   const roomC = held('room-temperature');
   const outdoorC = held('outdoor-temperature') ?? config.chiller.ratedOutdoorC;
   const aside = core.health.get('entering-water')?.setAside != null;
-  const enteringC = running.flowing > 0 && !aside ? held(loopPoints(core).entering) : null;
+  const enteringC = core.flowingS >= FLUSHED_S && !aside ? held(loopPoints(core).entering) : null;
   const air = roomC ?? ROOM_C;
   const needsCoil = running.flowing > 0 && enteringC === null;
   const leavingC = Math.max(0, bestOf(core.beliefs).mean[X.out]);
@@ -183,7 +186,7 @@ function heardOf(core: Core, drive: Drive, nowMs: number): Heard {
 
 /** Whether the loop can only have been warmed by the load; a brine loop may also carry the machine's cold. */
 function loadWarms(core: Core, drive: Drive): boolean {
-  if (drive.flowing === 0) return false;
+  if (core.flowingS < FLUSHED_S) return false;
   return !core.models.internal || (drive.charging === 0 && core.folder.everHeard('chiller-power'));
 }
 
@@ -205,8 +208,10 @@ function start(core: Core, heard: Heard): void {
   core.started = true;
   for (const belief of core.beliefs) {
     const iced = belief.mean[X.ice] > 0.05;
-    restate(belief, X.out, first, iced ? 1 : 0.6);
-    restate(belief, X.bulk, iced ? Math.max(0, Math.min(first, 4)) : first, iced ? 1.5 : 1);
+    for (const layer of LAYERS) {
+      restate(belief, layer, iced ? Math.max(0, Math.min(first, 4)) : first, iced ? 1.5 : 1);
+    }
+    restate(belief, X.out, first, 1);
   }
 }
 

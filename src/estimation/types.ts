@@ -13,7 +13,7 @@ export interface ProbeState {
   readonly point: PointName;
   /** What the probe reads too much at 0 °C, K; null while it has never stood in water under watch. */
   readonly errorAtIcePointK: number | null;
-  readonly sdK: number;
+  readonly sd: number;
   /** When ice last checked it. */
   readonly atMs: number | null;
   /** Why it is not believed now; null when it is. */

@@ -26,6 +26,7 @@ export interface Heard {
 }
 
 export interface Circumstances {
+  readonly atMs: number;
   readonly drive: Drive;
   readonly heard: Heard;
   /** Seconds that the machine has been running, and the water flowing or resting, without a break. */
@@ -45,7 +46,7 @@ export interface Learner {
 /** Coolant and power speak of the ice only after the machine has settled. */
 const SETTLED_S = 720;
 /** After flow starts or stops, pipes and layers need this long before a reading means the water. */
-const PIPE_S = 150;
+const PIPE_S = 200;
 const SUPERCOOLED_C = -0.35;
 
 interface WaterRule {
@@ -62,22 +63,40 @@ function waterRule(
   models: PlantModels,
 ): WaterRule | null {
   const { mean } = belief;
-  const offset = mean[PROBE_OFFSET[point]];
-  const trueC = readC - offset;
-  const iced = mean[X.ice] > 0.02;
-  if (trueC < SUPERCOOLED_C && now.drive.charging > 0 && mean[X.ice] < 0.1) return null;
+  const trueC = readC - mean[PROBE_OFFSET[point]];
+  if (trueC < SUPERCOOLED_C && now.drive.charging > 0 && mean[X.ice] < 0.1 && !models.sealed) return null;
   if (now.drive.flowing > 0) {
     return now.flowingS < PIPE_S ? null : { noise: NOISE.waterFlowing, plateau: false };
   }
   if (now.restingS < 2 * PIPE_S) return null;
-  if (models.internal && point === 'leaving-water') return null;
-  if (!iced) {
-    return { noise: waterCOf(models, mean) > 4.5 ? NOISE.waterWarm : NOISE.waterLayered, plateau: false };
-  }
-  // Under ice the densest water, 4 °C, may lie at the bottom: a reading there is no plateau and tells nothing of ice.
-  if (Math.abs(trueC) < 0.8) return { noise: NOISE.waterResting, plateau: now.restingS > 1800 };
-  return trueC > 5 ? { noise: NOISE.waterOdd, plateau: false } : null;
+  if (mean[X.ice] > 0.02) return restingOnIce(point, trueC, now, models);
+  // An outlet's pipe takes the room's warmth at rest: there the leaving probe does not speak of the bank.
+  if (point === 'leaving-water') return null;
+  return { noise: waterCOf(models, mean) > 4.5 ? NOISE.waterWarm : NOISE.waterLayered, plateau: false };
 }
+
+/**
+ * Under ice the densest water, 4 °C, may lie at the bottom, most of all under floating ice: a reading there is no
+ * plateau and tells nothing of the ice. A bath of brine round containers has no plateau while it is far from 0 °C.
+ */
+function restingOnIce(
+  point: WetPoint,
+  trueC: number,
+  now: Circumstances,
+  models: PlantModels,
+): WaterRule | null {
+  if (models.sealed) {
+    return point === 'leaving-water' ? null : { noise: NOISE.waterWarm, plateau: settledBath(trueC, now) };
+  }
+  const layered = !models.bank.guess.iceHeld && point !== 'bank-top';
+  if (Math.abs(trueC) > 0.8 || layered) {
+    return trueC > 5 && point !== 'leaving-water' ? { noise: NOISE.waterOdd, plateau: false } : null;
+  }
+  return { noise: NOISE.waterResting, plateau: now.restingS > 1800 };
+}
+
+const settledBath = (trueC: number, now: Circumstances): boolean =>
+  Math.abs(trueC) < 0.6 && now.drive.charging === 0 && now.restingS > 7200;
 
 /** ln of the flat density of a reading that tells nothing, over the 4 K in which layers hide. */
 const SILENT = -Math.log(4);
@@ -135,6 +154,7 @@ function mayLearn(
     innovation: found.innovation,
     variance: found.variance,
     dtS: now.drive.dtS,
+    atMs: now.atMs,
     flowing: now.drive.flowing > 0,
   });
 }

@@ -18,6 +18,13 @@ const CONDENSER_PINCH_K = 12;
 const CAPACITY_PER_EVAPORATING_K = 0.036;
 const CAPACITY_PER_CONDENSING_K = 0.009;
 
+/**
+ * How the share of Carnot moves with either temperature, as fractions of the rating's: the same polynomial reaches
+ * 0.554 of Carnot at −20/35 °C, 0.535 at −25/35 and 0.562 at −20/40.
+ */
+const SHARE_PER_EVAPORATING_K = 0.0068;
+const SHARE_PER_CONDENSING_K = 0.003;
+
 const KELVIN = 273.15;
 /** The polynomial's lowest suction temperature; the balance is held above it. */
 const LEAST_EVAPORATING_C = -38;
@@ -58,8 +65,14 @@ export function iceMachine(config: SiteConfig): IceMachineModel {
     const e = (conductance * bankC - atCondensing + slopeW * rated.evaporatingC) / (conductance + slopeW);
     return Math.max(LEAST_EVAPORATING_C, Math.min(e, 12));
   };
-  const cop = (evaporating: number, outdoorC: number): number =>
-    share * carnot(evaporating, outdoorC + CONDENSER_PINCH_K);
+  const cop = (evaporating: number, outdoorC: number): number => {
+    const condensing = outdoorC + CONDENSER_PINCH_K;
+    const slipped =
+      1 +
+      SHARE_PER_EVAPORATING_K * (evaporating - rated.evaporatingC) +
+      SHARE_PER_CONDENSING_K * (condensing - rated.condensingC);
+    return share * Math.max(0.4, slipped) * carnot(evaporating, condensing);
+  };
   const balance = (outdoorC: number, freezeWPerK: number, bankC: number): MachineBalance => {
     const e = evaporatingC(outdoorC, freezeWPerK, bankC);
     const iceMakingW = Math.max(0, (bankC - e) / (restKPerW + 1 / freezeWPerK));
