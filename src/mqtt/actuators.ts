@@ -125,8 +125,9 @@ function readState(config: ActuatorConfig, payload: Uint8Array): boolean | null 
   if (config.readback.read === 'plain') return stateOf(opened.text()?.trim() ?? '', config);
   const json = opened.json();
   const pointed = json.ok ? pointAt(json.value, config.readback.read) : null;
-  const isPlain = pointed?.found && pointed.value !== null && typeof pointed.value !== 'object';
-  return isPlain ? stateOf(String(pointed.value), config) : null;
+  const value = pointed?.found ? pointed.value : null;
+  const isWord = typeof value === 'string' || typeof value === 'number' || typeof value === 'boolean';
+  return isWord ? stateOf(String(value), config) : null;
 }
 
 /** With a word for on of its own, all other words are off; without one, only known words count. */
@@ -145,7 +146,7 @@ function faultOf(state: State, live: LivePoints, nowMs: number): string | null {
   if (state.says !== null && state.says !== ordered) {
     return `${told} but says that it is ${state.says ? 'on' : 'off'}; look at ${config.topic}.`;
   }
-  const powerW = config.confirmBy === null ? null : valueOf(live, config.confirmBy as keyof LivePoints);
+  const powerW = config.confirmBy === null ? null : valueOf(live, config.confirmBy);
   if (powerW === null || powerW > state.runningAboveW === ordered) return null;
   return `${told} but draws ${Math.round(powerW)} W; look at ${config.topic} and at the machine.`;
 }

@@ -255,17 +255,18 @@ export class BrokerClient implements Publisher {
 
   #send(): void {
     const client = this.#client;
-    while (client && this.#waiting.length > 0) {
-      if (this.#waiting[0].publication.qos > 0 && this.#inFlight.size >= this.#limits.inFlight) return;
-      const waiting = this.#waiting.shift();
-      if (waiting) this.#sendOne(client, waiting);
+    if (!client) return;
+    for (let next = this.#waiting.at(0); next; next = this.#waiting.at(0)) {
+      if (next.publication.qos > 0 && this.#inFlight.size >= this.#limits.inFlight) return;
+      this.#waiting.shift();
+      this.#sendOne(client, next);
     }
   }
 
   #sendOne(client: MqttClient, waiting: Waiting): void {
     const { topic, payload, retain, expiresInS } = waiting.publication;
     const qos = Math.min(waiting.publication.qos, this.#limits.maxQos) as Qos;
-    const bytes = typeof payload === 'string' ? Buffer.from(payload) : Buffer.from(payload);
+    const bytes = Buffer.from(payload as string);
     if (bytes.length + Buffer.byteLength(topic) + 64 > this.#limits.packetBytes) {
       this.#noteOnce(`The broker does not take messages as large as that of ${topic}; it is not published.`);
       return waiting.settle(false);

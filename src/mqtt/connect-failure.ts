@@ -28,31 +28,33 @@ export function shownAddress(url: string): string {
   return `${protocol}//${host}`;
 }
 
-/**
- * Reads the error that the client library gave before it closed; null when it closed without one, as old brokers do
- * on a protocol version that they do not know.
- */
+/** A broker that does not know a protocol version may close or reset the connection without an answer. */
+const SILENT = new Set([null, 'ECONNRESET', 'EPIPE']);
+
+/** Reads the error that the client library gave before the connection closed; null when it gave none. */
 export function failureOf(error: unknown, url: string): Failure {
   const at = shownAddress(url);
-  const code = (error as { code?: unknown } | null)?.code;
+  const code = codeOf(error);
   if (typeof code === 'number') return refusal(code, at);
-  if (typeof code === 'string' && CERTIFICATE.test(code)) {
+  if (code !== null && CERTIFICATE.test(code)) {
     const words = `The broker at ${at} could not prove who it is (${code}); check broker.tls.ca-file and the name in broker.url.`;
     return { kind: 'refused', code: null, error: new RimeholdError('broker-refused', words, { code }) };
   }
-  const silent = error === null || (typeof code !== 'string' && !/timeout/i.test(String(error)));
-  const why =
-    typeof code === 'string'
-      ? (NETWORK_WORDS[code] ?? code)
-      : silent
-        ? 'it closed the connection'
-        : 'no answer came in time';
+  const why = code === null ? 'it closed the connection' : (NETWORK_WORDS[code] ?? code);
   const words = `The broker at ${at} cannot be reached: ${why}; check broker.url and that the broker runs.`;
   return {
-    kind: silent ? 'version' : 'away',
+    kind: SILENT.has(code) ? 'version' : 'away',
     code: null,
     error: new RimeholdError('broker-unreachable', words, { code }),
   };
+}
+
+function codeOf(error: unknown): number | string | null {
+  if (typeof error !== 'object' || error === null) return null;
+  if ('code' in error && (typeof error.code === 'number' || typeof error.code === 'string'))
+    return error.code;
+  // the library's own "connack timeout" carries no code
+  return error instanceof Error && /timeout/i.test(error.message) ? 'ETIMEDOUT' : null;
 }
 
 function refusal(code: number, at: string): Failure {

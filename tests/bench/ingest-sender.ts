@@ -38,7 +38,8 @@ async function send(count: number, perSecond: number | null): Promise<Sent> {
     const due = (): number =>
       perSecond === null ? count : Math.min(count, ((performance.now() - startMs) / 1000) * perSecond);
     const fill = (): void => {
-      while (sent < due() && sent - taken < WINDOW) one();
+      const until = Math.min(due(), taken + WINDOW);
+      for (let next = sent; next < until; next++) one();
     };
     fill();
     if (perSecond === null) return;

@@ -151,6 +151,7 @@ describe.skipIf(!hasMosquitto).concurrent('the Homie device on a real broker', (
     const { url } = await stage.broker();
     const seen = await stage.observer(url);
     const { device } = await stage.rig(url, { cycle: false });
+    await until('init', () => stateOf(seen) === 'init');
     await pause(500);
     expect(stateOf(seen)).toBe('init');
     oneCycle(device);
@@ -407,7 +408,7 @@ describe.skipIf(!hasMosquitto).concurrent('the Homie device on a real broker', (
     expect(late.seen).toEqual([]);
   });
 
-  test('a killed daemon is lost (3, 42)', async ({ stage }) => {
+  test('a killed daemon is lost (3, 42)', { timeout: 60_000 }, async ({ stage }) => {
     const { url } = await stage.broker();
     const seen = await stage.observer(url);
     const child = spawn(
@@ -418,9 +419,9 @@ describe.skipIf(!hasMosquitto).concurrent('the Homie device on a real broker', (
       },
     );
     stage.onEnd(() => void child.kill('SIGKILL'));
-    await until('ready', () => stateOf(seen) === 'ready', 15_000);
+    await until('ready', () => stateOf(seen) === 'ready', 40_000);
     child.kill('SIGKILL');
-    await until('lost', () => stateOf(seen) === 'lost', 8000);
+    await until('lost', () => stateOf(seen) === 'lost');
     expect(seen.latest(`${ROOT}/$state`)).toMatchObject({ retain: true });
   });
 });

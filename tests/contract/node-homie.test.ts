@@ -47,8 +47,8 @@ describe.skipIf(!hasMosquitto)('an independent controller', () => {
     const { url } = await stage.broker();
     const { device } = await stage.rig(url);
     const hub = await controller(stage, url);
-    await until('ready', () => hub.device()?.state === 'ready', 10_000);
-    await until('the values', () => hub.value('dispatch/order') !== undefined, 10_000);
+    await until('ready', () => hub.device()?.state === 'ready');
+    await until('the values', () => hub.value('dispatch/order') !== undefined);
     const found = Object.values(hub.device()?.nodes ?? {}).map((node) => [
       node.id,
       Object.keys(node.properties).length,
@@ -74,7 +74,7 @@ describe.skipIf(!hasMosquitto)('an independent controller', () => {
     const { url } = await stage.broker();
     const { device, sets } = await stage.rig(url);
     const hub = await controller(stage, url);
-    await until('the wish', () => hub.value('dispatch/wish') === 'none', 10_000);
+    await until('the wish', () => hub.value('dispatch/wish') === 'none');
     hub.devices.getProperty('juniper/dispatch/wish')?.setCommand$('save-ice').subscribe();
     await until('the new wish', () => hub.value('dispatch/wish') === 'save-ice');
     expect(hub.devices.getProperty('juniper/dispatch/wish')?.target).toBe('save-ice');

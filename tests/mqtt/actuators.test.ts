@@ -22,6 +22,8 @@ const say = (payload: string, topic = 'plug7/state') => ({
   retained: false,
 });
 
+const drawing = (value: number): LivePoints => ({ 'chiller-power': { value, atMs: NOW_MS } });
+
 describe('switching', () => {
   test('the words of the site file, at QoS 1, not retained, until the order expires', () => {
     const made = actuators('{topic: plug7/set, on: "1", off: "0"}');
@@ -129,7 +131,6 @@ describe('readback', () => {
 
 describe('confirmation by power', () => {
   const byPower = '{topic: plug7/set, confirm-by: chiller-power, confirm-within: PT3M}';
-  const drawing = (value: number): LivePoints => ({ 'chiller-power': { value, atMs: NOW_MS } });
   const stale: LivePoints = { 'chiller-power': { value: null, reason: 'stale', last: null } };
 
   test.each([

@@ -229,7 +229,7 @@ describe.skipIf(!hasMosquitto).concurrent('against mosquitto', () => {
     });
     await told.client.start();
     wire.cut();
-    await until('lost', () => hub.latest('w/state')?.text === 'lost', 4000);
+    await until('lost', () => hub.latest('w/state')?.text === 'lost');
     expect(hub.latest('w/state')).toMatchObject({ qos: 2, retain: true });
     const clean = stage.client(url, { clientId: 'other', will: { topic: 'w/other', payload: 'lost' } });
     const second = await stage.observer(url, 'w/other');
@@ -245,7 +245,7 @@ describe.skipIf(!hasMosquitto).concurrent('against mosquitto', () => {
     const wire = await stage.cuttable(port);
     const told = stage.client(wire.url, {
       will: { topic: 'w/state', payload: 'lost' },
-      timing: { ...FAST, willDelayS: 1 },
+      timing: { ...FAST, willDelayS: 3 },
     });
     await told.client.start();
     wire.cut();
@@ -324,13 +324,10 @@ describe.skipIf(!hasMosquitto).concurrent('against mosquitto', () => {
   });
 
   test.skipIf(!hasOpenssl())('TLS: trusted with the authority, refused without', async ({ stage }) => {
-    const mosquitto = await stage.broker({
-      lines: ['cafile FOLDER/ca.crt', 'certfile FOLDER/server.crt', 'keyfile FOLDER/server.key'],
-      files: certificates(),
-    });
+    const made = certificates();
+    const mosquitto = await stage.broker({ lines: TLS_LINES, files: made });
     const url = mosquitto.url.replace('mqtt:', 'mqtts:');
-    const ca = readFileSync(join(mosquitto.folder, 'ca.crt'));
-    const trusted = stage.client(url, { tls: { ca, cert: null, key: null } });
+    const trusted = stage.client(url, { tls: { ca: Buffer.from(made['ca.crt']), cert: null, key: null } });
     await trusted.client.start();
     expect(trusted.client.connected).toBe(true);
     const distrusted = stage.client(url, { clientId: 'other' });
@@ -339,7 +336,31 @@ describe.skipIf(!hasMosquitto).concurrent('against mosquitto', () => {
       message: expect.stringMatching(/could not prove who it is \(\w+\); check broker\.tls\.ca-file/),
     });
   });
+
+  test.skipIf(!hasOpenssl())('TLS: a broker that wants our certificate gets it', async ({ stage }) => {
+    const made = certificates();
+    const mosquitto = await stage.broker({ lines: [...TLS_LINES, 'require_certificate true'], files: made });
+    const url = mosquitto.url.replace('mqtt:', 'mqtts:');
+    const [ca, cert, key] = ['ca.crt', 'client.crt', 'client.key'].map((name) => Buffer.from(made[name]));
+    const known = stage.client(url, { tls: { ca, cert, key } });
+    await known.client.start();
+    expect(known.client.connected).toBe(true);
+    const unknown = stage.client(url, { clientId: 'other', tls: { ca, cert: null, key: null } });
+    await expect(unknown.client.start()).rejects.toMatchObject({ code: expect.stringMatching(/^broker-/) });
+  });
+
+  test('speaks through a web socket', async ({ stage }) => {
+    const port = await freePort();
+    await stage.broker({ lines: [`listener ${port} 127.0.0.1`, 'protocol websockets'] });
+    const told = stage.client(`ws://127.0.0.1:${port}`);
+    await told.client.start();
+    await told.client.subscribe([{ filter: 'shed/a', qos: 1, retained: true }]);
+    expect(await told.client.publish({ topic: 'shed/a', payload: '4.5', qos: 1, retain: false })).toBe(true);
+    await until('the message', () => told.texts().includes('4.5'));
+  });
 });
+
+const TLS_LINES = ['cafile FOLDER/ca.crt', 'certfile FOLDER/server.crt', 'keyfile FOLDER/server.key'];
 
 /** A password file as mosquitto 2.0 writes it: PBKDF2-SHA512, 101 rounds. */
 function passwords(user: string, password: string): Record<string, string> {
@@ -358,21 +379,22 @@ function hasOpenssl(): boolean {
   }
 }
 
-/** An authority and a server certificate for 127.0.0.1, made afresh. */
+/** An authority, and certificates by it for a broker on 127.0.0.1 and for a client, made afresh. */
 function certificates(): Record<string, string> {
   const folder = mkdtempSync(join(tmpdir(), 'rimehold-tls-'));
   const openssl = (line: string): void => {
     execFileSync('openssl', line.split(' '), { cwd: folder, stdio: 'pipe' });
   };
   const key = '-newkey ec -pkeyopt ec_paramgen_curve:prime256v1 -nodes';
+  const by = '-CA ca.crt -CAkey ca.key -CAcreateserial -days 2';
   try {
     writeFileSync(join(folder, 'san'), 'subjectAltName=IP:127.0.0.1');
     openssl(`req -x509 ${key} -keyout ca.key -out ca.crt -days 2 -subj /CN=authority`);
-    openssl(`req ${key} -keyout server.key -out server.csr -subj /CN=broker`);
-    openssl(
-      'x509 -req -in server.csr -CA ca.crt -CAkey ca.key -CAcreateserial -days 2 -extfile san -out server.crt',
-    );
-    const names = ['ca.crt', 'server.crt', 'server.key'];
+    for (const name of ['server', 'client']) {
+      openssl(`req ${key} -keyout ${name}.key -out ${name}.csr -subj /CN=${name}`);
+      openssl(`x509 -req -in ${name}.csr ${by} -extfile san -out ${name}.crt`);
+    }
+    const names = ['ca.crt', 'server.crt', 'server.key', 'client.crt', 'client.key'];
     return Object.fromEntries(names.map((name) => [name, readFileSync(join(folder, name), 'utf8')]));
   } finally {
     rmSync(folder, { recursive: true, force: true });

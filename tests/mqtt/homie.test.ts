@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { Ajv, type AnySchema } from 'ajv';
-import fc from 'fast-check';
+import * as fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import {
   describeDevice,
@@ -22,6 +22,12 @@ import {
 import { cycleRecord, NOW_MS, planRecord, pretendCleared, siteConfig } from './site.ts';
 
 const config = siteConfig();
+const version = (of: string): unknown => (JSON.parse(of) as { version: unknown }).version;
+const property = (datatype: Property['datatype'], format?: string): Property => ({
+  name: '',
+  datatype,
+  ...(format === undefined ? {} : { format }),
+});
 
 describe('the description', () => {
   // the public table of the product: node, property, datatype, unit, settable
@@ -101,7 +107,6 @@ describe('the description', () => {
   });
 
   test('carries a version that changes with the document and only then', () => {
-    const version = (of: string): unknown => (JSON.parse(of) as { version: unknown }).version;
     const other = siteConfig('announce: {domain: house}');
     expect(version(describeDevice(config))).toBe(version(describeDevice(other)));
     const renamed = { ...config, site: { ...config.site, name: 'Juniper' } };
@@ -180,12 +185,6 @@ describe('payloads', () => {
 });
 
 describe('settings by /set', () => {
-  const property = (datatype: Property['datatype'], format?: string): Property => ({
-    name: '',
-    datatype,
-    ...(format === undefined ? {} : { format }),
-  });
-
   // Homie 5.0.0, section "Payload", Float/Integer formats: both vectors stand there
   test.each([
     ['5', '0:10:2', 6],
@@ -240,6 +239,30 @@ describe('settings by /set', () => {
   });
 });
 
+describe('whatever is set', () => {
+  test('never throws, and what is accepted is legal', () => {
+    const payloads = fc.oneof(
+      fc.string(),
+      fc.string({ unit: 'binary' }),
+      fc.double().map(String),
+      fc.bigInt().map(String),
+      fc.constantFrom('planned', 'PT1H', 'none', '25', '\0'),
+    );
+    fc.assert(
+      fc.property(fc.constantFrom(...propertiesOf(config).values()), payloads, (of, payload) => {
+        const parsed = parseSet(of, payload);
+        if (!parsed.ok) {
+          expect(parsed.fault).toMatch(/^expected .*, found /s);
+          return;
+        }
+        if (of.datatype === 'enum') expect(of.format?.split(',')).toContain(parsed.value);
+        if (typeof parsed.value === 'number') expect(Number.isFinite(parsed.value)).toBe(true);
+      }),
+      { numRuns: 500 },
+    );
+  });
+});
+
 describe('values of the records', () => {
   const properties = propertiesOf(config);
   const all = {
@@ -261,7 +284,7 @@ describe('values of the records', () => {
 
   test('numbers, words and documents', () => {
     const shown = Object.fromEntries(
-      [...properties].map(([path, property]) => [path, formatValue(property, all[path] ?? null)]),
+      [...properties].map(([path, of]) => [path, formatValue(of, all[path] ?? null)]),
     );
     expect(shown).toMatchObject({
       'bank/ice-on-hand': '8.43',

@@ -1,4 +1,4 @@
-import fc from 'fast-check';
+import * as fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { Intake, pointFaults, type Heard } from '../../src/mqtt/intake.ts';
 import type { PointConfig } from '../../src/config.ts';

@@ -58,7 +58,8 @@ export async function startMosquitto(options: MosquittoOptions = {}): Promise<Mo
     ...(options.lines ?? []).map((line) => line.replaceAll('FOLDER', folder)),
   ];
   writeFileSync(join(folder, 'mosquitto.conf'), `${lines.join('\n')}\n`);
-  let child = await launch(folder, port);
+  const ports = lines.flatMap((line) => (line.startsWith('listener ') ? [Number(line.split(' ')[1])] : []));
+  let child = await launch(folder, ports);
   const halt = (): Promise<void> => end(child);
   return {
     port,
@@ -66,7 +67,7 @@ export async function startMosquitto(options: MosquittoOptions = {}): Promise<Mo
     folder,
     halt,
     resume: async () => {
-      child = await launch(folder, port);
+      child = await launch(folder, ports);
     },
     stop: async () => {
       await halt();
@@ -75,17 +76,18 @@ export async function startMosquitto(options: MosquittoOptions = {}): Promise<Mo
   };
 }
 
-async function launch(folder: string, port: number): Promise<ChildProcess> {
+async function launch(folder: string, ports: readonly number[]): Promise<ChildProcess> {
   const child = spawn(BINARY ?? 'mosquitto', ['-c', join(folder, 'mosquitto.conf')], { stdio: 'pipe' });
   let said = '';
   child.stderr?.on('data', (chunk) => (said += String(chunk)));
-  for (let tries = 0; tries < 200; tries++) {
+  for (let tries = 0; tries < 600; tries++) {
     if (child.exitCode !== null) throw new Error(`mosquitto ended: ${said}`);
-    if (await answers(port)) return child;
+    const listening = await Promise.all(ports.map(answers));
+    if (listening.every(Boolean)) return child;
     await new Promise((done) => setTimeout(done, 25));
   }
   child.kill('SIGKILL');
-  throw new Error(`mosquitto does not listen on ${port}: ${said}`);
+  throw new Error(`mosquitto does not listen on ${ports.join(', ')}: ${said}`);
 }
 
 function answers(port: number): Promise<boolean> {

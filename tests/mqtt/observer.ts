@@ -54,8 +54,8 @@ function seenOf(topic: string, payload: Buffer, packet: IPublishPacket): Seen {
   };
 }
 
-/** Waits until something holds; fails with what was waited for. */
-export async function until(what: string, holds: () => boolean, withinMs = 5000): Promise<void> {
+/** Waits until something holds; fails with what was waited for. The limit is for machines that are busy with much else. */
+export async function until(what: string, holds: () => boolean, withinMs = 15_000): Promise<void> {
   const end = Date.now() + withinMs;
   while (!holds()) {
     if (Date.now() > end) throw new Error(`waited ${withinMs} ms in vain for: ${what}`);

@@ -1,4 +1,4 @@
-import fc from 'fast-check';
+import * as fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { decode, openPayload, type Decoded, type KnownPoint } from '../../src/mqtt/payload.ts';
 import { POINTS, type PointId } from '../../src/points.ts';
