@@ -77,6 +77,7 @@ export function read(work: Work): Plan {
   const here = standingNow(work);
   const money = new Float64Array(4);
   weigh(work, 0, 0, here, money);
+  if (!Number.isFinite(Math.min(...money))) throw new RangeError('the figures of the plant are not finite');
   const chosen = withRoomNearLimit(problem, money, cheapest(money, problem.chillerOn));
   const paths = liveForward(work, chosen);
   const steps = stepsOf(work, paths);

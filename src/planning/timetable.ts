@@ -34,10 +34,21 @@ export function lastFired(lines: readonly TimetableLine[], zone: string, nowMs: 
   return last;
 }
 
+/** A pattern that croner cannot read never fires: a plan must not fail for it. `isCronLine` finds it beforehand. */
+function cronOf(pattern: string): Cron | null {
+  try {
+    return new Cron(pattern, { timezone: 'UTC' });
+  } catch {
+    return null;
+  }
+}
+
+export const isCronLine = (pattern: string): boolean => cronOf(pattern) !== null;
+
 function lastMatchMs(pattern: string, zone: string, nowMs: number): number | null {
-  const cron = new Cron(pattern, { timezone: 'UTC' });
+  const cron = cronOf(pattern);
   let before = new Date(nowMs + utcOffsetMs(zone, nowMs) + ROUND_MS);
-  for (let k = 0; k < MOST_MATCHES; k += 1) {
+  for (let k = 0; cron && k < MOST_MATCHES; k += 1) {
     const [match] = cron.previousRuns(1, before);
     if (match === undefined) return null;
     const atMs = fromWallMs(zone, match.getTime());
@@ -61,11 +72,11 @@ export function firedBetween(
 }
 
 function matchesBetween(pattern: string, zone: string, fromMs: number, toMs: number): number[] {
-  const cron = new Cron(pattern, { timezone: 'UTC' });
+  const cron = cronOf(pattern);
   const end = toMs + utcOffsetMs(zone, toMs) + ROUND_MS;
   const matches: number[] = [];
   let wall: Date | null = new Date(fromMs + utcOffsetMs(zone, fromMs) - ROUND_MS);
-  for (let k = 0; k < MOST_MATCHES * 2; k += 1) {
+  for (let k = 0; cron && k < MOST_MATCHES * 2; k += 1) {
     wall = cron.nextRun(wall);
     if (wall === null || wall.getTime() > end) break;
     const atMs = fromWallMs(zone, wall.getTime());
