@@ -4,20 +4,27 @@
  */
 import type { SiteConfig } from '../config.ts';
 import { createRandom } from '../numerics/random.ts';
-import type { CycleRecord } from '../record.ts';
 import { HOUR_MS } from '../time.ts';
 import { BIN_DAYS } from './bins.ts';
-import { blendAt, blended, hubByLead, learnBlends, type Blend } from './blend.ts';
+import { blendAt, blended, hubByLead, type Blend } from './blend.ts';
 import { ensembleQuantile } from './ensemble.ts';
-import { HourBook, HourGatherer } from './hours.ts';
+import { HourBook, HourGatherer, type Observed } from './hours.ts';
 import { issueOf, keepIssue, type Issue } from './issues.ts';
 import { knowsSentence } from './knows.ts';
 import { packMemory, unpackMemory } from './memory.ts';
-import { createOwnCabin, unexplainedAhead } from './own-cabin.ts';
-import { createOwnWeather, weatherSeries } from './own-weather.ts';
-import { loadPlantOf, runScenario, scenarioFrame, type LastSeen, type Scenario } from './scenarios.ts';
+import { createOwnCabin } from './own-cabin.ts';
+import { createOwnWeather, type HoursAhead } from './own-weather.ts';
+import { lookBack, type Past } from './past.ts';
+import {
+  loadPlantOf,
+  runScenario,
+  scenarioFrame,
+  type LastSeen,
+  type Scenario,
+  type ScenarioFrame,
+} from './scenarios.ts';
 import { eveningSlots, leadsFor, slotGrid } from './slots.ts';
-import { drawTrajectories, type Happened } from './trajectories.ts';
+import { drawTrajectories } from './trajectories.ts';
 
 export type { Scenario } from './scenarios.ts';
 
@@ -40,7 +47,7 @@ export interface Forecast {
 }
 
 export interface Forecaster {
-  observe(record: CycleRecord): void;
+  observe(record: Observed): void;
   forecast(nowMs: number, external: readonly HubPoint[] | null): Forecast;
   /** JSON-able; a forecaster made with it goes on where this one stands, the hour in progress left out. */
   memory(): unknown;
@@ -63,16 +70,11 @@ export function createForecaster(
   return {
     observe(record) {
       if (record.clock === 'doubtful') return;
-      const line = gatherer.add(record);
-      if (line) {
+      for (const line of gatherer.add(record)) {
         book.add(line);
         cabin.update(book);
       }
-      seen = {
-        atMs: record.atMs,
-        outdoorC: record.outdoorC,
-        roomC: record.roomC,
-      };
+      seen = { atMs: record.atMs, outdoorC: record.outdoorC, roomC: record.roomC };
     },
     forecast(nowMs, external) {
       const grid = slotGrid(config, nowMs);
@@ -80,22 +82,10 @@ export function createForecaster(
       const leads = leadsFor(grid, lastHour);
       const ahead = weather.predict(book, lastHour, leads);
       const hubC = external ? hubByLead(external, lastHour, leads) : null;
-      const past = createPast(config, book, issues, lastHour, leads, cabin.track(book).unexplainedW);
+      const past = lookBack(config, book, issues, lastHour, leads, cabin.track(book).unexplainedW);
       issues = keepIssue(issues, issueOf(lastHour, ahead, hubC));
       const frame = scenarioFrame(config, plant, book, cabin, grid, lastHour, seen, nowMs);
-      const random = createRandom(options.seed).fork(`forecast ${lastHour}`);
-      const errors = drawTrajectories(
-        past.comparable(hubC !== null),
-        past.happened,
-        lastHour,
-        leads,
-        config.planning.scenarios,
-        random,
-      );
-      const outdoorC = ahead.outdoorC.map((own, i) => blended(past.blends, i + 1, own, hubC?.[i] ?? null));
-      const scenarios = errors.map((error) =>
-        runScenario(frame, { ...ahead, outdoorC, disturbanceW: past.disturbanceW }, error, 1 / errors.length),
-      );
+      const scenarios = drawScenarios(config, options.seed, frame, ahead, hubC, past);
       return {
         madeMs: nowMs,
         startMs: grid.startMs,
@@ -112,6 +102,25 @@ export function createForecaster(
     },
     memory: () => packMemory(book.all, issues, cabin.memory),
   };
+}
+
+/** The expected weather with each of the error trajectories on it, run through the cabin. */
+function drawScenarios(
+  config: SiteConfig,
+  seed: number,
+  frame: ScenarioFrame,
+  ahead: HoursAhead,
+  hubC: readonly (number | null)[] | null,
+  past: Past,
+): Scenario[] {
+  const { lastHour } = frame;
+  const leads = ahead.outdoorC.length;
+  const outdoorC = ahead.outdoorC.map((own, i) => blended(past.blends, i + 1, own, hubC?.[i] ?? null));
+  const expected = { ...ahead, outdoorC, disturbanceW: past.disturbanceW };
+  const random = createRandom(seed).fork(`forecast ${lastHour}`);
+  const issues = past.comparable(hubC !== null);
+  const errors = drawTrajectories(issues, past.happened, lastHour, leads, config.planning.scenarios, random);
+  return errors.map((error) => runScenario(frame, expected, error, 1 / errors.length));
 }
 
 function eveningLoad(
@@ -140,53 +149,4 @@ function knowsOf(
     refusedDays: cabin?.refusedDays.length ?? 0,
     sun: hasPanels ? 'panels' : 'daily range',
   });
-}
-
-interface Past {
-  readonly blends: readonly Blend[];
-  readonly happened: Happened;
-  readonly disturbanceW: Float64Array;
-  /** Issues whose errors are those of the forecast at hand: with or without a hub. */
-  comparable(withHub: boolean): readonly Issue[];
-}
-
-/** What came of the forecasts issued so far. */
-function createPast(
-  config: SiteConfig,
-  book: HourBook,
-  issues: readonly Issue[],
-  lastHour: number,
-  leads: number,
-  unexplainedW: readonly (number | null)[],
-): Past {
-  const series = weatherSeries(config, book, lastHour);
-  const first = series.outdoorC.firstHour;
-  const trackFirst = book.all[0]?.hour ?? lastHour;
-  const outdoorC = (hour: number): number | null => series.outdoorC.values[hour - first] ?? null;
-  const blends = learnBlends(issues, outdoorC, leads);
-  const expected = new Map<number, Float64Array>();
-  const expectedW = (hour: number): Float64Array => {
-    const known = expected.get(hour) ?? unexplainedAhead(unexplainedW, hour - trackFirst, leads);
-    expected.set(hour, known);
-    return known;
-  };
-  const less = (actual: number | null | undefined, forecast: number | undefined): number | null =>
-    actual == null || forecast === undefined ? null : actual - forecast;
-  return {
-    blends,
-    disturbanceW: expectedW(lastHour),
-    comparable: (withHub) => issues.filter((issue) => (issue.hubC !== null) === withHub),
-    happened: {
-      outdoor: (issue, lead) =>
-        less(
-          outdoorC(issue.hour + lead),
-          blended(blends, lead, issue.outdoorC[lead - 1], issue.hubC?.[lead - 1] ?? null),
-        ),
-      dew: (issue, lead) => less(series.dewC.values[issue.hour + lead - first], issue.dewC[lead - 1]),
-      clearness: (issue, lead) =>
-        less(series.clearness.values[issue.hour + lead - first], issue.clearness[lead - 1]),
-      disturbance: (issue, lead) =>
-        less(unexplainedW[issue.hour + lead - trackFirst], expectedW(issue.hour)[lead - 1]),
-    },
-  };
 }

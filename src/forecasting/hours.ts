@@ -8,6 +8,27 @@ import type { CycleRecord } from '../record.ts';
 import { clearSkyOf } from './sky.ts';
 import { HOUR_MS } from '../time.ts';
 
+/** What the forecaster looks at in a record. */
+export type Observed = Pick<
+  CycleRecord,
+  | 'atMs'
+  | 'spanMs'
+  | 'clock'
+  | 'outdoorC'
+  | 'outdoorHumidityPct'
+  | 'roomC'
+  | 'roomHumidityPct'
+  | 'panelPowerW'
+  | 'batteryPct'
+  | 'chillerPowerW'
+  | 'fanPowerW'
+  | 'chargingW'
+  | 'dischargingW'
+  | 'deliveredW'
+  | 'latentW'
+  | 'home'
+>;
+
 /** Means over one hour; null where too little of it was heard. */
 export interface HourLine {
   /** Whole hours since the epoch. */
@@ -57,7 +78,7 @@ class Mean {
   }
 }
 
-/** Gathers records of one hour after another; an hour is finished when a record of a later one comes. */
+/** Gathers records of one hour after another; an hour is finished by a record that ends it or belongs to a later one. */
 export class HourGatherer {
   private readonly config: SiteConfig;
   private readonly pressurePa: number;
@@ -70,17 +91,19 @@ export class HourGatherer {
     this.pressurePa = standardPressurePa(config.site.elevationM);
   }
 
-  /** Adds a record; gives the finished line when the record opens a new hour. Records out of order are passed over. */
-  add(record: CycleRecord): HourLine | null {
+  /** Adds a record; gives the lines that it finishes. Records out of order are passed over. */
+  add(record: Observed): HourLine[] {
     const hour = Math.floor((record.atMs - 1) / HOUR_MS);
-    if (this.hour !== null && hour < this.hour) return null;
-    const finished = this.hour !== null && hour > this.hour ? this.finish(this.hour) : null;
+    if (this.hour !== null && hour < this.hour) return [];
+    const lines = this.hour !== null && hour > this.hour ? [this.finish(this.hour)] : [];
     this.hour = hour;
     this.gather(record, Math.min(record.spanMs, HOUR_MS));
-    return finished;
+    if (record.atMs % HOUR_MS !== 0) return lines;
+    this.hour = hour + 1;
+    return [...lines, this.finish(hour)];
   }
 
-  private gather(record: CycleRecord, spanMs: number): void {
+  private gather(record: Observed, spanMs: number): void {
     const { means } = this;
     means.outdoor.add(record.outdoorC, spanMs);
     means.dew.add(this.dewOf(record.outdoorC, record.outdoorHumidityPct), spanMs);
@@ -104,7 +127,7 @@ export class HourGatherer {
   }
 
   /** Fans always warm the room; the condenser does where it stands in it. */
-  private machineHeatOf(record: CycleRecord, sensibleW: number): number {
+  private machineHeatOf(record: Observed, sensibleW: number): number {
     const { chiller, delivery } = this.config;
     const fanW = record.fanPowerW ?? (sensibleW > 0 ? delivery.fanW : 0);
     const rejected = chiller.rejects === 'cooled-room' ? record.chargingW + (record.chillerPowerW ?? 0) : 0;
@@ -147,7 +170,7 @@ function newMeans() {
 }
 
 /** Where the delivery is not known, the heat that the loop brought into the bank stands for it. */
-function sensibleOf(record: CycleRecord): number {
+function sensibleOf(record: Observed): number {
   const totalW = record.deliveredW ?? Math.max(0, record.dischargingW);
   return Math.max(0, totalW - Math.max(0, record.latentW ?? 0));
 }

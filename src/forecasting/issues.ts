@@ -20,9 +20,10 @@ export interface Issue {
 
 const round = (value: number, digits: number): number => Number(value.toFixed(digits));
 
+const rounded = (values: Float64Array, digits: number): number[] =>
+  Array.from(values, (value) => round(value, digits));
+
 export function issueOf(hour: number, ahead: HoursAhead, hubC: readonly (number | null)[] | null): Issue {
-  const rounded = (values: Float64Array, digits: number): number[] =>
-    Array.from(values, (value) => round(value, digits));
   return {
     hour,
     outdoorC: rounded(ahead.outdoorC, 2),

@@ -13,24 +13,22 @@ export interface ForecasterMemory {
 
 const FORM = 1;
 
-/** Fields of a line and the digits kept of each. */
-const FIELDS = {
-  hour: 0,
-  outdoorC: 2,
-  dewC: 2,
-  roomC: 2,
-  roomEndC: 2,
-  roomW: 5,
-  panelW: 1,
-  clearWPerM2: 1,
-  clearOnPanelsWPerM2: 1,
-  machineHeatW: 1,
-  sensibleW: 1,
-  latentW: 1,
-  home: 2,
-} as const satisfies Record<keyof HourLine, number>;
-
-const NAMES = Object.keys(FIELDS) as (keyof HourLine)[];
+/** The fields of a line in the order that they are kept in, with the digits kept of each. */
+const FIELDS = [
+  ['hour', 0],
+  ['outdoorC', 2],
+  ['dewC', 2],
+  ['roomC', 2],
+  ['roomEndC', 2],
+  ['roomW', 5],
+  ['panelW', 1],
+  ['clearWPerM2', 1],
+  ['clearOnPanelsWPerM2', 1],
+  ['machineHeatW', 1],
+  ['sensibleW', 1],
+  ['latentW', 1],
+  ['home', 2],
+] as const satisfies readonly (readonly [keyof HourLine, number])[];
 
 export function packMemory(
   lines: readonly HourLine[],
@@ -38,9 +36,9 @@ export function packMemory(
   cabin: CabinMemory | null,
 ): ForecasterMemory {
   const hours = lines.map((line) =>
-    NAMES.map((name) => {
+    FIELDS.map(([name, digits]) => {
       const value = line[name];
-      return value === null ? null : Number(value.toFixed(FIELDS[name]));
+      return value === null ? null : Number(value.toFixed(digits));
     }),
   );
   return { form: FORM, hours, issues, cabin };
@@ -55,15 +53,59 @@ export interface Unpacked {
 /** null when it is not a memory of this form. */
 export function unpackMemory(memory: unknown): Unpacked | null {
   if (!isMemory(memory)) return null;
-  const lines = memory.hours.map(
-    (row) => Object.fromEntries(NAMES.map((name, i) => [name, row[i] ?? null])) as unknown as HourLine,
-  );
+  return { lines: memory.hours.map(lineOf), issues: memory.issues, cabin: memory.cabin };
+}
+
+function lineOf(row: readonly (number | null)[]): HourLine {
+  const [
+    hour,
+    outdoorC,
+    dewC,
+    roomC,
+    roomEndC,
+    roomW,
+    panelW,
+    clear,
+    clearOnPanels,
+    machineHeatW,
+    sensibleW,
+    latentW,
+    home,
+  ] = row;
   return {
-    lines: lines.filter((line) => Number.isInteger(line.hour)),
-    issues: memory.issues,
-    cabin: memory.cabin,
+    hour: hour ?? 0,
+    outdoorC,
+    dewC,
+    roomC,
+    roomEndC,
+    roomW,
+    panelW,
+    clearWPerM2: clear ?? 0,
+    clearOnPanelsWPerM2: clearOnPanels ?? 0,
+    machineHeatW,
+    sensibleW: sensibleW ?? 0,
+    latentW,
+    home: home ?? 0,
   };
 }
+
+const isNumberOrNull = (value: unknown): boolean => value === null || Number.isFinite(value);
+const isRow = (row: unknown): boolean =>
+  Array.isArray(row) && row.length === FIELDS.length && Number.isInteger(row[0]) && row.every(isNumberOrNull);
+const isIssue = (issue: unknown): boolean =>
+  typeof issue === 'object' &&
+  issue !== null &&
+  'hour' in issue &&
+  Number.isInteger(issue.hour) &&
+  'outdoorC' in issue &&
+  Array.isArray(issue.outdoorC) &&
+  'dewC' in issue &&
+  Array.isArray(issue.dewC) &&
+  'clearness' in issue &&
+  Array.isArray(issue.clearness) &&
+  'hubC' in issue;
+const isCabin = (cabin: unknown): boolean =>
+  cabin === null || (typeof cabin === 'object' && 'parameters' in cabin && 'refusedDays' in cabin);
 
 function isMemory(memory: unknown): memory is ForecasterMemory {
   return (
@@ -73,8 +115,11 @@ function isMemory(memory: unknown): memory is ForecasterMemory {
     memory.form === FORM &&
     'hours' in memory &&
     Array.isArray(memory.hours) &&
+    memory.hours.every(isRow) &&
     'issues' in memory &&
     Array.isArray(memory.issues) &&
-    'cabin' in memory
+    memory.issues.every(isIssue) &&
+    'cabin' in memory &&
+    isCabin(memory.cabin)
   );
 }

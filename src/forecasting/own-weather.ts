@@ -80,10 +80,11 @@ export function createOwnWeather(config: SiteConfig): OwnWeather {
   };
 }
 
+const flat = (value: number): number[] => Array.from({ length: 24 }, () => value);
+
 function train(config: SiteConfig, book: HourBook, atHour: number, leads: number): Trained {
   const { outdoorC, dewC, clearness } = seasonless(config, weatherSeries(config, book, atHour));
   const prior = designBinsC(config);
-  const flat = (value: number): number[] => Array.from({ length: 24 }, () => value);
   return {
     atHour,
     leads,

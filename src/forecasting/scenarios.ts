@@ -126,6 +126,9 @@ export function scenarioFrame(
   };
 }
 
+const sum = (values: Float64Array, errors: Float64Array): Float64Array =>
+  values.map((value, i) => value + errors[i]);
+
 export function runScenario(
   frame: ScenarioFrame,
   expected: Expected,
@@ -133,8 +136,6 @@ export function runScenario(
   weight: number,
 ): Scenario {
   const { grid, lastHour, last } = frame;
-  const sum = (values: Float64Array, errors: Float64Array): Float64Array =>
-    values.map((value, i) => value + errors[i]);
   const slots = (byLead: Float64Array, lastValue: number | null | undefined): Float64Array =>
     onSlots(grid, lastHour, lastValue ?? byLead[0], byLead);
   const outdoorC = nowcast(frame, slots(sum(expected.outdoorC, error.outdoorC), last?.outdoorC));

@@ -14,12 +14,14 @@ export interface Trajectory {
   readonly disturbanceW: Float64Array;
 }
 
+/** Error of one kind for an issue and lead; null where it is not known what came. */
+export type ErrorAt = (issue: Issue, lead: number) => number | null;
+
 export interface Happened {
-  /** Error of each kind for an issue and lead; null where it is not known what came. */
-  outdoor(issue: Issue, lead: number): number | null;
-  dew(issue: Issue, lead: number): number | null;
-  clearness(issue: Issue, lead: number): number | null;
-  disturbance(issue: Issue, lead: number): number | null;
+  readonly outdoor: ErrorAt;
+  readonly dew: ErrorAt;
+  readonly clearness: ErrorAt;
+  readonly disturbance: ErrorAt;
 }
 
 /** Spread far ahead and hourly persistence of draws for a site without history. */
@@ -67,7 +69,7 @@ const meanOf = (values: Float64Array): number =>
 function trajectoryOf(issue: Issue, happened: Happened, leads: number): Trajectory | null {
   const outdoorC = errors(leads, (lead) => happened.outdoor(issue, lead));
   if (!outdoorC) return null;
-  const orZero = (error: (issue: Issue, lead: number) => number | null): Float64Array =>
+  const orZero = (error: ErrorAt): Float64Array =>
     errors(leads, (lead) => error(issue, lead), 0) ?? new Float64Array(leads);
   return {
     outdoorC,

@@ -8,10 +8,10 @@ import { siteSchema, type SiteConfig } from '../../src/config.ts';
 import { expectedHome } from '../../src/comfort-hours.ts';
 import { ensembleQuantile } from '../../src/forecasting/ensemble.ts';
 import { createForecaster, type Forecaster } from '../../src/forecasting/forecaster.ts';
+import type { Observed } from '../../src/forecasting/hours.ts';
 import { coverage, crps, cvRmsePct, nmbePct } from '../../src/forecasting/scores.ts';
 import { createRandom, type Random } from '../../src/numerics/random.ts';
 import { clearSkyGhiWPerM2 } from '../../src/physics/sun.ts';
-import type { CycleRecord } from '../../src/record.ts';
 import { DAY_MS, HOUR_MS } from '../../src/time.ts';
 import type { BenchOptions, BenchResult } from './bench.ts';
 import { golden, greensboro, newark, type Place, type WeatherFile } from './forecast-data.ts';
@@ -57,22 +57,11 @@ const BLANK = {
   dischargingW: 0,
 } as const;
 
-type Heard = Pick<
-  CycleRecord,
-  | 'outdoorC'
-  | 'outdoorHumidityPct'
-  | 'roomC'
-  | 'roomHumidityPct'
-  | 'panelPowerW'
-  | 'deliveredW'
-  | 'latentW'
-  | 'fanPowerW'
-  | 'home'
->;
-
-/** Only what the forecaster looks at. */
-const recordAt = (startMs: number, heard: Heard): CycleRecord =>
-  ({ ...BLANK, atMs: startMs + QUARTER_MS, ...heard }) as unknown as CycleRecord;
+const recordAt = (startMs: number, heard: Omit<Observed, keyof typeof BLANK | 'atMs'>): Observed => ({
+  ...BLANK,
+  atMs: startMs + QUARTER_MS,
+  ...heard,
+});
 
 const quantised = (value: number): number => Math.round(value / 0.0625) * 0.0625;
 

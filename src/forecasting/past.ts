@@ -1,0 +1,59 @@
+/** What came of the forecasts issued so far: how to blend, and how wrong they turned out. */
+import type { SiteConfig } from '../config.ts';
+import { blended, learnBlends, type Blend } from './blend.ts';
+import type { HourBook } from './hours.ts';
+import type { Issue } from './issues.ts';
+import { unexplainedAhead } from './own-cabin.ts';
+import { weatherSeries } from './own-weather.ts';
+import type { Happened } from './trajectories.ts';
+
+export interface Past {
+  readonly blends: readonly Blend[];
+  readonly happened: Happened;
+  readonly disturbanceW: Float64Array;
+  /** Issues whose errors are those of the forecast at hand: with or without a hub. */
+  comparable(withHub: boolean): readonly Issue[];
+}
+
+/** Looks back from `lastHour`. `unexplainedW` begins at the first hour of the book. */
+export function lookBack(
+  config: SiteConfig,
+  book: HourBook,
+  issues: readonly Issue[],
+  lastHour: number,
+  leads: number,
+  unexplainedW: readonly (number | null)[],
+): Past {
+  const series = weatherSeries(config, book, lastHour);
+  const first = series.outdoorC.firstHour;
+  const trackFirst = book.all[0]?.hour ?? lastHour;
+  const outdoorC = (hour: number): number | null => series.outdoorC.values[hour - first] ?? null;
+  const blends = learnBlends(issues, outdoorC, leads);
+  const expected = new Map<number, Float64Array>();
+  const expectedW = (hour: number): Float64Array => {
+    const known = expected.get(hour) ?? unexplainedAhead(unexplainedW, hour - trackFirst, leads);
+    expected.set(hour, known);
+    return known;
+  };
+  return {
+    blends,
+    disturbanceW: expectedW(lastHour),
+    comparable: (withHub) => issues.filter((issue) => (issue.hubC !== null) === withHub),
+    happened: {
+      outdoor: (issue, lead) =>
+        less(
+          outdoorC(issue.hour + lead),
+          blended(blends, lead, issue.outdoorC[lead - 1], issue.hubC?.[lead - 1] ?? null),
+        ),
+      dew: (issue, lead) => less(series.dewC.values[issue.hour + lead - first], issue.dewC[lead - 1]),
+      clearness: (issue, lead) =>
+        less(series.clearness.values[issue.hour + lead - first], issue.clearness[lead - 1]),
+      disturbance: (issue, lead) =>
+        less(unexplainedW[issue.hour + lead - trackFirst], expectedW(issue.hour)[lead - 1]),
+    },
+  };
+}
+
+function less(actual: number | null | undefined, forecast: number | undefined): number | null {
+  return actual == null || forecast === undefined ? null : actual - forecast;
+}
