@@ -68,7 +68,6 @@ export class HomieDevice {
   readonly #alerts = new Map<string, string>();
   /** Retained topics of an earlier life, while they are gathered. */
   #leftovers: { topics: Set<string>; lastMs: number } | null = null;
-  #swept = false;
   /** Counts connections: an announcement that a newer one has overtaken ends. */
   #life = 0;
   #announced = false;
@@ -98,7 +97,7 @@ export class HomieDevice {
     void this.#state('init');
     await this.#publish('$description', describeDevice(this.#options.config));
     await this.#cycled;
-    if (!this.#swept && life === this.#life) await this.#sweep();
+    if (life === this.#life) await this.#sweep();
     if (life !== this.#life) return;
     this.#announced = true;
     for (const path of this.#properties.keys()) this.#publishValue(path);
@@ -261,21 +260,17 @@ export class HomieDevice {
     });
   }
 
-  /** Clears what an earlier life left behind: removed properties, values not known now, alerts that are resolved. */
+  /** Clears what is left of an earlier life or connection: removed properties, unknown values, resolved alerts. */
   async #sweep(): Promise<void> {
-    const life = this.#life;
     const alive = new Set(['$state', '$description', ...this.#settable().map((path) => `${path}/$target`)]);
     for (const [path, value] of this.#values) if (value !== null) alive.add(path);
     for (const id of this.#alerts.keys()) alive.add(`$alert/${id}`);
     const kept = await this.#keptByBroker();
-    const cleared = await this.#clear(kept.filter((topic) => !alive.has(topic)));
-    this.#swept = cleared && life === this.#life;
+    await this.#clear(kept.filter((topic) => !alive.has(topic)));
   }
 
-  /** Whether the broker took it. */
-  async #clear(topics: readonly string[]): Promise<boolean> {
-    const cleared = await Promise.all(topics.map((topic) => this.#publish(topic, '')));
-    return cleared.every(Boolean);
+  async #clear(topics: readonly string[]): Promise<void> {
+    await Promise.all(topics.map((topic) => this.#publish(topic, '')));
   }
 
   /** Every topic under the device that the broker keeps a message of. */

@@ -328,6 +328,23 @@ describe.skipIf(!hasMosquitto).concurrent('the Homie device on a real broker', (
     expect(() => device.alert('Dry pump', 'x')).toThrow(TypeError);
   });
 
+  test('an alert that is resolved while the broker is out of reach is gone when it is back (40)', async ({
+    stage,
+  }) => {
+    const { url, port } = await stage.broker();
+    const seen = await stage.observer(url);
+    const wire = await stage.cuttable(port);
+    const { device, client } = await stage.rig(wire.url);
+    await untilReady(seen);
+    device.alert('dry-pump', 'The pump has run dry.');
+    await until('the alert', () => seen.latest(`${ROOT}/$alert/dry-pump`)?.text !== undefined);
+    wire.cut();
+    await until('away', () => !client.connected);
+    device.alert('dry-pump', null);
+    await until('resolved', () => seen.latest(`${ROOT}/$alert/dry-pump`)?.bytes.length === 0);
+    await untilReady(seen);
+  });
+
   test('log levels below the least are not told (39)', async ({ stage }) => {
     const { url } = await stage.broker();
     const seen = await stage.observer(url);

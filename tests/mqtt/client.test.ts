@@ -250,7 +250,7 @@ describe.skipIf(!hasMosquitto).concurrent('against mosquitto', () => {
     await told.client.start();
     wire.cut();
     await until('back', () => told.states.filter((state) => state === 'connected').length === 2);
-    await pause(1200);
+    await pause(3300);
     expect(hub.seen).toEqual([]);
   });
 
