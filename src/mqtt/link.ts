@@ -42,7 +42,7 @@ const SESSION_EXPIRY_S = 300;
 /** Largest packet that we take: a forecast of two weeks by the hour has some 60 kB. */
 export const MOST_PACKET_BYTES = 256 * 1024;
 /** Messages of QoS 1 and 2 that the broker may have under way to us. */
-const RECEIVE_MAXIMUM = 200;
+const RECEIVE_MAXIMUM = 1000;
 /** Messages of QoS 1 and 2 that we have under way to the broker, where it allows that many. */
 const MOST_IN_FLIGHT = 20;
 

@@ -4,7 +4,7 @@ import { createRandom } from '../../src/numerics/random.ts';
 import { BENCH_POINTS, type Ask, type Sent } from './ingest-words.ts';
 
 /** Messages that the broker has not answered yet, at most. */
-const WINDOW = 500;
+const WINDOW = 4000;
 
 const [, , url, seed] = process.argv;
 const random = createRandom(Number(seed));
