@@ -5,6 +5,7 @@
 import type { SiteConfig } from '../config.ts';
 import { dewPointC, humidityRatio, standardPressurePa } from '../physics/moist-air.ts';
 import type { CycleRecord } from '../record.ts';
+import type { HourLine } from './hour-line.ts';
 import { clearSkyOf } from './sky.ts';
 import { HOUR_MS } from '../time.ts';
 
@@ -28,31 +29,6 @@ export type Observed = Pick<
   | 'latentW'
   | 'home'
 >;
-
-/** Means over one hour; null where too little of it was heard. */
-export interface HourLine {
-  /** Whole hours since the epoch. */
-  readonly hour: number;
-  readonly outdoorC: number | null;
-  readonly dewC: number | null;
-  readonly roomC: number | null;
-  /** Room at the end of the hour. */
-  readonly roomEndC: number | null;
-  /** Humidity ratio of the room, kg/kg. */
-  readonly roomW: number | null;
-  /** null too while a full island battery may hold the panels back. */
-  readonly panelW: number | null;
-  /** Sunshine of a cloudless sky, on the level and on the plane of the panels. */
-  readonly clearWPerM2: number;
-  readonly clearOnPanelsWPerM2: number;
-  /** Sensible heat that machines brought into the room less what the coil took out of it. */
-  readonly machineHeatW: number | null;
-  /** Sensible and latent cooling that the coil gave. */
-  readonly sensibleW: number;
-  readonly latentW: number | null;
-  /** Part of the hour in which somebody was home. */
-  readonly home: number;
-}
 
 /** From this charge on an island's charger may hold the panels back. */
 const FULL_BATTERY_PCT = 97;

@@ -1,6 +1,6 @@
 /** How much moisture the coil takes in truth, over what the bypass model says. */
 import type { Coil } from './coil.ts';
-import type { HourLine } from './hours.ts';
+import type { HourLine } from './hour-line.ts';
 
 /** Hours that are looked at, and the least delivery that tells, W. */
 const LOOK_HOURS = 14 * 24;

@@ -1,6 +1,6 @@
 /** What the forecaster keeps over a restart, as JSON. Anything else than its own form counts as no memory at all. */
 import type { CabinMemory } from './own-cabin.ts';
-import type { HourLine } from './hours.ts';
+import type { HourLine } from './hour-line.ts';
 import type { Issue } from './issues.ts';
 
 export interface ForecasterMemory {

@@ -13,7 +13,7 @@ import {
 } from '../physics/sun.ts';
 import { HOUR_MS } from '../time.ts';
 import { hourOfDay } from './bins.ts';
-import type { HourLine } from './hours.ts';
+import type { HourLine } from './hour-line.ts';
 
 export interface ClearSky {
   readonly clearWPerM2: number;

@@ -4,7 +4,8 @@ import { fitAnomaly, predictAnomaly } from '../../src/forecasting/anomaly.ts';
 import { hourBins, type HourSeries } from '../../src/forecasting/bins.ts';
 import { blendAt, blended, hubByLead, learnBlends } from '../../src/forecasting/blend.ts';
 import { designBinsC, seasonK } from '../../src/forecasting/design-weather.ts';
-import { HourGatherer, type HourLine, type Observed } from '../../src/forecasting/hours.ts';
+import type { HourLine } from '../../src/forecasting/hour-line.ts';
+import { HourGatherer, type Observed } from '../../src/forecasting/hours.ts';
 import { keepIssue, type Issue } from '../../src/forecasting/issues.ts';
 import { addRow, normalEquations, solveNormal } from '../../src/forecasting/normal-equations.ts';
 import { clearnessOf, clearSkyOf, panelScale } from '../../src/forecasting/sky.ts';
@@ -305,9 +306,9 @@ describe('hours gathered from records', () => {
     expect(gatherer.add(record(minute(50), { outdoorC: 20 }))).toEqual([]);
     expect(gatherer.add(record(minute(65), { outdoorC: 21 })).map((line) => line.hour)).toEqual([FIRST]);
     expect(gatherer.add(record(minute(30), { outdoorC: 90 }))).toEqual([]);
-    expect(gatherer.add(record(minute(120), { outdoorC: 21 })).map((line) => [line.hour, line.outdoorC])).toEqual(
-      [[FIRST + 1, 21]],
-    );
+    expect(
+      gatherer.add(record(minute(120), { outdoorC: 21 })).map((line) => [line.hour, line.outdoorC]),
+    ).toEqual([[FIRST + 1, 21]]);
     expect(gatherer.add(record(minute(120), { outdoorC: 90 }))).toEqual([]);
   });
 });
