@@ -2,6 +2,7 @@
 import { createServer, type Server } from 'node:http';
 import { getRequestListener } from '@hono/node-server';
 import { Hono } from 'hono';
+import { compress } from 'hono/compress';
 import { RimeholdError, sentenceOf } from '../errors.ts';
 import { assetResponse, readAssets, type Asset } from './assets.ts';
 import { addChangeRoutes } from './change-routes.ts';
@@ -97,6 +98,8 @@ function buildApp(
       if (!c.res.headers.has(name)) c.res.headers.set(name, value);
     }
   });
+  // Event streams are left alone by their content type.
+  app.use(compress());
   const accessOf = addChangeRoutes(app, {
     source,
     passphrase: options.passphrase,

@@ -81,6 +81,8 @@ export interface NowView {
   readonly night: Night;
   readonly record: CycleRecord | null;
   readonly plan: PlanRecord | null;
+  /** Since when the record's mode has held without a break; null when it was not seen to begin. */
+  readonly modeSinceMs: number | null;
   readonly wish: Wish;
   readonly strategy: Strategy;
   readonly limitC: number;

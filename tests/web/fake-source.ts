@@ -69,6 +69,7 @@ export function createFakeSource(initial: FakeState = 'evening'): FakeSource {
       night: nightAt(ZONE, nowMs),
       record: record(),
       plan: blank() ? null : planAt(nowMs),
+      modeSinceMs: blank() ? null : EVENING.startMs + 7.5 * HOUR_MS,
       wish,
       strategy,
       limitC,

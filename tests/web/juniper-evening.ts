@@ -17,10 +17,10 @@ const SLOT_MS = 15 * MINUTE_MS;
 type Knots = readonly (readonly [hour: number, value: number])[];
 
 const ICE: Knots = [
-  [0, 7.9],
-  [3, 7.75],
-  [5.75, 10.2],
-  [7.2, 10.12],
+  [0, 6.1],
+  [2, 6.0],
+  [6, 9.7],
+  [7.2, 9.65],
   [9.33, 6.1],
   [12.3, 2.2],
   [15.25, 2.05],
@@ -38,7 +38,7 @@ const OUTDOOR: Knots = [
   [18, 18.2],
   [20, 20.9],
   [22, 26],
-  [24, 30.6],
+  [24, 30.2],
 ];
 const ROOM: Knots = [
   [0, 24.4],
@@ -51,13 +51,13 @@ const ROOM: Knots = [
   [15, 24.4],
   [18, 23.6],
   [21, 23.9],
-  [24, 24.6],
+  [24, 24.4],
 ];
 const LEAVING: Knots = [
-  [0, 2.4],
-  [3, 2.6],
-  [4, 0.6],
-  [5.75, 0.3],
+  [0, 1.9],
+  [2, 2.3],
+  [3, 0.6],
+  [6, 0.3],
   [7.1, 1.3],
   [7.4, 3.1],
   [9.33, 3.9],
@@ -93,7 +93,7 @@ const hourOf = (atMs: number): number => (atMs - nightAt(ZONE, atMs).startMs) / 
 
 function modeAt(hour: number): Mode {
   if (hour >= 7.2 && hour < 12.3) return hour < 7.5 ? 'charging-while-discharging' : 'discharging';
-  return (hour >= 3 && hour < 5.75) || (hour >= 7 && hour < 7.2) || (hour >= 15.25 && hour < 19.5)
+  return (hour >= 2 && hour < 6) || (hour >= 7 && hour < 7.2) || (hour >= 15.25 && hour < 19.5)
     ? 'charging'
     : 'idle';
 }
@@ -124,7 +124,7 @@ function periodAt(atMs: number): { name: string; price: number } {
 const REASONS: Readonly<Record<Command, string>> = {
   hold: 'Power is at 0.17 EUR/kWh and ice can be made for 0.11 after midnight; the bank holds what the evening needs.',
   'charge-now':
-    'The evening may need 9.3 kWh and 7.8 are in the bank; at 0.17 EUR/kWh ice now is cheaper than at the peak from 18:00.',
+    'The evening may need 9.3 kWh and 6.0 are in the bank; at 0.17 EUR/kWh ice now is cheaper than at the peak from 18:00.',
   discharge:
     'The room was at 26.6 °C against a limit of 26.0, power is at its peak of 0.28 EUR/kWh, and ice on hand covers the evening.',
   'charge-and-discharge': 'The room needs cooling now and the machine must end its shortest run.',

@@ -1,0 +1,60 @@
+/** The sentences that *Tonight* opens with: until when, what it does and why, what is uncertain. */
+import { discharges } from '../../commands.ts';
+import type { CycleRecord, PlanRecord } from '../../record.ts';
+import type { NowAnswer } from '../source.ts';
+import { span, type Format } from './format.ts';
+import { strings } from './strings.ts';
+
+export interface Answer {
+  readonly headline: string;
+  readonly why: string;
+  readonly uncertain: string;
+}
+
+/** Less than this is a puddle, not ice on hand. */
+const PUDDLE_KWH = 0.05;
+
+export function answer(now: NowAnswer, nowMs: number, format: Format): Answer {
+  const { record, plan, modeSinceMs } = now;
+  if (!record) return { headline: strings.answer.nothing, why: '', uncertain: '' };
+  return {
+    headline: headline(record, neededUntilMs(plan, nowMs, now.night.endMs), nowMs, format),
+    why: why(record, modeSinceMs === null ? null : format.when(modeSinceMs, nowMs)),
+    uncertain: uncertain(now, record, format),
+  };
+}
+
+/** End of the last step before the night's end in which the plan melts ice; null when it melts none. */
+export function neededUntilMs(plan: PlanRecord | null, nowMs: number, nightEndMs: number): number | null {
+  const step = plan?.steps.findLast(
+    ({ startMs, command }) => discharges(command) && startMs < nightEndMs && startMs + plan.slotMs > nowMs,
+  );
+  return step && plan ? step.startMs + plan.slotMs : null;
+}
+
+function headline(record: CycleRecord, neededMs: number | null, nowMs: number, format: Format): string {
+  const words = strings.answer;
+  if (!(record.iceOnHandKwh > PUDDLE_KWH)) return words.noIce;
+  if (record.lastsUntilMs === null) return words.whole;
+  const until = format.when(record.lastsUntilMs, nowMs);
+  if (neededMs === null) return words.unneeded(until);
+  const spareMs = record.lastsUntilMs - neededMs;
+  return spareMs >= 0 ? words.spare(until, span(spareMs)) : words.short(until, span(spareMs));
+}
+
+function why(record: CycleRecord, since: string | null): string {
+  return [strings.answer.since(strings.doing(record.mode), since), record.reason].filter(Boolean).join(' ');
+}
+
+function uncertain(now: NowAnswer, record: CycleRecord, format: Format): string {
+  const halfKwh = (record.iceOnHandHighKwh - record.iceOnHandLowKwh) / 2;
+  const helps = now.helpsMost ? `; ${strings.answer.helps(now.helpsMost)}.` : '.';
+  const evening =
+    record.eveningLoadKwh !== null && record.eveningLoadHighKwh !== null
+      ? strings.answer.evening(format.energy(record.eveningLoadKwh), format.energy(record.eveningLoadHighKwh))
+      : '';
+  const knows = now.plan?.forecastKnows ?? '';
+  return [`${strings.answer.giveOrTake(format.energy(halfKwh))}${helps}`, evening, knows]
+    .filter(Boolean)
+    .join(' ');
+}

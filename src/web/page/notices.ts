@@ -1,0 +1,59 @@
+/** Broken and empty states: what is wrong, and what to do about it. The gravest comes first. */
+import type { NowAnswer, PointRow } from '../source.ts';
+import { age, type Format } from './format.ts';
+import type { Staleness } from './live.ts';
+import { strings } from './strings.ts';
+
+export interface Notice {
+  /** Stays the same while only the times in the sentence move on. */
+  readonly kind: string;
+  readonly what: string;
+  readonly todo: string;
+}
+
+const FIRST_DAY_MS = 24 * 3_600_000;
+
+const notice = (kind: string, [what, todo]: readonly string[]): Notice => ({ kind, what, todo });
+
+export function notices(now: NowAnswer, stale: Staleness, nowMs: number, format: Format): Notice[] {
+  const words = strings.notices;
+  const list: Notice[] = [];
+  if (stale) {
+    const since = format.when(stale.sinceMs, nowMs);
+    list.push(notice(stale.kind, stale.kind === 'lost' ? words.lost(since) : words.standstill(since)));
+  }
+  list.push(...healthNotices(now, nowMs, format), ...heldNotices(now), ...pointNotices(now.points));
+  const young = now.firstRecordMs === null || nowMs - now.firstRecordMs < FIRST_DAY_MS;
+  if (young && now.nightsClosed === 0) list.push(notice('first-day', words.firstDay));
+  return list;
+}
+
+function healthNotices({ health }: NowAnswer, nowMs: number, format: Format): Notice[] {
+  const words = strings.notices;
+  const { broker, clock, store } = health;
+  const since = broker.sinceMs === null ? null : format.when(broker.sinceMs, nowMs);
+  const list: Notice[] = [];
+  if (store.state === 'broken') list.push(notice('store-broken', words.storeBroken));
+  if (broker.state === 'away') list.push(notice('broker-away', words.broker(since)));
+  if (clock.state === 'doubtful') list.push(notice('clock', words.clock));
+  if (store.state === 'full') list.push(notice('store-full', words.storeFull));
+  return list;
+}
+
+function heldNotices({ record, interlocks }: NowAnswer): Notice[] {
+  if (!record?.heldBackBy) return [];
+  const [what] = strings.notices.held(record.heldBackBy);
+  const lock = interlocks.find(({ name, speaks }) => speaks && name === record.heldBackBy);
+  return [{ kind: `held ${record.heldBackBy}`, what, todo: lock?.sentence ?? '' }];
+}
+
+/** Only points that have something to say: all of them silent is one notice, not ten. */
+function pointNotices(points: readonly PointRow[]): Notice[] {
+  const words = strings.notices;
+  if (points.every(({ heard }) => !heard)) return [notice('no-sensor', words.noSensor)];
+  return points.flatMap((row) => {
+    if (row.fresh) return [];
+    if (row.heard) return [notice(`stale ${row.point}`, words.pointStale(row.point, age(row.ageMs)))];
+    return row.required ? [notice(`silent ${row.point}`, words.pointSilent(row.point))] : [];
+  });
+}
