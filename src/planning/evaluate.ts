@@ -20,7 +20,7 @@ export const DISCHARGES = 2;
 
 /** Writes the expected money of the four commands; Infinity where one is not allowed. */
 export function weigh(work: Work, t: number, c: number, at: Standing, money: Float64Array): void {
-  const serves = anyLoad(work, t, c) || !work.together;
+  const serves = work.problem.chiller.heatsRoom || anyLoad(work, t, c);
   for (let command = 0; command < 4; command += 1) {
     const after = machineAfter(work, t, at.machine, command);
     if (after < 0) money[command] = Infinity;

@@ -9,7 +9,7 @@
 import { gridMoney, settleIsland, type Island } from './electricity.ts';
 import { move, readSlot } from './motion.ts';
 import { slotHours } from './problem.ts';
-import { plane, valueAt, type Work } from './work.ts';
+import { valueAt, type Work } from './work.ts';
 
 /** Fills `expected` for a class at a slot. */
 export function expectClass(work: Work, t: number, c: number): void {
@@ -21,7 +21,8 @@ export function expectClass(work: Work, t: number, c: number): void {
     else expected.copyWithin(states.count * cells, 0, states.count * cells);
   } else {
     sweepMembers(work, t, c, false);
-    sweepMembers(work, t, c, true);
+    if (work.problem.chiller.heatsRoom || anyLoad(work, t, c)) sweepMembers(work, t, c, true);
+    else expected.copyWithin(states.count * cells, 0, states.count * cells);
   }
 }
 
@@ -119,7 +120,8 @@ function sweepMembers(work: Work, t: number, c: number, discharge: boolean): voi
     for (const charge of [false, true]) {
       if (charge && !work.mayRun[t]) continue;
       moveAll(work, t, charge, discharge);
-      if (!work.island) payAll(work);
+      if (work.island) settleAll(work, work.island);
+      else payAll(work);
       add(work, share, charge, shift, work.value, next);
     }
   }
@@ -144,7 +146,7 @@ function add(
   const last = charge ? states.plain : states.off;
   for (let peak = 0; peak < states.count; peak += states.plain) {
     for (let m = peak + first; m < peak + last; m += 1) {
-      if (island) addIsland(work, island, share, value, next + m * cells, shift + m * cells);
+      if (island) addIsland(work, share, value, next + m * cells, shift + m * cells);
       else addGrid(work, share, value, next + m * cells, shift + m * cells);
     }
   }
@@ -186,22 +188,37 @@ function addGrid(work: Work, share: number, value: Float64Array, from: number, t
   }
 }
 
-function addIsland(
-  work: Work,
-  island: Island,
-  share: number,
-  value: Float64Array,
-  from: number,
-  to: number,
-): void {
-  const { expected, moved, settled, slot, tables } = work;
-  const { low, part, money, energyKwh } = moved;
+/** Settles what was moved at every battery level: corner cell and parts of the bilinear value, and the money. */
+function settleAll(work: Work, island: Island): void {
+  const { moved, settled, slot, tables, onBattery, batteryPoints, batteryStepKwh } = work;
   const { points } = tables;
-  for (let b = 0; b < work.batteryPoints; b += 1) {
+  for (let b = 0; b < batteryPoints; b += 1) {
     for (let i = 0; i < points; i += 1) {
-      settleIsland(island, slot, b * work.batteryStepKwh, energyKwh[i], settled);
-      const later = plane(work, value, from, low[i], part[i], settled.batteryKwh);
-      expected[to + b * points + i] += share * (money[i] + settled.money + later);
+      settleIsland(island, slot, b * batteryStepKwh, moved.energyKwh[i], settled);
+      const place = batteryPoints > 1 ? settled.batteryKwh / batteryStepKwh : 0;
+      const low = Math.max(0, Math.min(Math.floor(place), batteryPoints - 2));
+      const cell = b * points + i;
+      onBattery.corner[cell] = low * points + moved.low[i];
+      onBattery.part[cell] = place - low;
+      onBattery.money[cell] = moved.money[i] + settled.money;
+    }
+  }
+}
+
+function addIsland(work: Work, share: number, value: Float64Array, from: number, to: number): void {
+  const { expected, moved, onBattery, tables, cells } = work;
+  const { corner, part, money } = onBattery;
+  const { points } = tables;
+  // Without a battery there is no level above; its part is nothing then.
+  const up = work.batteryPoints > 1 ? points : 0;
+  for (let base = 0; base < cells; base += points) {
+    for (let i = 0; i < points; i += 1) {
+      const cell = base + i;
+      const k = from + corner[cell];
+      const icePart = moved.part[i];
+      const lower = value[k] + icePart * (value[k + 1] - value[k]);
+      const upper = value[k + up] + icePart * (value[k + up + 1] - value[k + up]);
+      expected[to + cell] += share * (money[cell] + lower + part[cell] * (upper - lower));
     }
   }
 }

@@ -86,6 +86,7 @@ export function timetablePlan(inputs: TimetableInputs, note: string): Plan {
     expectedWarmKh: null,
     lastsUntilMs: null,
     lastsAtLeastUntilMs: null,
+    servesRooms: true,
     meltsOut: false,
   };
 }

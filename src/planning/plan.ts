@@ -2,10 +2,10 @@
  * A plan has three ends: solved; or, when a solve fails or takes too long, the last plan shifted to now; or, when
  * there is none, the owner's timetable. Nothing here throws into the cycle.
  */
-import { commandFor, COMMANDS, type Command, type Strategy } from '../commands.ts';
+import { charges, commandFor, COMMANDS, type Command, type Strategy } from '../commands.ts';
 import { weightedQuantile } from '../numerics/quantile.ts';
 import type { PlanOutcome, PlanStep } from '../record.ts';
-import { cheapest, weigh, type Standing } from './evaluate.ts';
+import { cheapest, DISCHARGES, weigh, type Standing } from './evaluate.ts';
 import {
   holdForAnHour,
   liveForward,
@@ -48,6 +48,8 @@ export interface Plan {
   /** When the ice runs out if no more is made: median, and one evening in ten; null beyond the plan. */
   readonly lastsUntilMs: number | null;
   readonly lastsAtLeastUntilMs: number | null;
+  /** Whether a room that turns out warmer than foreseen shall be cooled: not while ice is saved for later. */
+  readonly servesRooms: boolean;
   /** Whether this plan lets the bank melt out to clear up how much ice there is. */
   readonly meltsOut: boolean;
 }
@@ -78,7 +80,9 @@ export function read(work: Work): Plan {
   const money = new Float64Array(4);
   weigh(work, 0, 0, here, money);
   if (!Number.isFinite(Math.min(...money))) throw new RangeError('the figures of the plant are not finite');
-  const chosen = withRoomNearLimit(problem, money, cheapest(money, problem.chillerOn));
+  const worth = worthOfIce(work, here);
+  const serves = servesRooms(work, worth);
+  const chosen = withRoomNearLimit(problem, money, cheapest(money, problem.chillerOn), serves);
   const paths = liveForward(work, chosen);
   const steps = stepsOf(work, paths);
   const other = otherwise(chosen);
@@ -92,12 +96,13 @@ export function read(work: Work): Plan {
     steps,
     command: COMMANDS[chosen],
     nextChangeMs: steps.find((step) => step.command !== COMMANDS[chosen])?.startMs ?? null,
-    worthOfIceMoneyPerKwh: worthOfIce(work, here),
+    worthOfIceMoneyPerKwh: worth,
     waitCostMoney: wait,
     flips: { priceMoneyPerKwh: priceFlip(work, chosen, wait), iceKwh: iceFlip(work, here, chosen) },
     expectedCostMoney: paths.expectedMoney,
     expectedWarmKh: paths.expectedWarmKh,
     ...lasting(work),
+    servesRooms: serves,
     meltsOut: meltsOut(work, paths),
   };
 }
@@ -105,10 +110,34 @@ export function read(work: Work): Plan {
 /** How far under the limit a room counts as soon to be cooled. */
 const NEAR_LIMIT_K = 0.5;
 
-/** Where no cooling is foreseen in this slot but the room is at its limit, delivery is left open: it costs nothing. */
-function withRoomNearLimit(problem: PlanProblem, money: Float64Array, chosen: number): number {
+/** Where no cooling is foreseen in this slot but the room is at its limit, delivery is left open: the room decides. */
+function withRoomNearLimit(
+  problem: PlanProblem,
+  money: Float64Array,
+  chosen: number,
+  serves: boolean,
+): number {
   const near = problem.homeNow && problem.roomC !== null && problem.roomC > problem.limitC[0] - NEAR_LIMIT_K;
-  return near && money[chosen | 2] <= money[chosen] + 1e-9 ? chosen | 2 : chosen;
+  return near && serves && money[chosen | DISCHARGES] < Infinity ? chosen | DISCHARGES : chosen;
+}
+
+/** Cooling nobody foresaw is worth its ice, unless the ice would save as many warm hours later. */
+function servesRooms(work: Work, worthMoneyPerKwh: number): boolean {
+  const { scenarios, warmHourMoney } = work.problem;
+  return worthMoneyPerKwh < warmHourMoney * Math.max(LEAST_WARM_KH, ...scenarios.map((s) => s.warmKhPerKwh));
+}
+
+/** Warm hours of a kWh not delivered where the forecast, seeing no load, gives none. */
+const LEAST_WARM_KH = 1;
+
+/**
+ * The command of a plan at an instant after it was made, for a room as it is then: what the step says, with delivery
+ * left open where somebody is home and the room is near its limit.
+ */
+export function commandAt(plan: Plan, nowMs: number, roomIsNear: boolean): Command {
+  const step = plan.steps.findLast((candidate) => candidate.startMs <= nowMs) ?? plan.steps[0];
+  const asked = step?.command ?? 'hold';
+  return roomIsNear && plan.servesRooms ? commandFor(charges(asked), true) : asked;
 }
 
 /** The opposite that a wait means: from making, not making; from melting, not melting; from hold, making. */

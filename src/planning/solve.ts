@@ -36,7 +36,7 @@ export function createWork(
   const { slots, chiller, slotMs, power } = problem;
   const island = power.kind === 'island' ? islandOf(power) : null;
   const states = machineStates(chiller, slotMs, power.kind === 'grid' && power.demand !== null);
-  const batteryPoints = island && island.capacityKwh > 0 ? Math.max(2, options.batteryPoints ?? 7) : 1;
+  const batteryPoints = island && island.capacityKwh > 0 ? Math.max(2, options.batteryPoints ?? 6) : 1;
   const cells = tables.points * batteryPoints;
   const work: Work = {
     problem,
@@ -59,6 +59,11 @@ export function createWork(
       part: new Float64Array(tables.points),
       energyKwh: new Float64Array(tables.points),
       money: new Float64Array(tables.points),
+    },
+    onBattery: {
+      corner: new Int32Array(cells),
+      part: new Float64Array(cells),
+      money: new Float64Array(cells),
     },
     together: !island && !chiller.heatsRoom,
     ownPower: problem.scenarios.some((s) => Array.from(s.panelW).some((w) => w > 0)),
@@ -94,7 +99,7 @@ function limits(work: Work): void {
  * spread of many scenarios blurs it more than the grid does; a single one needs a fine grid to show it.
  */
 function pointsFor(problem: PlanProblem): number {
-  if (problem.power.kind === 'island') return 37;
+  if (problem.power.kind === 'island') return 31;
   return problem.scenarios.length >= 8 ? 61 : 241;
 }
 

@@ -36,6 +36,12 @@ export interface Work {
     readonly energyKwh: Float64Array;
     readonly money: Float64Array;
   };
+  /** On an island, the same at every battery level: corner cell, part beyond it on the battery, money. */
+  readonly onBattery: {
+    readonly corner: Int32Array;
+    readonly part: Float64Array;
+    readonly money: Float64Array;
+  };
   /** Whether members of a class may be moved together where nothing is delivered; and whether there is own power. */
   readonly together: boolean;
   readonly ownPower: boolean;
@@ -53,21 +59,15 @@ export function valueAt(work: Work, t: number, c: number, state: number): number
 
 /** Value between grid points, from the offset of a class and state. */
 export function valueBetween(work: Work, offset: number, iceKwh: number, batteryKwh: number): number {
-  const { value, tables } = work;
+  const { tables } = work;
   const place = iceKwh / tables.stepKwh;
   const low = place >= tables.points - 1 ? tables.points - 2 : Math.floor(place);
-  return plane(work, value, offset, low, place - low, batteryKwh);
+  return plane(work, offset, low, place - low, batteryKwh);
 }
 
 /** Bilinear in ice (cell `low` and the part beyond it) and battery. */
-export function plane(
-  work: Work,
-  value: Float64Array,
-  offset: number,
-  low: number,
-  part: number,
-  batteryKwh: number,
-): number {
+function plane(work: Work, offset: number, low: number, part: number, batteryKwh: number): number {
+  const { value } = work;
   const below = offset + low;
   if (work.batteryPoints === 1) return value[below] + part * (value[below + 1] - value[below]);
   const place = batteryKwh / work.batteryStepKwh;

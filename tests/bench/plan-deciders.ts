@@ -2,14 +2,16 @@
 import type { Strategy } from '../../src/commands.ts';
 import type { SiteConfig } from '../../src/config.ts';
 import { replan } from '../../src/cycle.ts';
-import { iceOf, planInputs, timetableInputs } from '../../src/cycle-plan.ts';
-import type { Planned } from '../../src/cycle-values.ts';
+import { planInputs } from '../../src/cycle-plan.ts';
+import { isHome, type Planned } from '../../src/cycle-values.ts';
+import { limitAt } from '../../src/comfort-hours.ts';
+import { meanOverRooms } from '../../src/points.ts';
 import { createEstimator } from '../../src/estimation/estimator.ts';
 import { createForecaster, type Forecast } from '../../src/forecasting/forecaster.ts';
 import type { Scenario } from '../../src/forecasting/scenarios.ts';
 import { planProblem } from '../../src/planning/build.ts';
 import { timetablePlan } from '../../src/planning/fallback.ts';
-import { solvePlan } from '../../src/planning/plan.ts';
+import { commandAt, solvePlan, type Plan } from '../../src/planning/plan.ts';
 import type { PlanProblem } from '../../src/planning/problem.ts';
 import { simpleCommand } from '../../src/planning/strategies.ts';
 import { priceSlots } from '../../src/tariff/prices.ts';
@@ -23,6 +25,16 @@ const REPLAN_MS = HOUR_MS;
 /** The mean of each hour's forecast, for strategies that foresee no more than a mean. */
 export type MeanForecasts = Map<number, Forecast>;
 
+/** Dispatch holds the rooms a little under their limit; a load foreseen for the limit itself would be too small. */
+const UNDER_LIMIT_K = 0.4;
+
+function atSetPoint(config: SiteConfig): SiteConfig {
+  const { comfort } = config;
+  const under = (limitC: number): number => limitC - UNDER_LIMIT_K;
+  const sleepingLimitC = comfort.sleepingLimitC === null ? null : under(comfort.sleepingLimitC);
+  return { ...config, comfort: { ...comfort, limitC: under(comfort.limitC), sleepingLimitC } };
+}
+
 /** The plan as in life: real estimator, real forecaster; storage priority until counting begins. */
 export function plannedDecider(
   o: LoopOptions,
@@ -32,7 +44,7 @@ export function plannedDecider(
 ): Decider {
   const { config } = o.on;
   const estimator = createEstimator(config, { seed, startMs: o.startMs });
-  const forecaster = createForecaster(config, { seed });
+  const forecaster = createForecaster(atSetPoint(config), { seed });
   return {
     strategy: 'planned',
     senses: { estimator, forecaster },
@@ -43,7 +55,7 @@ export function plannedDecider(
         if (onTheHour) means.set(slotStart(nowMs, HOUR_MS), meanOf(forecaster.forecast(nowMs, null)));
         return simplePlanned('storage-priority', o.on, sight, latest(means, nowMs));
       }
-      if (!onTheHour) return null;
+      if (!onTheHour) return goingOn(sight, config);
       const outlook = { outdoorForecast: null, datedPrices: o.on.dated(nowMs), demand };
       const planned = replan(stages, state, moment, { wish: null, strategy: 'planned' }, outlook);
       means.set(slotStart(nowMs, HOUR_MS), meanOf(planned.forecast));
@@ -69,7 +81,7 @@ export function foresightDecider(
       if (nowMs <= o.countFromMs) {
         return simplePlanned('storage-priority', o.on, sight, latest(means, nowMs));
       }
-      if (nowMs % REPLAN_MS !== 0 && state.planned !== null) return null;
+      if (nowMs % REPLAN_MS !== 0 && state.planned !== null) return goingOn(sight, config);
       const forecast = { ...latest(means, nowMs), scenarios: [will(nowMs)] };
       const problem = problemOf(config, o.on, sight, forecast);
       const plan = solvePlan(problem, {
@@ -79,6 +91,20 @@ export function foresightDecider(
       });
       return { plan, problem, prices: [], forecast, strategy: 'planned', command: plan.command, reason: '' };
     },
+  };
+}
+
+/** Between plans the last one's steps go on, and a room near its limit is cooled. */
+function goingOn({ nowMs, state, moment }: Sight, config: SiteConfig): Planned | null {
+  const { planned } = state;
+  if (!planned) return null;
+  const roomC = meanOverRooms(moment.live, 'room-temperature');
+  const limitC = limitAt(config.comfort, config.site.zone, nowMs);
+  const near = roomC !== null && roomC > limitC - 0.5 && isHome(config, moment.live, nowMs);
+  return {
+    ...planned,
+    command: commandAt(planned.plan, nowMs, near),
+    plan: { ...planned.plan, madeMs: nowMs },
   };
 }
 
@@ -119,11 +145,25 @@ function simplePlanned(
 ): Planned {
   const { config } = on;
   const problem = problemOf(config, on, sight, from(forecast, sight.nowMs));
-  const ice = sight.stages.estimator.estimate();
-  const plan = timetablePlan({ ...timetableInputs(config, sight.nowMs, 8), ...iceOf(ice) }, '');
   const command = simpleCommand(strategy, problem, config.planning.timetable);
-  return { plan, problem, prices: [], forecast, strategy, command, reason: '' };
+  return { plan: noPlan(sight.nowMs), problem, prices: [], forecast, strategy, command, reason: '' };
 }
+
+/** A simple strategy looks no further than its own command. */
+const noPlan = (nowMs: number): Plan => ({ ...blankPlan, madeMs: nowMs });
+const blankPlan = timetablePlan(
+  {
+    nowMs: 0,
+    slotMs: HOUR_MS / 4,
+    slots: 1,
+    zone: 'Etc/UTC',
+    timetable: [],
+    iceKwh: 0,
+    iceLowKwh: 0,
+    iceHighKwh: 0,
+  },
+  '',
+);
 
 function problemOf(config: SiteConfig, on: PlanCase, sight: Sight, forecast: Forecast): PlanProblem {
   const { nowMs, stages, state, moment, demand, truth } = sight;

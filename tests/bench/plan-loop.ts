@@ -34,7 +34,7 @@ export interface Sight {
 
 export interface Decider {
   readonly strategy: Strategy;
-  /** Null: the true ice is told, and nothing is learned. */
+  /** Null: the true ice is told, and nothing is learned; all else is heard from the same faulty probes. */
   readonly senses: { estimator: Estimator; forecaster: Forecaster } | null;
   /** Asked at every quarter hour; null leaves the last decision in force. */
   decide(sight: Sight): Planned | null;
@@ -125,8 +125,7 @@ class Loop {
     this.nowMs += MINUTE_MS;
     const readings = this.simulator.advance(this.nowMs).toSorted((a, b) => a.atMs - b.atMs);
     const truth = this.simulator.truth();
-    if (this.decider.senses) this.hear(readings);
-    else this.tell(truth);
+    this.hear(readings);
     const moment = this.moment();
     if (this.state.planned === null) this.stages.estimator.advance(this.nowMs, readings.splice(0), null);
     if (this.nowMs % QUARTER_MS === 0 || this.state.planned === null) this.decide(moment, truth);
@@ -151,26 +150,6 @@ class Loop {
       const known = this.live[point as PointId];
       if (!known || known.value === null || this.nowMs - known.atMs <= spec.maxAgeMs) continue;
       this.live[point as PointId] = { value: null, reason: 'stale', last: null };
-    }
-  }
-
-  /** The points that the interlocks and the rooms' wants look at, without a fault. */
-  private tell(truth: Truth): void {
-    const told: Record<string, number> = {
-      'leaving-water': truth.leavingC,
-      'chiller-power': truth.chillerW,
-      'pump-power': truth.pumpW,
-      'fan-power': truth.fanW,
-      'room-temperature': mean(truth.roomsC),
-      'outdoor-temperature': truth.outdoorC,
-      'bank-surround': truth.surroundC,
-      'house-power': truth.houseW,
-      ...(this.config.power.island
-        ? { 'battery-charge': truth.batteryPct, 'panel-power': truth.panelW }
-        : {}),
-    };
-    for (const [point, value] of Object.entries(told)) {
-      this.live[point as PointId] = { value, atMs: this.nowMs };
     }
   }
 

@@ -74,7 +74,8 @@ function runCase(on: PlanCase, seed: number, nights: number, warmUpDays: number)
   const { site } = on.config;
   const countFromMs = fromWall(site.zone, 2026, 6, 20, 12 * 60);
   const endMs = countFromMs + nights * DAY_MS;
-  const weather = seededWeather({ seed, ...site, hotDayC: 36, rangeK: 15 });
+  const { designDayC, designRangeK } = on.config.cabin;
+  const weather = seededWeather({ seed, ...site, hotDayC: designDayC ?? 34, rangeK: designRangeK });
   const options: LoopOptions = {
     on,
     seed,
