@@ -49,6 +49,12 @@ export function fixed(value: number, decimals: number): string {
   return isZero ? text.replace('-', '') : text.replace('-', '\u2212');
 }
 
+/** Fewer decimals on larger figures, so that columns stay narrow: 9.87, 98.76, 987.6, 9876. */
+export function figures(value: number, decimals: number): string {
+  const size = Math.abs(value);
+  return fixed(value, Math.max(0, decimals - (size >= 1000 ? 2 : size >= 100 ? 1 : 0)));
+}
+
 export function displayFor(site: { units: DisplayUnits; currency: string; zone: string }): Display {
   const ip = site.units === 'IP';
   const inside = (value: number, unit: string, dimension: Parameters<typeof fromInside>[2]): number =>
@@ -57,7 +63,7 @@ export function displayFor(site: { units: DisplayUnits; currency: string; zone: 
   const at = (instant: string): number => parseInstant(instant) ?? 0;
   return {
     heatUnit: ip ? 'kBTU' : 'kWh',
-    heat: (kwh) => (ip ? fixed(inside(kwh, 'BTU', 'energy') / 1000, 1) : fixed(kwh, 2)),
+    heat: (kwh) => (ip ? figures(inside(kwh, 'BTU', 'energy') / 1000, 1) : figures(kwh, 2)),
     massUnit: ip ? 'lb' : 'kg',
     mass: (kg) => (ip ? fixed(inside(kg, 'lb', 'mass'), 0) : fixed(kg, 1)),
     temperatureUnit: ip ? '\u00b0F' : '\u00b0C',

@@ -2,6 +2,7 @@
 import type { SiteConfig } from '../config.ts';
 import type { CycleRecord } from '../record.ts';
 import { formatInstant, HOUR_MS, type Night } from '../time.ts';
+import { grouped } from './grouped.ts';
 import type { NightSheet } from './night-schema.ts';
 import { bySlot, energyKwh, hoursOf, meanOver, rounded, roundedOrNull, type Span } from './spans.ts';
 
@@ -62,12 +63,7 @@ function moneyOf(spans: readonly Span[], of: PowerOf, machines: readonly Machine
 }
 
 function periodsOf(spans: readonly Span[], of: PowerOf): NightSheet['electricity']['byPeriod'] {
-  const byPeriod = new Map<string, Span[]>();
-  for (const span of spans) {
-    const list = byPeriod.get(span.record.pricePeriod);
-    if (list) list.push(span);
-    else byPeriod.set(span.record.pricePeriod, [span]);
-  }
+  const byPeriod = grouped(spans, (span) => span.record.pricePeriod);
   return [...byPeriod].map(([period, part]) => ({
     period,
     machineKwh: rounded(energyKwh(part, of('machine')), 3),

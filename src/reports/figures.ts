@@ -13,9 +13,11 @@ const KELVIN = 273.15;
 const PINCH_K = 12;
 const WATER_W_PER_K_PER_L_MIN = 4205 / 60;
 /** Fewer hours than this of a mode give no figure. */
-const LEAST_HOURS = 0.5;
+const LEAST_HOURS = 1;
 /** Under this inventory the shrinking ice itself lowers the conductance. */
 const STEADY_INVENTORY_PCT = 30;
+/** Ice on hand below which a bank counts as having run out. */
+const LEAST_ICE_KWH = 0.3;
 /** Base of the degree-hours, below the comfort limit: below it a cabin needs no cooling (common practice, no source). */
 const BASE_BELOW_LIMIT_K = 6;
 
@@ -63,7 +65,7 @@ function loopFigures(site: SiteConfig, flowing: readonly Span[]) {
     'loop-flow' in site.points ? record.loopFlowLPerMin : site.delivery.flowLPerMin;
   return {
     meltWPerK: of((record) => meltConductance(record, flowOf(record))),
-    coilWPerK: of(coilConductance),
+    coilNtu: of(coilTransferUnits),
     flowLPerMin: 'loop-flow' in site.points ? of((record) => record.loopFlowLPerMin) : null,
     pumpPowerW: of((record) => record.pumpPowerW),
   };
@@ -78,12 +80,15 @@ function meltConductance(record: CycleRecord, flow: number | null): number | nul
   return flow * WATER_W_PER_K_PER_L_MIN * Math.log(entering / leaving);
 }
 
-/** Heat taken from the rooms by the kelvin between room air and mean water: falls when the coil is fouled. */
-function coilConductance(record: CycleRecord): number | null {
-  const { enteringWaterC: entering, leavingWaterC: leaving, roomC, deliveredW } = record;
-  if (entering === null || leaving === null || roomC === null || deliveredW === null) return null;
-  const differenceK = roomC - (entering + leaving) / 2;
-  return differenceK > 5 && deliveredW > 0 ? deliveredW / differenceK : null;
+/**
+ * Transfer units of the fan coil from three temperatures alone: what share of the way from leaving water to room air the
+ * water comes back warmed. A fouled coil lowers it, a weaker flow raises it; no flow meter and no learned figure is in it.
+ */
+function coilTransferUnits(record: CycleRecord): number | null {
+  const { enteringWaterC: entering, leavingWaterC: leaving, roomC } = record;
+  if (entering === null || leaving === null || roomC === null) return null;
+  const share = (entering - leaving) / (roomC - leaving);
+  return roomC - leaving > 8 && share > 0.02 && share < 0.98 ? -Math.log(1 - share) : null;
 }
 
 function houseFigures(site: SiteConfig, spans: readonly Span[]) {
@@ -94,9 +99,11 @@ function houseFigures(site: SiteConfig, spans: readonly Span[]) {
     0,
   );
   const outKwh = energyKwh(spans, (record) => record.dischargingW);
+  // On a night that ran out of ice the load was what there was, not what was wanted.
+  const ranOut = spans.some(({ record }) => record.iceOnHandKwh < LEAST_ICE_KWH);
   return {
     heatLeakWPerK: last === undefined ? null : rounded(last.record.heatLeakWPerK, 4),
-    loadPerDegree: degreeHours > 20 && outKwh > 0.5 ? rounded(outKwh / degreeHours, 5) : null,
+    loadPerDegree: !ranOut && degreeHours > 20 && outKwh > 0.5 ? rounded(outKwh / degreeHours, 5) : null,
   };
 }
 

@@ -123,7 +123,7 @@ export const FIGURES = [
   'iceMakingAtRatingW',
   'machinePowerAtRatingW',
   'meltWPerK',
-  'coilWPerK',
+  'coilNtu',
   'flowLPerMin',
   'pumpPowerW',
   'loadPerDegree',
@@ -236,7 +236,10 @@ export function nightSheetJsonSchema(): Record<string, unknown> {
   return z.toJSONSchema(nightSheetSchema, { target: 'draft-2020-12' }) as Record<string, unknown>;
 }
 
-/** A stored sheet read back; null when it is of another schema or damaged. */
+/**
+ * A stored sheet read back; null when it is of another schema or damaged. The store holds only what was written by
+ * this program, so the schema's name is checked and not every field: a ledger of years opens a thousand of them.
+ */
 export function readSheet(body: string): NightSheet | null {
   let value: unknown;
   try {
@@ -244,6 +247,11 @@ export function readSheet(body: string): NightSheet | null {
   } catch {
     return null;
   }
-  const parsed = nightSheetSchema.safeParse(value);
-  return parsed.success ? parsed.data : null;
+  return isSheet(value) ? value : null;
+}
+
+function isSheet(value: unknown): value is NightSheet {
+  return (
+    typeof value === 'object' && value !== null && 'schema' in value && value.schema === NIGHT_SHEET_SCHEMA
+  );
 }

@@ -35,8 +35,8 @@ export function heading(text: string): string {
   return `-- ${text} ${'-'.repeat(Math.max(0, PAPER_WIDTH - lengthOf(text) - 4))}`;
 }
 
-/** Rows of cells: the first column to the left, the others to the right, two blanks between. */
-export function table(rows: readonly (readonly string[])[], leftColumns = 1): string[] {
+/** Rows of cells: the first column to the left, the others to the right, two blanks between them if not told otherwise. */
+export function table(rows: readonly (readonly string[])[], leftColumns = 1, gap = '  '): string[] {
   const columns = Math.max(0, ...rows.map((row) => row.length));
   const widths = Array.from({ length: columns }, (_, at) =>
     Math.max(...rows.map((row) => lengthOf(row[at] ?? ''))),
@@ -44,7 +44,7 @@ export function table(rows: readonly (readonly string[])[], leftColumns = 1): st
   return rows.map((row) =>
     row
       .map((cell, at) => (at < leftColumns ? padEnd(cell, widths[at]) : padStart(cell, widths[at])))
-      .join('  ')
+      .join(gap)
       .trimEnd(),
   );
 }

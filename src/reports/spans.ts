@@ -1,6 +1,7 @@
 /** A night's records as stretches of time that do not overlap, and sums over them. */
 import type { CycleRecord } from '../record.ts';
 import { HOUR_MS, type Night } from '../time.ts';
+import { grouped } from './grouped.ts';
 
 /** The stretch of time that a record speaks for, cut to the night and to where the record before it ended. */
 export interface Span {
@@ -64,14 +65,7 @@ export function extreme(
 
 /** Spans by the slot they end in, counted from `startMs`. */
 export function bySlot(spans: readonly Span[], startMs: number, slotMs: number): Map<number, Span[]> {
-  const slots = new Map<number, Span[]>();
-  for (const span of spans) {
-    const slot = Math.floor((span.toMs - 1 - startMs) / slotMs);
-    const list = slots.get(slot);
-    if (list) list.push(span);
-    else slots.set(slot, [span]);
-  }
-  return slots;
+  return grouped(spans, (span) => Math.floor((span.toMs - 1 - startMs) / slotMs));
 }
 
 /** Neighbours with the same key, as one stretch each. */

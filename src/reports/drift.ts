@@ -1,0 +1,213 @@
+/**
+ * What drifts over weeks: each kind of trouble is a named signature on the figures of the nights. The figures are watched
+ * night by night, as they came; a change is told once, with the night it set in, and the level after it becomes the new
+ * normal. The sheet says what to look at, and leaves the judgement to whoever looks.
+ */
+import { firstChange, type Change } from './change-point.ts';
+import type { NightSheet } from './night-schema.ts';
+import { rounded } from './spans.ts';
+import { seriesOf, type Series, type SeriesName } from './drift-series.ts';
+
+export const SIGNATURES = [
+  'fouled-coil',
+  'dirty-condenser',
+  'low-refrigerant',
+  'wet-insulation',
+  'tired-pump',
+  'lying-probe',
+  'open-door-habit',
+] as const;
+export type Signature = (typeof SIGNATURES)[number];
+
+export interface DriftFinding {
+  /** Null for a change that is no trouble, such as after a repair. */
+  readonly signature: Signature | null;
+  readonly figure: SeriesName;
+  /** Night in which it set in, and the nights between which that lies with 90 %. */
+  readonly since: string;
+  readonly sinceEarliest: string;
+  readonly sinceLatest: string;
+  /** Night whose sheet could first tell it. */
+  readonly toldOn: string;
+  /** Change of the figure in per cent, or in K for a probe. */
+  readonly change: number;
+  readonly unit: '%' | 'K';
+  /** Probability that the figure changed at all, 0 to 1. */
+  readonly confidence: number;
+  /** For the margin of a ledger: "leak up 34 %". */
+  readonly note: string;
+  readonly sentence: string;
+  /** What to look at. */
+  readonly look: string;
+}
+
+/** Each part of a plant gives trouble about once a year, no more (common practice, no source). */
+const HAZARD_PER_NIGHT = 1 / 365;
+/** The learner's first weeks are its own change, not the plant's. */
+const LEARNING_NIGHTS = 14;
+/** Two changes within this many nights of each other belong together. */
+const TOGETHER_NIGHTS = 10;
+
+/** All changes in the nights of one plant that are trouble, or the end of one, in order of the night they set in. */
+export function driftOf(sheets: readonly NightSheet[]): DriftFinding[] {
+  const dates = sheets.map((sheet) => sheet.night.date);
+  const changes = seriesOf(sheets.slice(LEARNING_NIGHTS)).flatMap(changesOf);
+  const named = changes
+    .filter((one) => !explainedAway(one, changes, dates))
+    .map((one) => ({ ...one, signature: signatureOf(one, changes, dates) }));
+  return firstOfEach(named, dates)
+    .filter((one) => one.signature !== null || named.some((before) => ends(one, before)))
+    .map(findingOf)
+    .toSorted((a, b) => (a.since < b.since ? -1 : 1));
+}
+
+interface Told {
+  readonly series: Series;
+  readonly change: Change;
+  readonly since: string;
+  readonly earliest: string;
+  readonly latest: string;
+  readonly toldOn: string;
+}
+
+interface Named extends Told {
+  readonly signature: Signature | null;
+}
+
+/** Every change of a series, one after the other, each from the level that the one before it left. */
+export function changesOf(series: Series): Told[] {
+  const out: Told[] = [];
+  let start = 0;
+  for (;;) {
+    const nights = series.nights.slice(start);
+    const found = firstChange(nights, { ...series, hazardPerNight: HAZARD_PER_NIGHT });
+    if (found === null) return out;
+    const { change, toldAt } = found;
+    out.push({
+      series,
+      change,
+      since: nights[change.at].date,
+      earliest: nights[change.earliest].date,
+      latest: nights[change.latest].date,
+      toldOn: nights[toldAt].date,
+    });
+    start += change.at;
+  }
+}
+
+function near(a: Told, b: Told, dates: readonly string[]): boolean {
+  return Math.abs(dates.indexOf(a.since) - dates.indexOf(b.since)) <= TOGETHER_NIGHTS;
+}
+
+function alongside(one: Told, name: SeriesName, all: readonly Told[], dates: readonly string[]): number {
+  return all.find((other) => other.series.name === name && near(one, other, dates))?.change.step ?? 0;
+}
+
+/**
+ * A change that another one brings about is not told beside it: less flow warms the water more in the coil and is less work for the
+ * pump; an ice machine that makes less looks, for some nights, like a bank that leaks more.
+ */
+const BROUGHT_ABOUT_BY: Readonly<Partial<Record<SeriesName, readonly SeriesName[]>>> = {
+  coil: ['pump-power'],
+  'pump-power': ['flow'],
+  'machine-power': ['cop'],
+  leak: ['cop', 'machine-power'],
+};
+
+function explainedAway(one: Told, all: readonly Told[], dates: readonly string[]): boolean {
+  const causes = BROUGHT_ABOUT_BY[one.series.name] ?? [];
+  return causes.some((name) => alongside(one, name, all, dates) !== 0);
+}
+
+/** Two figures may tell the same trouble; the one that told it first stands for both. */
+function firstOfEach(named: readonly Named[], dates: readonly string[]): Named[] {
+  return named.filter(
+    (one) =>
+      one.signature === null ||
+      !named.some(
+        (other) =>
+          other !== one &&
+          other.signature === one.signature &&
+          near(one, other, dates) &&
+          (other.toldOn < one.toldOn || (other.toldOn === one.toldOn && other.series.name < one.series.name)),
+      ),
+  );
+}
+
+/** Whether a change the other way ends a trouble that the same figure told before. */
+function ends(one: Named, before: Named): boolean {
+  return before.signature !== null && before.series.name === one.series.name && before.since < one.since;
+}
+
+function signatureOf(one: Told, all: readonly Told[], dates: readonly string[]): Signature | null {
+  const { step } = one.change;
+  if (one.series.name.startsWith('probe ')) return 'lying-probe';
+  switch (one.series.name) {
+    case 'leak':
+      return step > 0 ? 'wet-insulation' : null;
+    case 'cop':
+      if (step > 0) return null;
+      return alongside(one, 'machine-power', all, dates) > 0 ? 'dirty-condenser' : 'low-refrigerant';
+    case 'machine-power':
+      return step > 0 ? 'dirty-condenser' : 'low-refrigerant';
+    case 'coil':
+      // Water that comes back warmer than it did has passed the coil more slowly.
+      return step < 0 ? 'fouled-coil' : 'tired-pump';
+    case 'flow':
+    case 'pump-power':
+      return step < 0 ? 'tired-pump' : null;
+    case 'load':
+      return step > 0 ? 'open-door-habit' : null;
+    default:
+      return null;
+  }
+}
+
+const FIGURE_WORDS: Readonly<Record<string, string>> = {
+  leak: 'heat leak',
+  cop: 'ice made per kWh',
+  'machine-power': 'machine power at its rating',
+  coil: 'transfer units of the coil',
+  flow: 'melt-water flow',
+  'pump-power': 'pump power',
+  load: 'load per degree of heat outside',
+};
+
+const LOOK: Readonly<Record<Signature, string>> = {
+  'fouled-coil': 'Look at the filter and fins of the fan coil.',
+  'dirty-condenser': 'Look at the condenser: dust, leaves, a fan that stands, or air that comes round again.',
+  'low-refrigerant':
+    'Have a certified person look at the refrigerant charge and at oil traces on the joints.',
+  'wet-insulation': 'Look at lid, seals and insulation of the bank for water and gaps.',
+  'tired-pump': 'Look at strainer, air in the loop, water level and the pump.',
+  'lying-probe': 'Look at the probe in an ice bath, and whether it sits where it should.',
+  'open-door-habit': 'Look at doors, windows and vents in the evening, and whether more people are home.',
+};
+
+function findingOf(one: Named): DriftFinding {
+  const { series, change, signature } = one;
+  const amount = series.relative ? rounded((Math.exp(change.step) - 1) * 100, 1) : rounded(change.step, 2);
+  const unit = series.relative ? '%' : 'K';
+  const words = FIGURE_WORDS[series.name] ?? `${series.name.replace('probe ', '')} at the ice point`;
+  const size = `${Math.abs(amount).toFixed(unit === '%' ? 0 : 1)} ${unit}`;
+  const note = `${words} ${change.step > 0 ? 'up' : 'down'} ${size}`;
+  const when =
+    one.earliest === one.latest
+      ? `since ${one.since}`
+      : `since ${one.since} (${one.earliest} to ${one.latest})`;
+  const name = signature === null ? 'back towards normal, or repaired' : signature.replaceAll('-', ' ');
+  return {
+    signature,
+    figure: series.name,
+    since: one.since,
+    sinceEarliest: one.earliest,
+    sinceLatest: one.latest,
+    toldOn: one.toldOn,
+    change: amount,
+    unit,
+    confidence: rounded(change.confidence, 4),
+    note,
+    sentence: `${note.charAt(0).toUpperCase()}${note.slice(1)} ${when}, ${Math.floor(change.confidence * 1000) / 10} % sure: ${name}.`,
+    look: signature === null ? '' : LOOK[signature],
+  };
+}

@@ -1,0 +1,115 @@
+/**
+ * Sheets of many nights whose drift figures are told by a seed: level, weather, noise that follows itself from night to
+ * night, now and then a wild value, and, from one night on, a change.
+ */
+import { createRandom, type Random } from '../../src/numerics/random.ts';
+import type { NightSheet } from '../../src/reports/night.ts';
+import type { SeriesName } from '../../src/reports/drift-series.ts';
+import { DAY_MS } from '../../src/time.ts';
+import { toldSheet } from './juniper.ts';
+
+export interface FigureNoise {
+  /** Standard deviation of the logarithm from night to night (K for a probe), and correlation with the night before. */
+  readonly sd: number;
+  readonly rho: number;
+}
+
+export type Noises = Readonly<Partial<Record<SeriesName, FigureNoise>>>;
+
+export interface DriftStory {
+  readonly nights: number;
+  readonly seed: number;
+  readonly noise: Noises;
+  /** Change of the logarithm of a figure (K for a probe) from a night on. */
+  readonly change?: { readonly atNight: number; readonly by: Readonly<Partial<Record<SeriesName, number>>> };
+  readonly wildPart?: number;
+}
+
+const START_MS = Date.UTC(2026, 4, 20);
+/** How much of the weather the nights' own normalisation leaves in a figure, per kelvin; sign and size invented. */
+const WEATHER_LEFT = 0.004;
+
+let template: NightSheet | null = null;
+
+export function driftingSheets(story: DriftStory): NightSheet[] {
+  template ??= toldSheet({ stepMs: 900_000 });
+  const base = template;
+  const random = createRandom(story.seed);
+  const outdoor = outdoorSeries(random.fork('outdoor'), story.nights);
+  const figures = Object.entries(story.noise).flatMap(([name, noise]) =>
+    noise === undefined
+      ? []
+      : [
+          {
+            name: name as SeriesName,
+            values: noiseSeries(random.fork(name), story.nights, noise, story.wildPart ?? 0.02),
+          },
+        ],
+  );
+  return Array.from({ length: story.nights }, (_, night) => {
+    const weatherK = outdoor[night] - 24;
+    const of = (name: SeriesName): number | null => {
+      const figure = figures.find((one) => one.name === name);
+      if (!figure) return null;
+      const step = story.change && night >= story.change.atNight ? (story.change.by[name] ?? 0) : 0;
+      return figure.values[night] + step + (name.startsWith('probe ') ? 0 : WEATHER_LEFT * weatherK);
+    };
+    return sheetOf(base, night, outdoor[night], of);
+  });
+}
+
+function sheetOf(
+  base: NightSheet,
+  night: number,
+  outdoorC: number,
+  of: (name: SeriesName) => number | null,
+): NightSheet {
+  const scaled = (name: SeriesName, level: number): number | null => {
+    const log = of(name);
+    return log === null ? null : level * Math.exp(log);
+  };
+  const learned = (name: string, value: number | null, unit: string): NightSheet['learned'] =>
+    value === null ? [] : [{ name, value, sd: null, unit }];
+  return {
+    ...base,
+    night: { ...base.night, date: new Date(START_MS + night * DAY_MS).toISOString().slice(0, 10) },
+    weather: { outdoorMeanC: outdoorC, outdoorMaxC: outdoorC + 8, outdoorMinC: outdoorC - 7 },
+    conditions: {
+      ...base.conditions,
+      chargeOutdoorC: outdoorC - 5,
+      chargeInventoryPct: 55 + 3 * Math.sin(night),
+    },
+    figures: {
+      ...base.figures,
+      machinePowerAtRatingW: scaled('machine-power', 600),
+      coilNtu: scaled('coil', 0.22),
+      flowLPerMin: scaled('flow', 12),
+      pumpPowerW: scaled('pump-power', 45),
+      loadPerDegree: scaled('load', 0.08),
+      heatLeakWPerK: null,
+      copAtRating: null,
+    },
+    learned: [
+      ...learned('heat-leak', scaled('leak', 2), 'W/K'),
+      ...learned('charging-factor', scaled('cop', 1), ''),
+    ],
+    probes: base.probes.map((probe) => ({ ...probe, errorAtIcePointK: of(`probe ${probe.point}`) })),
+  };
+}
+
+function outdoorSeries(random: Random, nights: number): number[] {
+  let spell = 0;
+  return Array.from({ length: nights }, (_, night) => {
+    spell = 0.7 * spell + 2 * random.normal();
+    return 24 + 4 * Math.sin(((night - 20) / 365) * 2 * Math.PI) + spell;
+  });
+}
+
+function noiseSeries(random: Random, nights: number, { sd, rho }: FigureNoise, wildPart: number): number[] {
+  let value = random.normal();
+  return Array.from({ length: nights }, () => {
+    value = rho * value + Math.sqrt(1 - rho * rho) * random.normal();
+    const wild = random.next() < wildPart ? 4 * random.normal() : 0;
+    return sd * (value + wild);
+  });
+}
