@@ -4,7 +4,8 @@ import { describe, expect, it } from 'vitest';
 
 const ROOT = resolve(import.meta.dirname, '..');
 const SRC = join(ROOT, 'src');
-const EDGE = new Set(['main.ts', 'cli.ts', 'daemon.ts']);
+const EDGE_FILES = new Set(['main.ts', 'cli.ts']);
+const EDGE_FOLDERS = new Set(['daemon', 'verbs']);
 const PURE = [
   'numerics',
   'physics',
@@ -55,8 +56,8 @@ function files(folder: string): string[] {
 
 function roomOf(path: string): string {
   const [first, ...rest] = relative(SRC, path).split('/');
-  if (rest.length > 0) return first === 'verbs' ? 'edge' : first;
-  if (EDGE.has(first)) return 'edge';
+  if (rest.length > 0) return EDGE_FOLDERS.has(first) ? 'edge' : first;
+  if (EDGE_FILES.has(first)) return 'edge';
   return first.startsWith('cycle') ? 'cycle' : 'V';
 }
 

@@ -5,13 +5,10 @@
  */
 import type { Mode } from '../commands.ts';
 import type { SiteConfig } from '../config.ts';
-import { replan, replanDue, stagesOf, startState, tick, type Ticked } from '../cycle.ts';
 import { planRecordOf } from '../cycle-plan.ts';
-import type { CycleState, Moment, Outlook, Stages } from '../cycle-values.ts';
-import { alertsOf } from '../dispatch/alerts.ts';
+import type { CycleState, Moment, Stages } from '../cycle-values.ts';
+import { replan, replanDue, stagesOf, startState, tick, type Ticked } from '../cycle.ts';
 import { judgeClock, type ClockVerdict } from '../dispatch/clock.ts';
-import { freshMemory } from '../dispatch/limits.ts';
-import type { DispatchMemory } from '../dispatch/types.ts';
 import { RimeholdError, sentenceOf } from '../errors.ts';
 import { createEstimator } from '../estimation/estimator.ts';
 import type { IceEstimate } from '../estimation/types.ts';
@@ -19,11 +16,11 @@ import { createForecaster } from '../forecasting/forecaster.ts';
 import type { Message } from '../mqtt/intake.ts';
 import type { Reading } from '../points.ts';
 import type { CycleRecord, PlanRecord } from '../record.ts';
-import { parseDatedPrices, type DatedPrice } from '../tariff/dated.ts';
-import { demandSoFar, monthAt } from '../tariff/demand.ts';
-import { energyBySlot } from '../tariff/energy.ts';
 import { HOUR_MS, MINUTE_MS, nightAt, type Night } from '../time.ts';
+import { AlertBoard } from './alert-board.ts';
+import { Memory } from './memory.ts';
 import { nightsToClose, writeSheet, type NightEnd } from './nights.ts';
+import { OutlookSource } from './outlook.ts';
 import { Owner } from './owner.ts';
 import type { DaemonEvents, DaemonParts } from './ports.ts';
 import {
@@ -48,7 +45,9 @@ export class Daemon {
   readonly #parts: DaemonParts;
   readonly #events = new Set<DaemonEvents>();
   readonly #stops: (() => void)[] = [];
-  readonly #alerts = new Set<string>();
+  readonly #alerts = new AlertBoard();
+  readonly #memory: Memory;
+  readonly #outlook: OutlookSource;
   #config: SiteConfig;
   #stages: Stages;
   #state: CycleState;
@@ -62,24 +61,26 @@ export class Daemon {
   #pending: Reading[] = [];
   #rewindToMs = Number.POSITIVE_INFINITY;
   #checkpoints: Checkpoint[] = [];
-  #datedPrices: { heardMs: number; prices: readonly DatedPrice[] } | null = null;
   #last: Ticked | null = null;
   #lastPlan: PlanRecord | null = null;
   #lastUrgentMs = 0;
+  #closedBefore = '';
   #tonight: { date: string; warmKh: number } = { date: '', warmKh: 0 };
 
   constructor(parts: DaemonParts) {
     const { config, store, clock, seed } = parts;
     const nowMs = clock.nowMs();
     this.#parts = parts;
+    this.#memory = new Memory(store, parts.log);
+    this.#outlook = new OutlookSource(parts);
     this.owner = new Owner(config, store.loadMemory('owner'));
     this.#config = withLimit(config, this.owner.settings(nowMs).limitC);
     this.#stages = stagesOf(
       this.#config,
       createEstimator(this.#config, { seed, startMs: nowMs }),
-      createForecaster(this.#config, { seed, memory: this.#remembered('forecaster') }),
+      createForecaster(this.#config, { seed, memory: this.#memory.load('forecaster') }),
     );
-    this.#state = startState(nowMs, this.#rememberedDispatch(nowMs));
+    this.#state = startState(nowMs, this.#memory.dispatch(nowMs));
   }
 
   /** Takes up where the last life stood, then begins to look at the plant. */
@@ -176,7 +177,7 @@ export class Daemon {
 
   #replan(moment: Moment): void {
     const wanted = this.#wanted(moment.nowMs);
-    const planned = replan(this.#stages, this.#state, moment, wanted, this.#outlook(moment.nowMs));
+    const planned = replan(this.#stages, this.#state, moment, wanted, this.#outlook.at(moment.nowMs));
     this.#state = { ...this.#state, planned };
     if (planned.plan.note !== '') this.#parts.log.warn({ outcome: planned.plan.outcome }, planned.plan.note);
     this.#lastPlan = this.#parts.store.addPlan(planRecordOf(planned));
@@ -199,7 +200,13 @@ export class Daemon {
     const pointsHeard = Object.values(moment.live).filter((point) => point?.value != null).length;
     device.publishCycle(record, { pointsHeard, warmTonightKh: this.#tonight.warmKh });
     device.publishSettings(this.#settings(moment.nowMs));
-    this.#tellAlerts(moment, ticked);
+    this.#alerts.show(
+      this.#parts,
+      this.#config,
+      moment,
+      ticked,
+      this.#state.planned?.plan.expectedWarmKh ?? null,
+    );
     this.#checkpoint(moment.nowMs);
     this.#tell((events) => events.record?.(record));
   }
@@ -212,66 +219,6 @@ export class Daemon {
   #settings(nowMs: number) {
     const { wish, wishForMs, strategy, limitC } = this.owner.settings(nowMs);
     return { wish: wish.name, wishForMs, strategy, limitC };
-  }
-
-  #outlook(nowMs: number): Outlook {
-    const { intake, stopwatch } = this.#parts;
-    return {
-      outdoorForecast: intake.forecast()?.value ?? null,
-      datedPrices: this.#pricesHeard(),
-      demand: this.#demand(nowMs),
-      stopwatch,
-    };
-  }
-
-  #pricesHeard(): readonly DatedPrice[] {
-    const heard = this.#parts.intake.prices();
-    if (heard === null) return [];
-    if (this.#datedPrices?.heardMs === heard.heardMs) return this.#datedPrices.prices;
-    let prices: readonly DatedPrice[] = this.#datedPrices?.prices ?? [];
-    try {
-      prices = parseDatedPrices(heard.value, this.#config.site.currency);
-    } catch (error) {
-      this.#parts.log.warn({}, `${sentenceOf(error)} The prices before it stand.`);
-    }
-    this.#datedPrices = { heardMs: heard.heardMs, prices };
-    return prices;
-  }
-
-  /** The month's peak so far, where the contract charges for it. */
-  #demand(nowMs: number): Outlook['demand'] {
-    const { tariff } = this.#config.power;
-    if (!tariff?.demand) return null;
-    const month = monthAt(tariff.zone ?? this.#config.site.zone, nowMs);
-    const records = this.#parts.store.recordsBetween(month.startMs, nowMs);
-    return demandSoFar(this.#config, energyBySlot(records, tariff.demand.overMs), nowMs);
-  }
-
-  #tellAlerts(moment: Moment, ticked: Ticked): void {
-    const { store, actuators, device, log } = this.#parts;
-    const faults = actuators.faults(moment.live, moment.nowMs);
-    const alerts = alertsOf({
-      config: this.#config,
-      live: moment.live,
-      clock: this.#clock,
-      storeFault: store.health().fault?.message ?? null,
-      switchFaults: Object.fromEntries(faults.map(({ machine, sentence }) => [machine, sentence])),
-      setAside: ticked.estimate.probes.flatMap(({ point, setAside }) =>
-        setAside === null ? [] : [{ point, why: setAside }],
-      ),
-      spoken: ticked.spoken,
-      expectedWarmKh: this.#state.planned?.plan.expectedWarmKh ?? null,
-    });
-    for (const [id, sentence] of alerts) {
-      if (!this.#alerts.has(id)) log.warn({ alert: id }, sentence);
-      this.#alerts.add(id);
-      device.alert(id, sentence);
-    }
-    for (const id of this.#alerts) {
-      if (alerts.has(id)) continue;
-      this.#alerts.delete(id);
-      device.alert(id, null);
-    }
   }
 
   #countWarmth(record: CycleRecord): void {
@@ -295,7 +242,6 @@ export class Daemon {
       this.#closedBefore = date;
     });
   }
-  #closedBefore = '';
 
   #close(night: Night, nowMs: number): void {
     const estimate = this.#last?.estimate ?? null;
@@ -339,9 +285,9 @@ export class Daemon {
 
   #takeUp(): void {
     const { store, config, clock, seed } = this.#parts;
-    const stored = this.#remembered('estimator') as Partial<Checkpoint> | null;
-    if (stored === null || typeof stored.atMs !== 'number' || stored.atMs > clock.nowMs()) return;
-    const from: Checkpoint = { atMs: stored.atMs, memory: stored.memory };
+    this.#firstRecordMs = store.firstRecordMs();
+    const from = this.#memory.checkpoint(clock.nowMs());
+    if (from === null) return;
     this.#checkpoints = [from];
     this.#stages = { ...this.#stages, estimator: replay(config, store, from, clock.nowMs(), seed) };
     const last = store.latestRecord();
@@ -374,13 +320,11 @@ export class Daemon {
   }
 
   #saveMemory(): void {
-    const { store, clock } = this.#parts;
-    store.saveMemory(
-      'estimator',
-      JSON.stringify({ atMs: this.#state.lastMs ?? clock.nowMs(), memory: this.#stages.estimator.memory() }),
-    );
-    store.saveMemory('forecaster', JSON.stringify(this.#stages.forecaster.memory()));
-    store.saveMemory('dispatch', JSON.stringify(this.#state.dispatch));
+    const { estimator, forecaster } = this.#stages;
+    const atMs = this.#state.lastMs ?? this.#parts.clock.nowMs();
+    this.#memory.save('estimator', { atMs, memory: estimator.memory() });
+    this.#memory.save('forecaster', forecaster.memory());
+    this.#memory.save('dispatch', this.#state.dispatch);
     this.saveOwner();
   }
 
@@ -395,26 +339,6 @@ export class Daemon {
     if (fault !== null && before?.code !== fault.code) log.error({ code: fault.code }, fault.message);
     if (fault === null && before !== null)
       log.info({}, 'The database takes data again; what waited in memory is written.');
-  }
-
-  #remembered(name: string): unknown {
-    const text = this.#parts.store.loadMemory(name);
-    if (text === null) return null;
-    try {
-      return JSON.parse(text) as unknown;
-    } catch {
-      this.#parts.log.warn(
-        { name },
-        `What was learned (${name}) is damaged in the store; it is learned anew.`,
-      );
-      return null;
-    }
-  }
-
-  /** Latches outlive a restart; the compressor counts as just stopped, whatever it did before. */
-  #rememberedDispatch(nowMs: number): DispatchMemory {
-    const stored = this.#remembered('dispatch') as Partial<DispatchMemory> | null;
-    return { ...freshMemory(nowMs), ...stored, chillerOn: false, chillerSinceMs: nowMs, pumpOnSinceMs: null };
   }
 
   #tell(call: (events: DaemonEvents) => void): void {

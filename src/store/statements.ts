@@ -16,6 +16,7 @@ const columns = ['atMs', ...RECORD_COLUMNS.keys()].map((name) => `"${name}"`).jo
 export class Statements implements RecordTable {
   readonly plans: Database.Statement;
   readonly lastPlan: Database.Statement;
+  readonly firstRecordMs: Database.Statement;
   readonly lastRecordMs: Database.Statement;
   readonly memory: Database.Statement;
   readonly sheet: Database.Statement;
@@ -44,6 +45,7 @@ export class Statements implements RecordTable {
       .prepare(`SELECT ${columns} FROM cycles WHERE atMs > ? AND atMs <= ? ORDER BY atMs`)
       .raw();
     this.#dropRecords = db.prepare('DELETE FROM cycles WHERE atMs > ? AND atMs <= ?');
+    this.firstRecordMs = db.prepare('SELECT min(atMs) FROM cycles').pluck();
     this.lastRecordMs = db.prepare('SELECT max(atMs) FROM cycles').pluck();
     this.#putPlan = db.prepare('INSERT OR REPLACE INTO plans VALUES (?, ?)');
     this.plans = db

@@ -171,6 +171,13 @@ export class Store {
     });
   }
 
+  /** Time of the first record there is; null before it. */
+  firstRecordMs(): number | null {
+    return this.#read(
+      () => (this.#sql.firstRecordMs.get() as number | null) ?? this.#waiting.records[0]?.atMs ?? null,
+    );
+  }
+
   latestRecord(): CycleRecord | null {
     return this.#read(() => {
       const last = this.#sql.lastRecordMs.get() as number | null;

@@ -21,6 +21,7 @@ export interface DirectLoopOptions {
   readonly startMs: number;
   readonly seed?: number;
   readonly wanted?: Wanted;
+  readonly onReadings?: (readings: readonly Reading[]) => void;
   /** Called with the time that each plan took, real milliseconds. */
   readonly onPlan?: (plan: PlanRecord, tookMs: number) => void;
 }
@@ -74,7 +75,9 @@ export class DirectLoop {
     const on = this.state.order?.switches ?? { chiller: false, pump: false, fan: false };
     for (const { topic, payload } of this.#wire.messages(simulator.advance(this.#nowMs), on)) {
       const message = { topic, payload: Buffer.from(payload), retained: false };
-      this.#pending.push(...this.#intake.hear(message, this.#nowMs).readings);
+      const { readings } = this.#intake.hear(message, this.#nowMs);
+      this.#options.onReadings?.(readings);
+      this.#pending.push(...readings);
     }
   }
 

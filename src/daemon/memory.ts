@@ -1,0 +1,44 @@
+/** What outlives a restart, as JSON in the store by name. A damaged memory is said and learned anew. */
+import { freshMemory } from '../dispatch/limits.ts';
+import type { DispatchMemory } from '../dispatch/types.ts';
+import type { Store } from '../store/store.ts';
+import type { Log } from './ports.ts';
+import type { Checkpoint } from './rewind.ts';
+
+export class Memory {
+  readonly #store: Store;
+  readonly #log: Log;
+
+  constructor(store: Store, log: Log) {
+    this.#store = store;
+    this.#log = log;
+  }
+
+  load(name: 'estimator' | 'forecaster' | 'dispatch'): unknown {
+    const text = this.#store.loadMemory(name);
+    if (text === null) return null;
+    try {
+      return JSON.parse(text) as unknown;
+    } catch {
+      this.#log.warn({ name }, `What was learned (${name}) is damaged in the store; it is learned anew.`);
+      return null;
+    }
+  }
+
+  save(name: 'estimator' | 'forecaster' | 'dispatch', value: unknown): void {
+    this.#store.saveMemory(name, JSON.stringify(value));
+  }
+
+  /** Latches outlive a restart; the compressor counts as just stopped, whatever it did before. */
+  dispatch(nowMs: number): DispatchMemory {
+    const stored = this.load('dispatch') as Partial<DispatchMemory> | null;
+    return { ...freshMemory(nowMs), ...stored, chillerOn: false, chillerSinceMs: nowMs, pumpOnSinceMs: null };
+  }
+
+  /** The estimator's last checkpoint, or null when there is none before `nowMs`. */
+  checkpoint(nowMs: number): Checkpoint | null {
+    const stored = this.load('estimator') as Partial<Checkpoint> | null;
+    if (stored === null || typeof stored.atMs !== 'number' || !(stored.atMs <= nowMs)) return null;
+    return { atMs: stored.atMs, memory: stored.memory };
+  }
+}
