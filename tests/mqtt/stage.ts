@@ -8,7 +8,7 @@ import type { Settings } from '../../src/mqtt/homie-values.ts';
 import type { Message } from '../../src/mqtt/intake.ts';
 import type { BrokerOptions, LinkState } from '../../src/mqtt/link.ts';
 import { freePort, startMosquitto, type Mosquitto, type MosquittoOptions } from './mosquitto.ts';
-import { observe, type Observer } from './observer.ts';
+import { observe, until, type Observer } from './observer.ts';
 import { cycleRecord, NOW_MS, planRecord, pretendCleared, siteConfig } from './site.ts';
 
 export const ROOT = 'homie/5/juniper';
@@ -154,6 +154,9 @@ export function oneCycle(device: HomieDevice): void {
   device.publishOrder(pretendCleared());
   device.publishCycle(cycleRecord(), { pointsHeard: 4, warmTonightKh: 0 });
 }
+
+export const stateOf = (seen: Observer): string | undefined => seen.latest(`${ROOT}/$state`)?.text;
+export const untilReady = (seen: Observer): Promise<void> => until('ready', () => stateOf(seen) === 'ready');
 
 /** A test with a stage of its own. */
 export const test = plain.extend<{ stage: Stage }>({
