@@ -40,7 +40,7 @@ export const pointSection = section('Where a point is heard and how its payload 
     'max-age',
     duration('PT5S', 'P7D'),
     'PT10M',
-    'Age from which the last value is stale and no longer used.',
+    'Age from which the last value is stale and no longer used; days for a contact that speaks only when it changes.',
   ),
   offsetK: key(
     'offset',

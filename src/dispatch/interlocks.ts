@@ -44,6 +44,7 @@ export const INTERLOCKS: readonly Interlock[] = [
     stops: ['chiller'],
     speaks: (view, _limits, memory) => {
       if (isTrue(view, 'high-pressure-trip')) return "The ice machine's high-pressure cut-out has tripped.";
+      if (isSilent(view, 'high-pressure-trip')) return silent('The high-pressure contact', 'no ice is made');
       return memory.trippedUntilMs !== null && view.nowMs < memory.trippedUntilMs
         ? 'The ice machine rests after its high-pressure cut-out tripped.'
         : null;
@@ -90,8 +91,13 @@ export const INTERLOCKS: readonly Interlock[] = [
   {
     id: 'drip tray wet',
     stops: DELIVERY,
-    speaks: (view) =>
-      isTrue(view, 'drip-tray-wet') ? 'There is water in the drip tray: clear the condensate drain.' : null,
+    speaks: (view) => {
+      if (isTrue(view, 'drip-tray-wet'))
+        return 'There is water in the drip tray: clear the condensate drain.';
+      return isSilent(view, 'drip-tray-wet')
+        ? silent('The drip tray contact', 'no water is sent to the coil')
+        : null;
+    },
   },
   {
     id: 'battery floor',
@@ -131,6 +137,15 @@ function isTrue(
 ): boolean {
   return valueOf(view.live, point) === 1;
 }
+
+/** A contact that the plant has, but that is not heard: it cannot be taken for a contact that says no. */
+function isSilent(view: PlantView, point: 'high-pressure-trip' | 'drip-tray-wet'): boolean {
+  const heard = view.live[point];
+  return heard !== undefined && heard.value === null && heard.reason !== 'not-configured';
+}
+
+const silent = (what: string, so: string): string =>
+  `${what} is not heard, so ${so}; if it speaks only when it changes, give it a longer max-age.`;
 
 /** What this cycle's points change in the memory, before anything is decided. Rows with a latch have it here. */
 export function observe(memory: DispatchMemory, view: PlantView, limits: Limits): DispatchMemory {

@@ -6,7 +6,8 @@
  * - A reading with the same time and value as one heard before is a duplicate and is dropped.
  * - A reading older than the latest is delivered onward with its own time; the latest value is not moved back.
  * - A retained message that does not tell its own time has an unknown age: it is shown, but is no reading and is not
- *   fresh. One that does is placed at its time, so its age decides.
+ *   fresh. One that does is placed at its time, so its age decides. A truth is a state, not a measurement: what the
+ *   broker keeps of a contact that speaks only when it changes holds now.
  * - A reading more than a minute ahead of our clock counts as measured when it arrived, and raises doubt in the clock.
  */
 import { RimeholdError } from '../errors.ts';
@@ -266,7 +267,7 @@ function accept(
     }
     return;
   }
-  if (retained && !decoded.ownTime) {
+  if (retained && !decoded.ownTime && state.point.spec.kind !== 'boolean') {
     drop(state, 'retained-undated');
     state.undated = { value: decoded.value, heardMs: arrivalMs };
     return;

@@ -191,6 +191,8 @@ const TABLE: [name: string, Case, expected: Record<Command, [Command, string]>][
   ],
   ['tray wet', { points: { 'drip-tray-wet': 1 } }, deliveryStopped('drip tray wet')],
   ['trip', { points: { 'high-pressure-trip': 1 } }, chillerStopped('high-pressure trip')],
+  ['trip contact silent', { points: { 'high-pressure-trip': null } }, chillerStopped('high-pressure trip')],
+  ['tray contact silent', { points: { 'drip-tray-wet': null } }, deliveryStopped('drip tray wet')],
   ['rest after trip', { memory: { trippedUntilMs: NOW + MINUTE } }, chillerStopped('high-pressure trip')],
   ['clock doubtful, machine off', { view: { clock: 'doubtful' } }, chillerStopped('clock doubtful')],
   [
