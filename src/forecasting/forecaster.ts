@@ -5,10 +5,10 @@
 import type { SiteConfig } from '../config.ts';
 import { createRandom } from '../numerics/random.ts';
 import { HOUR_MS } from '../time.ts';
-import { BIN_DAYS } from './bins.ts';
 import { blendAt, blended, hubByLead, type Blend } from './blend.ts';
+import { Book } from './book.ts';
 import { ensembleQuantile } from './ensemble.ts';
-import { HourBook, HourGatherer, type Observed } from './hours.ts';
+import { HourGatherer, type Observed } from './hours.ts';
 import { issueOf, keepIssue, type Issue } from './issues.ts';
 import { knowsSentence } from './knows.ts';
 import { packMemory, unpackMemory } from './memory.ts';
@@ -59,8 +59,7 @@ export function createForecaster(
 ): Forecaster {
   const remembered = unpackMemory(options.memory);
   const gatherer = new HourGatherer(config);
-  const book = new HourBook(BIN_DAYS * 24);
-  for (const line of remembered?.lines ?? []) book.add(line);
+  let book = new Book(config, remembered?.lines ?? []);
   const weather = createOwnWeather(config);
   const plant = loadPlantOf(config);
   const cabin = createOwnCabin(config, remembered?.cabin ?? null);
@@ -71,7 +70,7 @@ export function createForecaster(
     observe(record) {
       if (record.clock === 'doubtful') return;
       for (const line of gatherer.add(record)) {
-        book.add(line);
+        book = book.with(line);
         cabin.update(book);
       }
       seen = { atMs: record.atMs, outdoorC: record.outdoorC, roomC: record.roomC };
@@ -82,7 +81,7 @@ export function createForecaster(
       const leads = leadsFor(grid, lastHour);
       const ahead = weather.predict(book, lastHour, leads);
       const hubC = external ? hubByLead(external, lastHour, leads) : null;
-      const past = lookBack(config, book, issues, lastHour, leads, cabin.track(book).unexplainedW);
+      const past = lookBack(book, issues, lastHour, leads, cabin.track(book).unexplainedW);
       issues = keepIssue(issues, issueOf(lastHour, ahead, hubC));
       const frame = scenarioFrame(config, plant, book, cabin, grid, lastHour, seen, nowMs);
       const scenarios = drawScenarios(config, options.seed, frame, ahead, hubC, past);
@@ -100,7 +99,7 @@ export function createForecaster(
         ),
       };
     },
-    memory: () => packMemory(book.all, issues, cabin.memory),
+    memory: () => packMemory(book.lines, issues, cabin.memory),
   };
 }
 

@@ -2,11 +2,9 @@
 import type { SiteConfig } from '../config.ts';
 import { cabinOfConfig, type CabinParameters } from './cabin.ts';
 import { fitCabin } from './cabin-fit.ts';
-import { trackCabin, type CabinHour, type CabinTrack } from './cabin-track.ts';
+import { trackCabin, type CabinTrack } from './cabin-track.ts';
 import { hourOfDay } from './bins.ts';
-import type { HourBook } from './hours.ts';
-import { clearnessOf } from './sky.ts';
-import { USUAL_CLEARNESS } from './design-weather.ts';
+import type { Book } from './book.ts';
 
 /** Hours between two fits and the weeks that they rest on (one to two suffice: Braun & Chaturvedi 2002). */
 const FIT_EVERY_HOURS = 12;
@@ -23,23 +21,25 @@ export interface CabinMemory {
 
 export interface OwnCabin {
   /** Refits when it is time. */
-  update(book: HourBook): void;
+  update(book: Book): void;
   readonly memory: CabinMemory | null;
   readonly parameters: CabinParameters;
   /** The book run through the cabin as it is known now. */
-  track(book: HourBook): CabinTrack;
+  track(book: Book): CabinTrack;
 }
 
 export function createOwnCabin(config: SiteConfig, remembered: CabinMemory | null): OwnCabin {
   const prior = cabinOfConfig(config);
   let memory = remembered;
+  let tracked: { readonly book: Book; readonly track: CabinTrack } | null = null;
   return {
     update(book) {
       const hour = book.last?.hour ?? 0;
       if (hour % FIT_EVERY_HOURS !== 0 || memory?.fittedHour === hour) return;
-      const hours = cabinHours(config, book).slice(-FIT_HOURS);
+      const hours = book.cabinHours.slice(-FIT_HOURS);
       if (hours.filter((line) => line.roomC !== null && line.outdoorC !== null).length < LEAST_HOURS) return;
       memory = { fittedHour: hour, ...fitCabin(prior, hours) };
+      tracked = null;
     },
     get memory() {
       return memory;
@@ -47,44 +47,14 @@ export function createOwnCabin(config: SiteConfig, remembered: CabinMemory | nul
     get parameters() {
       return memory?.parameters ?? prior;
     },
-    track: (book) => trackCabin(memory?.parameters ?? prior, cabinHours(config, book)),
+    track(book) {
+      if (tracked?.book !== book) {
+        tracked = { book, track: trackCabin(memory?.parameters ?? prior, book.cabinHours) };
+      }
+      return tracked.track;
+    },
   };
 }
-
-/** What moved the cabin, hour by hour without gaps in the count of hours. */
-export function cabinHours(config: SiteConfig, book: HourBook): CabinHour[] {
-  const lines = book.all;
-  if (lines.length === 0) return [];
-  const clearness = clearnessOf(config, lines);
-  const first = lines[0].hour;
-  const hours: CabinHour[] = Array.from({ length: lines[lines.length - 1].hour - first + 1 }, (_, i) =>
-    missing(first + i),
-  );
-  let lastClearness = USUAL_CLEARNESS;
-  for (const [i, line] of lines.entries()) {
-    lastClearness = clearness[i] ?? lastClearness;
-    hours[line.hour - first] = {
-      hour: line.hour,
-      outdoorC: line.outdoorC,
-      sunWPerM2: line.clearWPerM2 * (clearness[i] ?? lastClearness),
-      roomC: line.roomC,
-      roomEndC: line.roomEndC,
-      machineHeatW: line.machineHeatW,
-      home: line.home,
-    };
-  }
-  return hours;
-}
-
-const missing = (hour: number): CabinHour => ({
-  hour,
-  outdoorC: null,
-  sunWPerM2: 0,
-  roomC: null,
-  roomEndC: null,
-  machineHeatW: null,
-  home: 0,
-});
 
 /** Fading of what was unexplained lately: of its daily mean, h, and of the last hours, per hour. */
 const DAY_FADE_HOURS = 72;

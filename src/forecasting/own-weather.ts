@@ -1,10 +1,10 @@
 /** Weather from the site's own history: outdoor temperature, dew point and clearness for the hours ahead. */
 import type { SiteConfig } from '../config.ts';
 import { fitAnomaly, predictAnomaly, type AnomalyModel } from './anomaly.ts';
-import { BIN_DAYS, type HourSeries } from './bins.ts';
+import type { HourSeries } from './bins.ts';
+import type { Book, WeatherSeries } from './book.ts';
 import { designBinsC, seasonK, USUAL_CLEARNESS } from './design-weather.ts';
-import type { HourBook } from './hours.ts';
-import { MOST_CLEARNESS, clearnessOf } from './sky.ts';
+import { MOST_CLEARNESS } from './sky.ts';
 
 /** One value for each hour of lead, from 1: the hour after the last whole one. */
 export interface HoursAhead {
@@ -15,7 +15,7 @@ export interface HoursAhead {
 
 export interface OwnWeather {
   /** For leads 1 … `leads` after `lastHour`, the last whole hour. */
-  predict(book: HourBook, lastHour: number, leads: number): HoursAhead;
+  predict(book: Book, lastHour: number, leads: number): HoursAhead;
 }
 
 /** Hours between two trainings; the offset itself is always today's. */
@@ -29,44 +29,6 @@ interface Trained {
   readonly clearness: AnomalyModel;
 }
 
-export interface WeatherSeries {
-  readonly outdoorC: HourSeries;
-  readonly dewC: HourSeries;
-  readonly clearness: HourSeries;
-}
-
-/** The last weeks of the book as hourly series. The first hour's gaps are null. */
-export function weatherSeries(config: SiteConfig, book: HourBook, toHour: number): WeatherSeries {
-  const firstHour = Math.max(book.all[0]?.hour ?? toHour, toHour - BIN_DAYS * 24 + 1);
-  const of = (values: (number | null)[]): HourSeries => ({ firstHour, values });
-  const outdoorC = book.series(firstHour, toHour, (line) => line.outdoorC);
-  return {
-    outdoorC: of(outdoorC),
-    dewC: of(
-      dewSeries(
-        book.series(firstHour, toHour, (line) => line.dewC),
-        outdoorC,
-      ),
-    ),
-    clearness: of(clearnessSeries(config, book, firstHour, toHour)),
-  };
-}
-
-/** Without a hygrometer the dew point stands at the day's lowest temperature (Allen et al. 1998, FAO-56, eq. 48). */
-function dewSeries(measured: (number | null)[], outdoorC: readonly (number | null)[]): (number | null)[] {
-  if (measured.filter((value) => value !== null).length >= Math.min(24, measured.length / 2)) return measured;
-  return outdoorC.map((_, i) => {
-    const day = outdoorC.slice(Math.max(0, i - 23), i + 1).filter((value) => value !== null);
-    return day.length > 0 ? Math.min(...day) : null;
-  });
-}
-
-function clearnessSeries(config: SiteConfig, book: HourBook, from: number, to: number): (number | null)[] {
-  const values = clearnessOf(config, book.all);
-  const byHour = new Map(book.all.map((line, i) => [line.hour, values[i]]));
-  return Array.from({ length: to - from + 1 }, (_, i) => byHour.get(from + i) ?? null);
-}
-
 export function createOwnWeather(config: SiteConfig): OwnWeather {
   let trained: Trained | null = null;
   return {
@@ -75,15 +37,15 @@ export function createOwnWeather(config: SiteConfig): OwnWeather {
       if (!trained || trained.atHour !== atHour || trained.leads < leads) {
         trained = train(config, book, atHour, leads);
       }
-      return predictFrom(config, trained, weatherSeries(config, book, lastHour), lastHour);
+      return predictFrom(config, trained, book.weatherTo(lastHour), lastHour);
     },
   };
 }
 
 const flat = (value: number): number[] => Array.from({ length: 24 }, () => value);
 
-function train(config: SiteConfig, book: HourBook, atHour: number, leads: number): Trained {
-  const { outdoorC, dewC, clearness } = seasonless(config, weatherSeries(config, book, atHour));
+function train(config: SiteConfig, book: Book, atHour: number, leads: number): Trained {
+  const { outdoorC, dewC, clearness } = seasonless(config, book.weatherTo(atHour));
   const prior = designBinsC(config);
   return {
     atHour,

@@ -1,10 +1,8 @@
 /** What came of the forecasts issued so far: how to blend, and how wrong they turned out. */
-import type { SiteConfig } from '../config.ts';
 import { blended, learnBlends, type Blend } from './blend.ts';
-import type { HourBook } from './hours.ts';
+import type { Book } from './book.ts';
 import type { Issue } from './issues.ts';
 import { unexplainedAhead } from './own-cabin.ts';
-import { weatherSeries } from './own-weather.ts';
 import type { Happened } from './trajectories.ts';
 
 export interface Past {
@@ -17,16 +15,15 @@ export interface Past {
 
 /** Looks back from `lastHour`. `unexplainedW` begins at the first hour of the book. */
 export function lookBack(
-  config: SiteConfig,
-  book: HourBook,
+  book: Book,
   issues: readonly Issue[],
   lastHour: number,
   leads: number,
   unexplainedW: readonly (number | null)[],
 ): Past {
-  const series = weatherSeries(config, book, lastHour);
+  const series = book.weatherTo(lastHour);
   const first = series.outdoorC.firstHour;
-  const trackFirst = book.all[0]?.hour ?? lastHour;
+  const trackFirst = book.last ? book.firstHour : lastHour;
   const outdoorC = (hour: number): number | null => series.outdoorC.values[hour - first] ?? null;
   const blends = learnBlends(issues, outdoorC, leads);
   const expected = new Map<number, Float64Array>();

@@ -6,13 +6,13 @@ import { restingFabricC } from './cabin.ts';
 import { coilOf, type Coil } from './coil.ts';
 import { dryAirOf, type DryAir } from './dry-air.ts';
 import type { HourLine } from './hour-line.ts';
-import type { HourBook } from './hours.ts';
+import type { Book } from './book.ts';
 import { holdLimit, warmKhPerKwh, type LoadFrame, type RoomState } from './load.ts';
 import type { OwnCabin } from './own-cabin.ts';
 import { gainAt } from './own-cabin.ts';
 import type { HoursAhead } from './own-weather.ts';
 import { saturationAt, type Saturation } from './saturation.ts';
-import { clearSkyOf, MOST_CLEARNESS, panelScale } from './sky.ts';
+import { clearSkyOf, MOST_CLEARNESS } from './sky.ts';
 import { onSlots, slotLimits, slotMiddleMs, type SlotGrid } from './slots.ts';
 import type { Trajectory } from './trajectories.ts';
 import { latentScale } from './latent.ts';
@@ -81,7 +81,7 @@ const USUAL_RATIO = 0.0095;
 export function scenarioFrame(
   config: SiteConfig,
   plant: LoadPlant,
-  book: HourBook,
+  book: Book,
   cabin: OwnCabin,
   grid: SlotGrid,
   lastHour: number,
@@ -96,7 +96,7 @@ export function scenarioFrame(
   const fabricC =
     (last ? cabin.track(book).fabricC : null) ?? restingFabricC(p, airC, last?.outdoorC ?? airC, 0);
   const { coil, dryAir } = plant;
-  const scale = panelScale(config, book.all);
+  const scale = book.panelScale;
   const sky = Array.from({ length: grid.count }, (_, i) =>
     clearSkyOf(config, slotMiddleMs(grid, i) / HOUR_MS - 0.5),
   );
@@ -122,7 +122,7 @@ export function scenarioFrame(
       gainsW: Float64Array.from({ length: grid.count }, (_, i) => gainAt(p, slotMiddleMs(grid, i) / HOUR_MS)),
       floorM2: config.cabin.floorM2,
       people: config.cabin.occupants,
-      latentScale: latentScale(coil, book.all),
+      latentScale: latentScale(coil, book.lines),
     },
   };
 }
