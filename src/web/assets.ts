@@ -8,6 +8,8 @@ export interface Asset {
   readonly body: Buffer<ArrayBuffer>;
   readonly type: string;
   readonly etag: string;
+  /** Link header, for the page itself. */
+  readonly link: string | null;
 }
 
 const TYPES: Readonly<Record<string, string>> = {
@@ -38,19 +40,30 @@ export function readAssets(pageDir: string): ReadonlyMap<string, Asset> {
   }
   for (const name of SHARED) assets.set(`/${name}`, readAsset(join(pageDir, '..', '..', name)));
   const index = assets.get('/web/page/index.html');
-  if (index) assets.set('/', index);
+  if (index) assets.set('/', { ...index, link: preloads(assets) });
   return assets;
 }
 
 function readAsset(file: string): Asset {
   const body = readFileSync(file);
   const etag = `"${createHash('sha256').update(body).digest('base64url').slice(0, 22)}"`;
-  return { body, type: TYPES[extname(file)], etag };
+  return { body, type: TYPES[extname(file)], etag, link: null };
+}
+
+/** Names every script of the page ahead (RFC 8288), so that a phone fetches them at once and not one behind another. */
+function preloads(assets: ReadonlyMap<string, Asset>): string {
+  const scripts = [...assets.keys()].filter((path) => path.endsWith('.js'));
+  return scripts.map((path) => `<${path}>; rel=modulepreload`).join(', ');
 }
 
 /** Answers with the file, or with 304 when the browser has it already. */
 export function assetResponse(asset: Asset, ifNoneMatch: string | undefined): Response {
-  const headers = { 'content-type': asset.type, etag: asset.etag, 'cache-control': 'no-cache' };
+  const headers = {
+    'content-type': asset.type,
+    etag: asset.etag,
+    'cache-control': 'no-cache',
+    ...(asset.link === null ? {} : { link: asset.link }),
+  };
   // Compressing a file on its way makes its tag a weak one.
   return ifNoneMatch?.replace(/^W\//, '') === asset.etag
     ? new Response(null, { status: 304, headers })

@@ -4,7 +4,8 @@ import { hasChromium } from './chromium.ts';
 import { VIEWS, useWindow } from './window.ts';
 
 async function faults(view: string, axe: AxeBuilder): Promise<string[]> {
-  const { violations } = await axe.analyze();
+  // One frame at a time: the sheet's frame runs no scripts, so axe could not look into it anyway.
+  const { violations } = await axe.setLegacyMode(true).analyze();
   return violations.map(({ id, nodes }) => `${view} ${id}: ${nodes.map(({ html }) => html).join(' ')}`);
 }
 
@@ -22,7 +23,9 @@ describe.skipIf(!hasChromium)('the page for everybody: eyes, ears, keyboards, sm
       expect(await faults(view, new AxeBuilder({ page: at.page }).withRules(['color-contrast']))).toEqual([]);
     }
     await at.page.emulateMedia({ colorScheme: null });
-  }, 60_000);
+    // axe tries to look into the sheet's frame, which lets no script in; the browser says so.
+    at.complaints = at.complaints.filter((line) => !line.startsWith('Blocked script execution'));
+  }, 120_000);
 
   it('fits 320 px without rolling sideways, on any sheet', async () => {
     await at.open('plant', 320, 640);

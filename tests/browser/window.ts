@@ -44,7 +44,7 @@ export function useWindow(): Window {
   let port = 0;
   let loads = 0;
 
-  const window: Window = {
+  const at: Window = {
     get page() {
       return page;
     },
@@ -75,9 +75,9 @@ export function useWindow(): Window {
     built = buildPage();
     browser = await launchChromium();
     page = await (await browser.newContext()).newPage();
-    page.on('pageerror', (error) => window.complaints.push(error.message));
+    page.on('pageerror', (error) => at.complaints.push(error.message));
     page.on('console', (message) => {
-      if (message.type() === 'error') window.complaints.push(message.text());
+      if (message.type() === 'error') at.complaints.push(message.text());
     });
   }, 60_000);
   afterAll(async () => {
@@ -86,15 +86,15 @@ export function useWindow(): Window {
   });
   beforeEach(async () => {
     source = createFakeSource();
-    window.complaints = [];
-    await window.serve(PASSPHRASE);
+    at.complaints = [];
+    await at.serve(PASSPHRASE);
   });
   afterEach(async () => {
     await page.context().clearCookies();
-    await page.evaluate(() => localStorage.clear());
+    await page.evaluate(() => window.localStorage.clear());
     await page.goto('about:blank');
     await server.stop();
-    expect(window.complaints).toEqual([]);
+    expect(at.complaints).toEqual([]);
   });
-  return window;
+  return at;
 }
