@@ -3,7 +3,7 @@
  * and how slowly it may drift. Gains are natural logarithms of factors on the site file's figures.
  */
 import type { PointName } from '../points.ts';
-import type { BankModel } from '../plant/bank.ts';
+import { GROWTH, type BankModel } from '../plant/bank.ts';
 
 export const X = {
   /** Ice as a fraction of the most the bank may hold. */
@@ -27,25 +27,27 @@ export const X = {
   freeze: 12,
   thickening: 13,
   freezeNow: 14,
-  leak: 15,
-  flow: 16,
-  coil: 17,
+  /** Logarithm of a full bank's ice section over the tube's: how the ice's resistance bends. */
+  growth: 15,
+  leak: 16,
+  flow: 17,
+  coil: 18,
   /** Half of the coolant's rise through the coil, for each watt, relative to its guess. */
-  span: 18,
-  power: 19,
-  powerIce: 20,
-  enteringOffset: 21,
+  span: 19,
+  power: 20,
+  powerIce: 21,
+  enteringOffset: 22,
   /** From here on nothing moves the bank: what instruments add. */
-  levelZero: 22,
-  leavingOffset: 23,
-  topOffset: 24,
-  middleOffset: 25,
-  bottomOffset: 26,
-  supplyOffset: 27,
-  returnOffset: 28,
+  levelZero: 23,
+  leavingOffset: 24,
+  topOffset: 25,
+  middleOffset: 26,
+  bottomOffset: 27,
+  supplyOffset: 28,
+  returnOffset: 29,
 } as const;
 
-export const STATES = 29;
+export const STATES = 30;
 /** The layers of water, from where it enters to where it leaves. */
 export const LAYERS = [X.top, X.upper, X.lower, X.out] as const;
 /** States before this one drive the process; the others only show in readings. */
@@ -101,6 +103,7 @@ function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [n
     freeze: [0, 0.3, SLOW_S],
     thickening: [Math.log(bank.guess.freezeThickening), 0.6, SLOW_S],
     freezeNow: [0, 0.12, HOURS_S],
+    growth: [Math.log(GROWTH), 1.2, SLOW_S],
     leak: [0, 0.25, 30 * DAY_S],
     flow: [0, 0.12, SLOW_S],
     coil: [0, 0.25, SLOW_S],

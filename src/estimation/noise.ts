@@ -13,15 +13,17 @@ export interface Alike {
 }
 
 export const NOISE = {
-  waterFlowing: { fresh: 0.05, alike: 0.12, lastsS: 400 },
+  waterFlowing: { fresh: 0.05, alike: 0.15, lastsS: 1500 },
+  /** Coolant from an internal-melt coil, which has next to no mass of its own. */
+  coilFlowing: { fresh: 0.05, alike: 0.12, lastsS: 400 },
   waterResting: { fresh: 0.05, alike: 0.25, lastsS: 3600 },
   /** Water without ice, above and below the density maximum, and a warm reading where ice is believed. */
   waterWarm: { fresh: 0.06, alike: 0.25, lastsS: 1800 },
   waterLayered: { fresh: 0.1, alike: 0.7, lastsS: 1800 },
   waterOdd: { fresh: 0.3, alike: 1.5, lastsS: 1800 },
-  coolant: { fresh: 0.15, alike: 0.35, lastsS: 1800 },
+  coolant: { fresh: 0.15, alike: 0.5, lastsS: 3600 },
   /** Logarithm of power. */
-  power: { fresh: 0.01, alike: 0.03, lastsS: 3600 },
+  power: { fresh: 0.01, alike: 0.05, lastsS: 3600 },
   /** mm. */
   level: { fresh: 1, alike: 2, lastsS: 3600 },
   /** Inventory as a fraction, at an anchor. */
@@ -33,18 +35,22 @@ export function varianceOf({ fresh, alike, lastsS }: Alike, dtS: number): number
 }
 
 /** Part of every heat flow that is uncertain beyond its learned gain, and how long such an error lasts. */
-const HEAT_PART = 0.04;
-const HEAT_LASTS_S = 3600;
+const HEAT_PART = 0.05;
+const HEAT_LASTS_S = 5400;
 /** Wandering of the ice for reasons not modelled, part of a full bank in a square-root hour. */
 const ICE_WANDER = 0.002;
-/** Wandering of the water, K in a square-root minute, flowing and at rest. */
-const WATER_WANDER_K = { flowing: 0.06, resting: 0.015 };
+/**
+ * Wandering of the water, K in a square-root minute. At rest beside ice it stands some tenths above 0 °C by ways of its
+ * own, which must not be taken for news of the leak.
+ */
+const WATER_WANDER_K = { flowing: 0.06, onIce: 0.05, resting: 0.012 };
 
 /** Fills the noise variances of a step. `unknown` is power that may or may not have been at work, W. */
 export function processNoise(
   models: PlantModels,
   flows: Flows,
   flowing: number,
+  iced: boolean,
   unknownW: number,
   dtS: number,
   into: Float64Array,
@@ -52,7 +58,8 @@ export function processNoise(
   const fullJ = latentKwh(models) * 3.6e6;
   const uncertainW = HEAT_PART * (Math.abs(flows.chargingW) + Math.abs(flows.loopW)) + 0.5 * unknownW;
   const part = (uncertainW * dtS) / fullJ;
-  const wander = flowing > 0 ? WATER_WANDER_K.flowing : WATER_WANDER_K.resting;
+  const still = iced ? WATER_WANDER_K.onIce : WATER_WANDER_K.resting;
+  const wander = flowing > 0 ? WATER_WANDER_K.flowing : still;
   into.fill(0, 0, STATES);
   into[X.ice] = part * part * Math.max(1, HEAT_LASTS_S / dtS) + (ICE_WANDER ** 2 * dtS) / 3600;
   for (const layer of LAYERS) into[layer] = (wander ** 2 * dtS) / 60;

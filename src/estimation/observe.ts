@@ -50,7 +50,18 @@ function coolantSense(models: PlantModels, point: 'coolant-supply' | 'coolant-re
   const side = point === 'coolant-supply' ? -0.5 : 0.5;
   const risePerW = COOLANT_RISE_K / models.nominalIceMakingW;
   return {
-    states: [X.ice, ...LAYERS, X.cop, X.copIce, X.freeze, X.freezeNow, X.thickening, X.span, offset],
+    states: [
+      X.ice,
+      ...LAYERS,
+      X.cop,
+      X.copIce,
+      X.freeze,
+      X.freezeNow,
+      X.thickening,
+      X.growth,
+      X.span,
+      offset,
+    ],
     predict: (x) => {
       const heatW = chargingWOf(models, x, drive);
       const rise = side * risePerW * Math.exp(x[X.span]) * heatW;
@@ -62,7 +73,7 @@ function coolantSense(models: PlantModels, point: 'coolant-supply' | 'coolant-re
 /** Electrical power of the running machine: falls or rises with the ice on the coil in a way that this plant repeats. */
 function powerSense(models: PlantModels, drive: Drive): Sense {
   return {
-    states: [X.ice, ...LAYERS, X.power, X.powerIce, X.freeze, X.freezeNow, X.thickening],
+    states: [X.ice, ...LAYERS, X.power, X.powerIce, X.freeze, X.freezeNow, X.thickening, X.growth],
     predict: (x) => {
       const balance = models.machine.balance(
         drive.condenserAirC,

@@ -58,12 +58,8 @@ export const newFlows = (): Flows => ({ chargingW: 0, loopW: 0, leakW: 0 });
 const LEAST_LIQUID = 0.06;
 /** Time in which the coolant within an internal-melt coil is renewed, s; no source. */
 const COIL_CONTENT_S = 90;
-/** The last ice round an internal-melt coil still meets it through water; share of the conductance at half inventory. */
-const LEAST_SHARE = 0.45;
-/** Containers start to freeze better than they melt at half inventory: no water stands at the wall. No source. */
-const FREEZE_OVER_MELT = 1.5;
-/** A container that freezes inward carries this much less at its core than at its wall. No source. */
-const INWARD_THICKENING = 1.5;
+/** A coil that warms or cools water alone does so by natural convection: part of the start of freezing. No source. */
+const BARE_PART = 0.6;
 
 /**
  * In sealed containers the state's ice may go below none: it then stands for the warmth of the molten water in them,
@@ -104,11 +100,17 @@ export function meltWPerKOf(models: PlantModels, x: Float64Array): number {
   );
 }
 
-/** From coolant to the freezing front; to the bath where containers stand between. */
+/** From coolant to the freezing front; where containers stand between, to the bath: half of the way. */
 export function freezeWPerKOf(models: PlantModels, x: Float64Array): number {
   const gain = x[X.freeze] + x[X.freezeNow];
-  if (models.sealed) return freezeConductanceWPerK(models.bank, 0, 0, gain);
-  return freezeConductanceWPerK(models.bank, x[X.ice], Math.exp(x[X.thickening]), gain);
+  if (models.sealed) return 2 * freezeConductanceWPerK(models.bank, 0, 0, gain);
+  return freezeConductanceWPerK(
+    models.bank,
+    x[X.ice],
+    Math.exp(x[X.thickening]),
+    gain,
+    Math.exp(x[X.growth]),
+  );
 }
 
 /** What the freezing coil faces: ice, or the water that has to be cooled first, or the bath round containers. */
@@ -257,14 +259,23 @@ function advanceSealed(models: PlantModels, x: Float64Array, drive: Drive, other
   return passed.loopW;
 }
 
-/** Bath to the front inside the containers: ice at the wall while freezing, water at the wall while melting. */
+/**
+ * Bath to the front inside the containers, W/K: the wall's two sides in series. Outside, half of the nameplate's
+ * resistance; inside, a cylinder that freezes or melts from its wall, ln(1/remaining) with half of the nameplate's
+ * resistance at half inventory. Ice carries worse than stirred water: `thickening`.
+ */
 function containerWPerK(models: PlantModels, x: Float64Array, drive: Drive, freezing: boolean): number {
-  const ice = Math.min(1, Math.max(0, x[X.ice]));
-  const least = LEAST_SHARE * models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
-  if (!freezing) return Math.max(least, stirredShare(models, drive) * meltWPerKOf(models, x));
-  const full = x[X.ice] > 1 ? Math.max(0.02, 1 - 10 * (x[X.ice] - 1)) : 1;
-  const walls = models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
-  return (full * FREEZE_OVER_MELT * walls) / (1 + INWARD_THICKENING * ice);
+  const { meltWPerK, freezeWPerK } = models.bank.config;
+  const melt = 2 * meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
+  const still = 2 * freezeWPerK * Math.exp(x[X.freeze] + x[X.freezeNow]);
+  const outside = 1 / (drive.flowing * melt + (1 - drive.flowing) * Math.min(still, melt));
+  const ice = Math.min(0.985, Math.max(0.015, x[X.ice]));
+  if (freezing) {
+    return 1 / (outside + (Math.exp(x[X.thickening]) * -Math.log1p(-ice)) / (Math.LN2 * melt));
+  }
+  const shape = (x[X.meltExponent] - models.bank.guess.meltExponent) * Math.log(2 * ice);
+  const inside = -Math.log(ice) / (Math.LN2 * melt);
+  return Math.exp(shape + x[X.meltBend] * (2 * ice - 1)) / (outside + inside);
 }
 
 /** Coolant in a coil within ice or water. Colder coolant than the bank freezes. Gives the heat brought in, W. */
@@ -297,11 +308,10 @@ function throughCoil(models: PlantModels, x: Float64Array, drive: Drive, dt: num
   return drive.flowing * loop * (enteringC - mean);
 }
 
-/** Without ice the coil faces water alone, as at the start of freezing. */
 function coilConductanceWPerK(models: PlantModels, x: Float64Array, freezing: boolean): number {
-  if (freezing || !(x[X.ice] > 0)) return freezeWPerKOf(models, x);
-  const least = LEAST_SHARE * models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
-  return Math.max(least, meltWPerKOf(models, x));
+  if (!(x[X.ice] > 0)) return BARE_PART * freezeWPerKOf(models, x);
+  if (freezing) return freezeWPerKOf(models, x);
+  return Math.max(0.3 * BARE_PART * freezeWPerKOf(models, x), meltWPerKOf(models, x));
 }
 
 /** Takes the machine's heat out: from the ice when there is some, from warm water first when there is little. */

@@ -18,6 +18,32 @@ export function openBeliefs(priors: Priors, slow: Belief | null): Belief[] {
   });
 }
 
+/** Logarithm of the weight that an idea gets which nobody has asked for. */
+const IDEA = -5;
+/** Inventories below and above which the other state of affairs is worth an idea. */
+const NEARLY_EMPTY = 0.02;
+
+/**
+ * While water flows: what if the ice is gone that was believed in, or is there after all? One such idea at a time runs
+ * along at little weight; readings raise it or let it go. A single Gaussian could not change its mind so far.
+ */
+export function withIdea(beliefs: readonly Belief[], best: Belief, leavingC: number): Belief[] {
+  if (beliefs.length > 1) return [...beliefs];
+  const idea: Belief = {
+    logWeight: best.logWeight + IDEA,
+    mean: Float64Array.from(best.mean),
+    cov: Float64Array.from(best.cov),
+  };
+  if (best.mean[X.ice] > NEARLY_EMPTY) {
+    restate(idea, X.ice, 0, 0.01);
+    for (const layer of LAYERS) restate(idea, layer, Math.max(0, leavingC), 1.5);
+  } else {
+    restate(idea, X.ice, 0.15, 0.1);
+    for (const layer of LAYERS) restate(idea, layer, Math.max(0, Math.min(leavingC, best.mean[layer])), 1.5);
+  }
+  return [...beliefs, idea];
+}
+
 /** Sets one quantity anew, unrelated to all others. */
 export function restate(belief: Belief, i: number, mean: number, sd: number): void {
   belief.mean[i] = mean;

@@ -11,7 +11,7 @@ import { processNoise } from './noise.ts';
 import { advance, type Drive } from './process.ts';
 import { anchorsOf } from './anchors.ts';
 import { flowProbability, runningOf, type Running } from './running.ts';
-import { bound, restate } from './start.ts';
+import { bound, restate, withIdea } from './start.ts';
 import { bestOf, learn, type Circumstances, type Heard } from './update.ts';
 import { judgeEntering } from './entering.ts';
 
@@ -25,6 +25,8 @@ const HUMIDITY_PCT = 50;
 const PUMP_HEAT_PART = 0.8;
 /** Until then the return pipe's resting water and the probe's lag make it read what does not count. */
 const FLUSHED_S = 180;
+/** Layers have settled enough under flow for a second idea of the ice to be tried. */
+const IDEAS_AFTER_S = 1500;
 /** Start surges and meter glitches above this multiple of the nameplate are cut. */
 const MOST_POWER_FACTOR = 1.8;
 
@@ -223,7 +225,8 @@ function move(core: Core, drive: Drive, running: Running, dtS: number): void {
   for (const belief of core.beliefs) {
     predict(belief, (x) => advance(core.models, x, drive, flows), ZERO, core.work);
     // The last evaluation of a prediction is at the belief's centre: its flows are the belief's.
-    processNoise(core.models, flows, running.flowing, unknownW, dtS, core.noise);
+    const iced = belief.mean[X.ice] > 0.01;
+    processNoise(core.models, flows, running.flowing, iced, unknownW, dtS, core.noise);
     for (let i = 0; i < STATES; i++) belief.cov[i * STATES + i] += core.noise[i];
     if (belief === best) core.flows = { ...flows };
   }
@@ -242,6 +245,14 @@ function housekeep(core: Core): void {
     forget(belief, core.priors, X.cop, core.sinceTidyS, core.keep);
   }
   core.beliefs = tidy(core.beliefs, X.ice, NEAR);
+  const leavingC = core.folder.fresh(loopPoints(core).leaving);
+  if (
+    core.flowingS > IDEAS_AFTER_S &&
+    leavingC !== null &&
+    core.health.get('leaving-water')?.setAside == null
+  ) {
+    core.beliefs = withIdea(core.beliefs, bestOf(core.beliefs), leavingC);
+  }
   core.sinceTidyS = 0;
 }
 

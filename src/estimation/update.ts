@@ -66,7 +66,8 @@ function waterRule(
   const trueC = readC - mean[PROBE_OFFSET[point]];
   if (trueC < SUPERCOOLED_C && now.drive.charging > 0 && mean[X.ice] < 0.1 && !models.sealed) return null;
   if (now.drive.flowing > 0) {
-    return now.flowingS < PIPE_S ? null : { noise: NOISE.waterFlowing, plateau: false };
+    const noise = models.internal && point === 'leaving-water' ? NOISE.coilFlowing : NOISE.waterFlowing;
+    return now.flowingS < PIPE_S ? null : { noise, plateau: false };
   }
   if (now.restingS < 2 * PIPE_S) return null;
   if (mean[X.ice] > 0.02) return restingOnIce(point, trueC, now, models);

@@ -34,16 +34,15 @@ interface FormGuess {
 const FORM_GUESSES: Readonly<Record<BankForm, FormGuess>> = {
   'ice-on-coil-external': { meltExponent: 0.5, freezeThickening: 1, restFactor: 0.35, iceHeld: true },
   'ice-on-coil-internal': { meltExponent: 0.7, freezeThickening: 1, restFactor: 0.5, iceHeld: true },
-  'sealed-containers': { meltExponent: 0.5, freezeThickening: 1.2, restFactor: 0.5, iceHeld: true },
+  'sealed-containers': { meltExponent: 0.5, freezeThickening: 2, restFactor: 0.5, iceHeld: true },
   'open-tub': { meltExponent: 0.6, freezeThickening: 1, restFactor: 0.35, iceHeld: false },
 };
 
 /** Heat exchange of an open water surface with room air, convection and moisture together, W/(m² K); no source. */
 const OPEN_SURFACE_W_PER_M2_K = 8;
 
-/** Section of a full bank's ice over that of the bare tube, and ln(1 + that). */
-const GROWTH = 30;
-const FULL_GROWTH = Math.log1p(GROWTH);
+/** Section of a full bank's ice over that of the bare tube. */
+export const GROWTH = 30;
 
 /** Below this inventory (fraction) the last ice is scattered: keeps the conductance finite in logarithms. */
 const LEAST_FRACTION = 0.01;
@@ -116,8 +115,9 @@ export function freezeConductanceWPerK(
   inventory: number,
   thickening = bank.guess.freezeThickening,
   logGain = 0,
+  growth = GROWTH,
 ): number {
-  const grown = Math.log1p(GROWTH * Math.max(0, inventory)) / FULL_GROWTH;
+  const grown = Math.log1p(growth * Math.max(0, inventory)) / Math.log1p(growth);
   return (bank.config.freezeWPerK * Math.exp(logGain)) / (1 + thickening * grown);
 }
 
