@@ -1,6 +1,6 @@
 /** How a site shows its figures: SI or the inch-pound units of the trade, money by currency, local time. */
 import { localClock, localDate, parseInstant, toWall } from '../time.ts';
-import { fromInside, type DisplayUnits } from '../units.ts';
+import { fromInside, type Dimension, type DisplayUnits } from '../units.ts';
 
 export interface Display {
   /** Heat and cold; electricity stays in kWh whatever the units. */
@@ -57,32 +57,37 @@ export function figures(value: number, decimals: number): string {
 
 export function displayFor(site: { units: DisplayUnits; currency: string; zone: string }): Display {
   const ip = site.units === 'IP';
-  const inside = (value: number, unit: string, dimension: Parameters<typeof fromInside>[2]): number =>
-    fromInside(value, unit, dimension) ?? value;
   const digits = minorDigits(site.currency);
-  const at = (instant: string): number => parseInstant(instant) ?? 0;
   return {
     heatUnit: ip ? 'kBTU' : 'kWh',
-    heat: (kwh) => (ip ? figures(inside(kwh, 'BTU', 'energy') / 1000, 1) : figures(kwh, 2)),
+    heat: (kwh) => (ip ? figures(shownIn(kwh, 'BTU', 'energy') / 1000, 1) : figures(kwh, 2)),
     massUnit: ip ? 'lb' : 'kg',
-    mass: (kg) => (ip ? fixed(inside(kg, 'lb', 'mass'), 0) : fixed(kg, 1)),
+    mass: (kg) => (ip ? fixed(shownIn(kg, 'lb', 'mass'), 0) : fixed(kg, 1)),
     temperatureUnit: ip ? '\u00b0F' : '\u00b0C',
-    temperature: (celsius) => fixed(ip ? inside(celsius, 'degF', 'temperature') : celsius, 1),
+    temperature: (celsius) => fixed(ip ? shownIn(celsius, 'degF', 'temperature') : celsius, 1),
     differenceUnit: ip ? '\u00b0F' : 'K',
     difference: (kelvin, decimals = 1) => fixed(ip ? kelvin * 1.8 : kelvin, decimals),
     degreeHourUnit: ip ? '\u00b0F h' : 'K h',
     degreeHours: (kelvinHours) => fixed(ip ? kelvinHours * 1.8 : kelvinHours, 1),
     conductanceUnit: ip ? 'BTU/(h \u00b0F)' : 'W/K',
     conductance: (wattsPerKelvin) =>
-      fixed(ip ? inside(wattsPerKelvin, 'BTU/(h degF)', 'conductance') : wattsPerKelvin, 2),
+      fixed(ip ? shownIn(wattsPerKelvin, 'BTU/(h degF)', 'conductance') : wattsPerKelvin, 2),
     currency: site.currency,
     money: (amount) => fixed(amount, digits),
     price: (perKwh) => fixed(perKwh, digits + 1),
-    clock: (instant) => localClock(site.zone, at(instant)),
+    clock: (instant) => localClock(site.zone, msOf(instant)),
     day: (instant) =>
-      `${WEEKDAYS[toWall(site.zone, at(instant)).weekday]} ${dateWords(site.zone, at(instant))}`,
-    date: (instant) => dateWords(site.zone, at(instant)),
+      `${WEEKDAYS[toWall(site.zone, msOf(instant)).weekday]} ${dateWords(site.zone, msOf(instant))}`,
+    date: (instant) => dateWords(site.zone, msOf(instant)),
   };
+}
+
+function shownIn(value: number, unit: string, dimension: Dimension): number {
+  return fromInside(value, unit, dimension) ?? value;
+}
+
+function msOf(instant: string): number {
+  return parseInstant(instant) ?? 0;
 }
 
 /** Decimals of a currency: two for most, none for yen. */

@@ -81,18 +81,16 @@ function periodsOf(spans: readonly Span[], of: PowerOf): NightSheet['electricity
 export function copOf(site: SiteConfig, spans: readonly Span[], night: Night): NightSheet['cop'] {
   const powers = powersOf(site);
   const heard = spans.filter((span) => span.record.chillerPowerW !== null);
-  const ratio = (part: readonly Span[], used: number): number | null =>
-    used > LEAST_COP_KWH ? energyKwh(part, (record) => record.chargingW) / used : null;
   const usedBy = (part: readonly Span[]): number => energyKwh(part, powers.of('machine'));
   const total = MACHINES.reduce((sum, machine) => sum + energyKwh(heard, powers.of(machine)), 0);
   const hours = [...bySlot(heard, night.startMs, HOUR_MS)].toSorted(([a], [b]) => a - b);
   return {
-    machine: roundedOrNull(ratio(heard, usedBy(heard)), 3),
-    withPumpAndFan: roundedOrNull(ratio(heard, total), 3),
+    machine: roundedOrNull(madePer(heard, usedBy(heard)), 3),
+    withPumpAndFan: roundedOrNull(madePer(heard, total), 3),
     byHour: hours.flatMap(([hour, part]) => {
       const machineKwh = usedBy(part);
       const madeKwh = energyKwh(part, (record) => record.chargingW);
-      const cop = ratio(part, machineKwh);
+      const cop = madePer(part, machineKwh);
       if (cop === null || !(madeKwh > 0)) return [];
       return [
         {
@@ -108,6 +106,10 @@ export function copOf(site: SiteConfig, spans: readonly Span[], night: Night): N
       ];
     }),
   };
+}
+
+function madePer(part: readonly Span[], usedKwh: number): number | null {
+  return usedKwh > LEAST_COP_KWH ? energyKwh(part, (record) => record.chargingW) / usedKwh : null;
 }
 
 export function supplyOf(spans: readonly Span[]): NightSheet['supply'] {

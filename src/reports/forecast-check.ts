@@ -68,8 +68,6 @@ function outdoorOf(pairs: readonly Pair[]): Forecast['outdoor'] {
     return truth === null ? [] : [{ step, truth, before }];
   });
   if (scored.length === 0) return null;
-  const mean = (values: readonly number[]): number =>
-    values.reduce((sum, value) => sum + value, 0) / values.length;
   const withBefore = scored.filter((one) => one.before !== null);
   return {
     meanErrorK: rounded(mean(scored.map(({ step, truth }) => step.outdoorC - truth)), 3),
@@ -88,6 +86,10 @@ function outdoorOf(pairs: readonly Pair[]): Forecast['outdoor'] {
         : rounded(mean(withBefore.map(({ truth, before }) => Math.abs((before ?? 0) - truth))), 3),
     slots: scored.length,
   };
+}
+
+function mean(values: readonly number[]): number {
+  return values.reduce((sum, value) => sum + value, 0) / values.length;
 }
 
 function threePointScore(step: PlanStep, truth: number): number {

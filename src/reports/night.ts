@@ -127,7 +127,10 @@ function worthOfIce(site: SiteConfig, spans: readonly Span[], madeKwh: number): 
  * once, and again only for a reason.
  */
 export function nextRevision(written: NightSheet, fresh: NightSheet): NightSheet | null {
-  const bare = (sheet: NightSheet): string => JSON.stringify({ ...sheet, revision: 0, issued: '' });
   if (bare(written) === bare(fresh)) return null;
   return { ...fresh, revision: written.revision + 1 };
+}
+
+function bare(sheet: NightSheet): string {
+  return JSON.stringify({ ...sheet, revision: 0, issued: '' });
 }

@@ -224,24 +224,26 @@ function notes(sheet: NightSheet, show: Display): string[] {
   const silent = sheet.probes.filter((one) => one.staleMinutes >= 1).slice(0, 4);
   const checked = sheet.probes.filter((one) => one.errorAtIcePointK !== null).slice(0, 4);
   const aside = sheet.probes.filter((one) => one.setAside !== null).slice(0, 3);
-  const list = (name: string, items: readonly string[]): string =>
-    items.length === 0 ? '' : `${name}: ${items.join(', ')}.`;
   return [
-    list('Held back', held),
-    list('Wishes', wishes),
-    list(
+    listed('Held back', held),
+    listed('Wishes', wishes),
+    listed(
       'Silent',
       silent.map((one) => `${one.point} ${Math.round(one.staleMinutes)} min`),
     ),
-    list(
+    listed(
       'Error at the ice point',
       checked.map(
         (one) => `${one.point} ${show.difference(one.errorAtIcePointK ?? 0, 2)} ${show.differenceUnit}`,
       ),
     ),
-    list(
+    listed(
       'Set aside',
       aside.map((one) => `${one.point} (${one.setAside})`),
     ),
   ];
+}
+
+function listed(name: string, items: readonly string[]): string {
+  return items.length === 0 ? '' : `${name}: ${items.join(', ')}.`;
 }

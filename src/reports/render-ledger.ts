@@ -105,6 +105,9 @@ function togetherLines(ledger: Ledger): string[] {
 
 /** One row a night of every site, the columns of a single sheet. Month totals are left to the reader's own sums. */
 export function renderLedgerCsv(sheets: readonly NightSheet[]): string {
-  const order = (sheet: NightSheet): string => `${sheet.site.id} ${sheet.night.date}`;
-  return renderCsv(sheets.toSorted((a, b) => (order(a) < order(b) ? -1 : 1)));
+  return renderCsv(sheets.toSorted((a, b) => (orderOf(a) < orderOf(b) ? -1 : 1)));
+}
+
+function orderOf(sheet: NightSheet): string {
+  return `${sheet.site.id} ${sheet.night.date}`;
 }

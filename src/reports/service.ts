@@ -1,6 +1,6 @@
 /** What the rooms had of the night: cooling delivered, moisture, warm hours, weather. */
 import type { CycleRecord } from '../record.ts';
-import { formatInstant } from '../time.ts';
+import { formatInstant, HOUR_MS } from '../time.ts';
 import type { NightSheet } from './night-schema.ts';
 import { energyKwh, extreme, hoursOf, meanOver, rounded, roundedOrNull, type Span } from './spans.ts';
 
@@ -29,8 +29,6 @@ export function deliveredOf(spans: readonly Span[]): NightSheet['delivered'] {
 
 export function comfortOf(spans: readonly Span[]): NightSheet['comfort'] {
   const warmest = extreme(spans, (record) => (record.home ? record.roomC : null), 1);
-  const shareOf = ({ record, hours }: Span): number =>
-    record.spanMs > 0 ? Math.min(1, (hours * 3_600_000) / record.spanMs) : 0;
   return {
     warmKh: rounded(
       spans.reduce((sum, span) => sum + span.record.warmKh * shareOf(span), 0),
@@ -43,8 +41,16 @@ export function comfortOf(spans: readonly Span[]): NightSheet['comfort'] {
   };
 }
 
+/** Part of its own span that a record has in the night. */
+function shareOf({ record, hours }: Span): number {
+  return record.spanMs > 0 ? Math.min(1, (hours * HOUR_MS) / record.spanMs) : 0;
+}
+
+function outdoor(record: CycleRecord): number | null {
+  return record.outdoorC;
+}
+
 export function weatherOf(spans: readonly Span[]): NightSheet['weather'] {
-  const outdoor = (record: CycleRecord): number | null => record.outdoorC;
   return {
     outdoorMeanC: roundedOrNull(meanOver(spans, outdoor), 2),
     outdoorMaxC: roundedOrNull(extreme(spans, outdoor, 1)?.value ?? null, 2),

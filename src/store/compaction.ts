@@ -71,7 +71,7 @@ function mover(
   mean: string,
   count: string,
 ): (cutoffMs: number) => boolean {
-  const oldest = db.prepare(`SELECT min(ts) FROM ${from}`).pluck();
+  const oldest = db.prepare<[], number | null>(`SELECT min(ts) FROM ${from}`).pluck();
   const insert = db.prepare(
     `INSERT INTO ${to} (ts, point, mean, n)
      SELECT ts - ((ts % ${spanMs}) + ${spanMs}) % ${spanMs} AS start, point, ${mean}, ${count}
@@ -85,7 +85,7 @@ function mover(
     remove.run(start, end);
   });
   return (cutoffMs) => {
-    const first = oldest.get() as number | null;
+    const first = oldest.get() ?? null;
     if (first === null || first >= cutoffMs) return false;
     const start = floorTo(first, chunkMs);
     move(start, Math.min(start + chunkMs, cutoffMs));
@@ -99,17 +99,19 @@ interface Marks {
 }
 
 function marksOf(db: Database.Database): Marks {
-  const get = db.prepare('SELECT value FROM marks WHERE name = ?').pluck();
+  const get = db.prepare<[name: string], number>('SELECT value FROM marks WHERE name = ?').pluck();
   const set = db.prepare('INSERT OR REPLACE INTO marks (name, value) VALUES (?, ?)');
   return {
-    get: (name) => (get.get(name) as number | undefined) ?? null,
+    get: (name) => get.get(name) ?? null,
     set: (name, value) => void set.run(name, value),
   };
 }
 
 function recordThinner(db: Database.Database, records: RecordTable): (cutoffMs: number) => boolean {
   const marks = marksOf(db);
-  const next = db.prepare('SELECT min(atMs) FROM cycles WHERE atMs > ?').pluck();
+  const next = db
+    .prepare<[afterMs: number], number | null>('SELECT min(atMs) FROM cycles WHERE atMs > ?')
+    .pluck();
   const thinHour = db.transaction((start: number, end: number) => {
     const full = records.between(start, end);
     const thinned = thin(full);
@@ -118,7 +120,7 @@ function recordThinner(db: Database.Database, records: RecordTable): (cutoffMs: 
   });
   return (cutoffMs) => {
     const after = marks.get(RECORDS_MARK) ?? Number.MIN_SAFE_INTEGER;
-    const first = next.get(after) as number | null;
+    const first = next.get(after) ?? null;
     if (first === null) return false;
     const start = Math.max(after, floorTo(first - 1, HOUR_MS));
     if (start + HOUR_MS > cutoffMs) return false;
@@ -133,7 +135,9 @@ function planThinner(
   mark: string,
 ): (cutoffMs: number) => boolean {
   const marks = marksOf(db);
-  const next = db.prepare('SELECT min(madeMs) FROM plans WHERE madeMs >= ?').pluck();
+  const next = db
+    .prepare<[fromMs: number], number | null>('SELECT min(madeMs) FROM plans WHERE madeMs >= ?')
+    .pluck();
   const remove = db.prepare(
     `DELETE FROM plans WHERE madeMs >= ? AND madeMs < ? AND madeMs NOT IN
        (SELECT min(madeMs) FROM plans WHERE madeMs >= ? AND madeMs < ? GROUP BY madeMs / ${keepOneInMs})`,
@@ -143,7 +147,7 @@ function planThinner(
     marks.set(mark, end);
   });
   return (cutoffMs) => {
-    const first = next.get(marks.get(mark) ?? Number.MIN_SAFE_INTEGER) as number | null;
+    const first = next.get(marks.get(mark) ?? Number.MIN_SAFE_INTEGER) ?? null;
     if (first === null || first >= cutoffMs) return false;
     const start = floorTo(first, 3 * HOUR_MS);
     thinDay(start, Math.min(start + DAY_MS, cutoffMs));

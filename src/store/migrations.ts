@@ -35,8 +35,8 @@ export const LATEST_VERSION = STEPS.length;
 
 /** Version of an open database after making sure that it is ours and not from the future. 0 for a fresh file. */
 export function checkedVersion(db: Database.Database, file: string): number {
-  const owner = db.pragma('application_id', { simple: true }) as number;
-  const tables = db.prepare('SELECT count(*) FROM sqlite_master').pluck().get() as number;
+  const owner = pragmaNumber(db, 'application_id');
+  const tables = db.prepare<[], number>('SELECT count(*) FROM sqlite_master').pluck().get() ?? 0;
   if (owner !== APPLICATION_ID && tables > 0) {
     throw new RimeholdError(
       'store-broken',
@@ -44,7 +44,7 @@ export function checkedVersion(db: Database.Database, file: string): number {
       { file },
     );
   }
-  const version = db.pragma('user_version', { simple: true }) as number;
+  const version = pragmaNumber(db, 'user_version');
   if (version > LATEST_VERSION) {
     throw new RimeholdError(
       'store-newer',
@@ -53,6 +53,10 @@ export function checkedVersion(db: Database.Database, file: string): number {
     );
   }
   return version;
+}
+
+export function pragmaNumber(db: Database.Database, name: string): number {
+  return Number(db.pragma(name, { simple: true }));
 }
 
 /** Brings the database to the newest shape, each step whole or not at all. */
@@ -74,7 +78,7 @@ export function isCurrent(db: Database.Database, version: number): boolean {
 
 function missingColumns(db: Database.Database): string[] {
   const present = new Set(
-    (db.pragma('table_info(cycles)') as { name: string }[]).map((column) => column.name),
+    db.prepare<[], string>("SELECT name FROM pragma_table_info('cycles')").pluck().all(),
   );
   return [...RECORD_COLUMNS.keys()].filter((name) => !present.has(name));
 }

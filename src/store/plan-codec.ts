@@ -20,6 +20,7 @@ const PER: Readonly<Record<NumberField, number>> = {
   loadLowW: 1,
   loadHighW: 1,
 };
+// oxlint-disable-next-line typescript/no-unsafe-type-assertion -- keys of the table above
 const FIELDS = Object.keys(PER) as NumberField[];
 
 interface Packed {
@@ -30,6 +31,7 @@ interface Packed {
 
 export function packPlan(plan: PlanRecord): Uint8Array {
   const { steps, ...head } = plan;
+  // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- one column for each field
   const columns = Object.fromEntries(
     FIELDS.map((field) => [
       field,
@@ -41,16 +43,33 @@ export function packPlan(plan: PlanRecord): Uint8Array {
 }
 
 export function unpackPlan(blob: Uint8Array): PlanRecord {
+  // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- written by packPlan alone
   const packed = JSON.parse(inflateRawSync(blob).toString('utf8')) as Packed;
   const commands = packed.commands.flatMap(([command, run]) => Array.from({ length: run }, () => command));
-  const columns = FIELDS.map((field) => [field, sums(packed.columns[field], PER[field])] as const);
-  const steps = commands.map(
-    (command, index) =>
-      ({
-        command,
-        ...Object.fromEntries(columns.map(([field, values]) => [field, values[index]])),
-      }) as PlanStep,
-  );
+  const column = (field: NumberField): number[] => sums(packed.columns[field], PER[field]);
+  const startMs = column('startMs');
+  const [ice, iceLow, iceHigh] = [column('iceKwh'), column('iceLowKwh'), column('iceHighKwh')];
+  const [outdoor, outdoorLow, outdoorHigh] = [
+    column('outdoorC'),
+    column('outdoorLowC'),
+    column('outdoorHighC'),
+  ];
+  const [load, loadLow, loadHigh] = [column('loadW'), column('loadLowW'), column('loadHighW')];
+  const price = column('priceMoneyPerKwh');
+  const steps = commands.map((command, i): PlanStep => ({
+    startMs: startMs[i],
+    command,
+    iceKwh: ice[i],
+    iceLowKwh: iceLow[i],
+    iceHighKwh: iceHigh[i],
+    priceMoneyPerKwh: price[i],
+    outdoorC: outdoor[i],
+    outdoorLowC: outdoorLow[i],
+    outdoorHighC: outdoorHigh[i],
+    loadW: load[i],
+    loadLowW: loadLow[i],
+    loadHighW: loadHigh[i],
+  }));
   return { ...packed.plan, steps };
 }
 

@@ -87,6 +87,7 @@ const CODES: Readonly<Record<Field, Code>> = {
   feelsLikeC: maybe(1000),
 };
 
+// oxlint-disable-next-line typescript/no-unsafe-type-assertion -- keys of the table above
 const FIELDS = Object.keys(CODES) as Field[];
 const figuresColumn = (field: Field): string => `${field}Figures`;
 
@@ -134,20 +135,14 @@ export function toRow(record: CycleRecord, dictionary: Dictionary): Cell[] {
 function toCells(record: CycleRecord, field: Field, dictionary: Dictionary): Cell[] {
   const code = CODES[field];
   const value = record[field];
-  switch (code.kind) {
-    case 'number':
-      return [value === null && code.nullable ? null : whole(value, code.per, field)];
-    case 'instant':
-      return [value === null ? null : whole(value, 1, field) - record.atMs];
-    case 'truth':
-      return [value === true ? 1 : 0];
-    case 'word':
-      return [dictionary.idOf(String(value))];
-    case 'sentence': {
-      const { words, figures } = splitFigures(String(value));
-      return [dictionary.idOf(words), figures];
-    }
+  if (code.kind === 'truth') return [value === true ? 1 : 0];
+  if (code.kind === 'word') return [dictionary.idOf(String(value))];
+  if (code.kind === 'sentence') {
+    const { words, figures } = splitFigures(String(value));
+    return [dictionary.idOf(words), figures];
   }
+  if (value === null && (code.kind === 'instant' || code.nullable)) return [null];
+  return [code.kind === 'instant' ? whole(value, 1, field) - record.atMs : whole(value, code.per, field)];
 }
 
 function whole(value: unknown, per: number, field: Field): number {
@@ -175,6 +170,7 @@ export function fromRow(row: readonly Cell[], dictionary: Dictionary): CycleReco
     const figures = code.kind === 'sentence' ? row[at++] : null;
     record[field] = fromCell(code, cell, figures, atMs, dictionary);
   }
+  // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- built from the table of all fields
   return record as unknown as CycleRecord;
 }
 
@@ -185,19 +181,16 @@ function fromCell(
   atMs: number,
   dictionary: Dictionary,
 ): number | string | boolean | null {
-  switch (code.kind) {
-    case 'number':
-      if (cell === null) return code.nullable ? null : 0;
-      return Number(cell) / code.per;
-    case 'instant':
-      return cell === null ? null : Number(cell) + atMs;
-    case 'truth':
-      return cell === 1;
-    case 'word':
-      return cell === null ? '' : dictionary.textOf(Number(cell));
-    case 'sentence':
-      return cell === null ? '' : joinFigures(dictionary.textOf(Number(cell)), figures as string | null);
+  if (code.kind === 'truth') return cell === 1;
+  if (code.kind === 'word') return cell === null ? '' : dictionary.textOf(Number(cell));
+  if (code.kind === 'sentence') {
+    return cell === null
+      ? ''
+      : joinFigures(dictionary.textOf(Number(cell)), figures === null ? null : String(figures));
   }
+  if (code.kind === 'instant') return cell === null ? null : Number(cell) + atMs;
+  if (cell === null) return code.nullable ? null : 0;
+  return Number(cell) / code.per;
 }
 
 /** The record as its row will give it back: words pass unchanged, numbers come to their step. */
@@ -209,5 +202,6 @@ export function asStored(record: CycleRecord): CycleRecord {
     if (code.kind === 'number' && value !== null) kept[field] = whole(value, code.per, field) / code.per;
     if (code.kind === 'instant' && value !== null) kept[field] = whole(value, 1, field);
   }
+  // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- a record with its own numbers, rounded
   return kept as unknown as CycleRecord;
 }

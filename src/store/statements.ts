@@ -1,6 +1,6 @@
 /** The prepared SQL of the store, each statement once. */
 import type Database from 'better-sqlite3';
-import { pointSpec, type PointId, type Reading } from '../points.ts';
+import { isPointId, pointSpec, type Reading } from '../points.ts';
 import type { CycleRecord } from '../record.ts';
 import { MINUTE_MS } from '../time.ts';
 import type { RecordTable } from './compaction.ts';
@@ -10,17 +10,28 @@ import { storedDictionary, type StoredDictionary } from './texts.ts';
 import type { Waiting } from './waiting.ts';
 
 type Row = [ts: number, point: number, value: number];
+type Between = [fromMs: number, toMs: number];
+
+export interface StoredSheet {
+  readonly date: string;
+  readonly revision: number;
+  /** The sheet as it was written, JSON. */
+  readonly body: string;
+}
 
 const columns = ['atMs', ...RECORD_COLUMNS.keys()].map((name) => `"${name}"`).join(', ');
 
 export class Statements implements RecordTable {
-  readonly plans: Database.Statement;
-  readonly lastPlan: Database.Statement;
-  readonly firstRecordMs: Database.Statement;
-  readonly lastRecordMs: Database.Statement;
-  readonly memory: Database.Statement;
-  readonly sheet: Database.Statement;
-  readonly sheets: Database.Statement;
+  readonly plans: Database.Statement<Between, Uint8Array>;
+  readonly lastPlan: Database.Statement<[], Uint8Array>;
+  readonly firstRecordMs: Database.Statement<[], number | null>;
+  readonly lastRecordMs: Database.Statement<[], number | null>;
+  readonly memory: Database.Statement<[name: string], string>;
+  readonly sheet: Database.Statement<
+    [date: string, revision: number | null, same: number | null],
+    StoredSheet
+  >;
+  readonly sheets: Database.Statement<[fromDate: string, toDate: string], StoredSheet>;
   readonly #db: Database.Database;
   readonly #points: StoredDictionary;
   readonly #texts: StoredDictionary;
@@ -28,8 +39,8 @@ export class Statements implements RecordTable {
   readonly #putRecord: Database.Statement;
   readonly #putPlan: Database.Statement;
   readonly #putMemory: Database.Statement;
-  readonly #putSheet: Database.Statement;
-  readonly #records: Database.Statement;
+  readonly #putSheet: Database.Statement<[date: string, body: string, same: string], number>;
+  readonly #records: Database.Statement<Between, Cell[]>;
   readonly #dropRecords: Database.Statement;
 
   constructor(db: Database.Database) {
@@ -42,26 +53,28 @@ export class Statements implements RecordTable {
     const holes = ['atMs', ...RECORD_COLUMNS.keys()].map(() => '?').join(', ');
     this.#putRecord = db.prepare(`INSERT OR REPLACE INTO cycles (${columns}) VALUES (${holes})`);
     this.#records = db
-      .prepare(`SELECT ${columns} FROM cycles WHERE atMs > ? AND atMs <= ? ORDER BY atMs`)
+      .prepare<Between, Cell[]>(`SELECT ${columns} FROM cycles WHERE atMs > ? AND atMs <= ? ORDER BY atMs`)
       .raw();
     this.#dropRecords = db.prepare('DELETE FROM cycles WHERE atMs > ? AND atMs <= ?');
-    this.firstRecordMs = db.prepare('SELECT min(atMs) FROM cycles').pluck();
-    this.lastRecordMs = db.prepare('SELECT max(atMs) FROM cycles').pluck();
+    this.firstRecordMs = db.prepare<[], number | null>('SELECT min(atMs) FROM cycles').pluck();
+    this.lastRecordMs = db.prepare<[], number | null>('SELECT max(atMs) FROM cycles').pluck();
     this.#putPlan = db.prepare('INSERT OR REPLACE INTO plans VALUES (?, ?)');
     this.plans = db
-      .prepare('SELECT body FROM plans WHERE madeMs > ? AND madeMs <= ? ORDER BY madeMs')
+      .prepare<Between, Uint8Array>('SELECT body FROM plans WHERE madeMs > ? AND madeMs <= ? ORDER BY madeMs')
       .pluck();
-    this.lastPlan = db.prepare('SELECT body FROM plans ORDER BY madeMs DESC LIMIT 1').pluck();
+    this.lastPlan = db.prepare<[], Uint8Array>('SELECT body FROM plans ORDER BY madeMs DESC LIMIT 1').pluck();
     this.#putMemory = db.prepare('INSERT OR REPLACE INTO memories VALUES (?, ?)');
-    this.memory = db.prepare('SELECT body FROM memories WHERE name = ?').pluck();
-    this.#putSheet = db.prepare(
-      `INSERT INTO sheets SELECT ?, coalesce(max(revision), 0) + 1, ? FROM sheets WHERE date = ?
-       RETURNING revision`,
-    );
-    this.sheet = db.prepare(
+    this.memory = db.prepare<[name: string], string>('SELECT body FROM memories WHERE name = ?').pluck();
+    this.#putSheet = db
+      .prepare<[string, string, string], number>(
+        `INSERT INTO sheets SELECT ?, coalesce(max(revision), 0) + 1, ? FROM sheets WHERE date = ?
+         RETURNING revision`,
+      )
+      .pluck();
+    this.sheet = db.prepare<[string, number | null, number | null], StoredSheet>(
       'SELECT date, revision, body FROM sheets WHERE date = ? AND (? IS NULL OR revision = ?) ORDER BY revision DESC LIMIT 1',
     );
-    this.sheets = db.prepare(
+    this.sheets = db.prepare<[string, string], StoredSheet>(
       `SELECT date, max(revision) AS revision, body FROM sheets WHERE date >= ? AND date <= ?
        GROUP BY date ORDER BY date`,
     );
@@ -84,7 +97,7 @@ export class Statements implements RecordTable {
   }
 
   between(fromMs: number, toMs: number): CycleRecord[] {
-    return (this.#records.all(fromMs, toMs) as Cell[][]).map((row) => fromRow(row, this.#texts));
+    return this.#records.all(fromMs, toMs).map((row) => fromRow(row, this.#texts));
   }
 
   replace(fromMs: number, toMs: number, records: readonly CycleRecord[]): void {
@@ -93,10 +106,7 @@ export class Statements implements RecordTable {
   }
 
   addSheet(date: string, body: string): number {
-    return this.#db.transaction(() => {
-      const row = this.#putSheet.get(date, body, date) as { revision: number };
-      return row.revision;
-    })();
+    return this.#db.transaction(() => this.#putSheet.get(date, body, date) ?? 1)();
   }
 
   /** Raw readings and the means of older ones, in order of time. */
@@ -107,16 +117,17 @@ export class Statements implements RecordTable {
       `SELECT ts + ${middleMs}, point, ${value} FROM ${table}
        WHERE ts > :from - ${middleMs} AND ts <= :to - ${middleMs} ${only}`;
     const rows = this.#db
-      .prepare(
+      .prepare<{ from: number; to: number }, Row>(
         `${part('readings', 'value', 0)} UNION ALL ${part('minutes', 'mean', MINUTE_MS / 2)}
          UNION ALL ${part('quarters', 'mean', (15 * MINUTE_MS) / 2)} ORDER BY 1, 2`,
       )
       .raw()
-      .all({ from: fromMs, to: toMs }) as Row[];
-    return rows.map(([atMs, id, value]) => {
-      const point = this.#points.textOf(id) as PointId;
+      .all({ from: fromMs, to: toMs });
+    return rows.flatMap(([atMs, id, value]) => {
+      const point = this.#points.textOf(id);
+      if (!isPointId(point)) return [];
       const truth = pointSpec(point)?.kind === 'boolean';
-      return { point, atMs, value: truth ? Math.round(value) : value };
+      return [{ point, atMs, value: truth ? Math.round(value) : value }];
     });
   }
 }

@@ -18,10 +18,10 @@ import type { CycleRecord, PlanRecord } from '../record.ts';
 import { DAY_MS } from '../time.ts';
 import { createCompaction, type CompactionResult } from './compaction.ts';
 import { storeFault } from './faults.ts';
-import { checkedVersion, isCurrent, migrate } from './migrations.ts';
+import { checkedVersion, isCurrent, migrate, pragmaNumber } from './migrations.ts';
 import { planAsStored, unpackPlan } from './plan-codec.ts';
 import { asStored } from './record-codec.ts';
-import { Statements } from './statements.ts';
+import { Statements, type StoredSheet } from './statements.ts';
 import { Waiting } from './waiting.ts';
 import { takeWriterLock, type WriterLock } from './writer-lock.ts';
 
@@ -53,12 +53,7 @@ export interface StoreHealth {
   readonly bytes: number;
 }
 
-export interface StoredSheet {
-  readonly date: string;
-  readonly revision: number;
-  /** The sheet as it was written, JSON. */
-  readonly body: string;
-}
+export type { StoredSheet } from './statements.ts';
 
 /** Readings that are gathered before a flush starts by itself, so that an import needs no timer. */
 const FLUSH_AT = 5000;
@@ -133,15 +128,13 @@ export class Store {
   }
 
   health(): StoreHealth {
-    const pages = this.#db.pragma('page_count', { simple: true }) as number;
-    const size = this.#db.pragma('page_size', { simple: true }) as number;
     return {
       waitingReadings: this.#waiting.readings.length,
       waitingRecords: this.#waiting.records.length,
       lostReadings: this.#waiting.lostReadings,
       lostRecords: this.#waiting.lostRecords,
       fault: this.#fault,
-      bytes: pages * size,
+      bytes: pragmaNumber(this.#db, 'page_count') * pragmaNumber(this.#db, 'page_size'),
     };
   }
 
@@ -154,7 +147,7 @@ export class Store {
 
   plansBetween(fromMs: number, toMs: number): PlanRecord[] {
     return this.#read(() => {
-      const blobs = this.#sql.plans.all(fromMs, toMs) as Uint8Array[];
+      const blobs = this.#sql.plans.all(fromMs, toMs);
       const waiting = this.#waiting.plans.filter((plan) => plan.madeMs > fromMs && plan.madeMs <= toMs);
       return mergedBy(blobs.map(unpackPlan), waiting, (plan) => plan.madeMs);
     });
@@ -162,7 +155,7 @@ export class Store {
 
   latestPlan(): PlanRecord | null {
     return this.#read(() => {
-      const blob = this.#sql.lastPlan.get() as Uint8Array | undefined;
+      const blob = this.#sql.lastPlan.get();
       const all = [...(blob ? [unpackPlan(blob)] : []), ...this.#waiting.plans];
       return all.reduce<PlanRecord | null>(
         (last, plan) => (last && last.madeMs > plan.madeMs ? last : plan),
@@ -173,14 +166,12 @@ export class Store {
 
   /** Time of the first record there is; null before it. */
   firstRecordMs(): number | null {
-    return this.#read(
-      () => (this.#sql.firstRecordMs.get() as number | null) ?? this.#waiting.records[0]?.atMs ?? null,
-    );
+    return this.#read(() => this.#sql.firstRecordMs.get() ?? this.#waiting.records[0]?.atMs ?? null);
   }
 
   latestRecord(): CycleRecord | null {
     return this.#read(() => {
-      const last = this.#sql.lastRecordMs.get() as number | null;
+      const last = this.#sql.lastRecordMs.get() ?? null;
       const stored = last === null ? [] : this.#sql.between(last - 1, last);
       return mergedBy(stored, this.#waiting.records, (record) => record.atMs).at(-1) ?? null;
     });
@@ -205,10 +196,7 @@ export class Store {
   }
 
   loadMemory(name: string): string | null {
-    return (
-      this.#waiting.memories.get(name) ??
-      this.#read(() => (this.#sql.memory.get(name) as string | undefined) ?? null)
-    );
+    return this.#waiting.memories.get(name) ?? this.#read(() => this.#sql.memory.get(name) ?? null);
   }
 
   /** Writes a sheet at once under the next revision and returns that. Nothing that was written is ever changed. */
@@ -218,15 +206,12 @@ export class Store {
 
   /** A sheet, the newest revision unless one is named. */
   sheet(date: string, revision?: number): StoredSheet | null {
-    return this.#read(() => {
-      const row = this.#sql.sheet.get(date, revision ?? null, revision ?? null);
-      return (row as StoredSheet | undefined) ?? null;
-    });
+    return this.#read(() => this.#sql.sheet.get(date, revision ?? null, revision ?? null) ?? null);
   }
 
   /** The newest revision of each night from one date to another, both included. */
   sheets(fromDate = '0000-00-00', toDate = '9999-99-99'): StoredSheet[] {
-    return this.#read(() => this.#sql.sheets.all(fromDate, toDate) as StoredSheet[]);
+    return this.#read(() => this.#sql.sheets.all(fromDate, toDate));
   }
 
   /** Thins by age, at most `mostSteps` short transactions in one call. */
@@ -260,7 +245,7 @@ export class Store {
   /** Reads the whole file for damage; empty when it is sound. */
   verify(): string[] {
     return this.#read(() => {
-      const said = this.#db.prepare('PRAGMA quick_check(5)').pluck().all() as string[];
+      const said = this.#db.prepare<[], string>('PRAGMA quick_check(5)').pluck().all();
       return said.filter((line) => line !== 'ok');
     });
   }
@@ -346,7 +331,7 @@ function claim(db: Database.Database, file: string, siteId: string): void {
 }
 
 function checkOwner(db: Database.Database, file: string, siteId: string): void {
-  const owner = db.prepare('SELECT id FROM site').pluck().get() as string | undefined;
+  const owner = db.prepare<[], string>('SELECT id FROM site').pluck().get();
   if (owner !== undefined && owner !== siteId) {
     throw new RimeholdError(
       'config',

@@ -16,8 +16,8 @@ export function storedDictionary(db: Database.Database, table: string, column: s
   const ids = new Map<string, number>();
   const texts = new Map<number, string>();
   const insert = db.prepare(`INSERT INTO ${table} (${column}) VALUES (?)`);
-  const byText = db.prepare(`SELECT id FROM ${table} WHERE ${column} = ?`).pluck();
-  const byId = db.prepare(`SELECT ${column} FROM ${table} WHERE id = ?`).pluck();
+  const byText = db.prepare<[text: string], number>(`SELECT id FROM ${table} WHERE ${column} = ?`).pluck();
+  const byId = db.prepare<[id: number], string>(`SELECT ${column} FROM ${table} WHERE id = ?`).pluck();
   const keep = (text: string, id: number): number => {
     ids.set(text, id);
     texts.set(id, text);
@@ -26,7 +26,7 @@ export function storedDictionary(db: Database.Database, table: string, column: s
   const find = (text: string): number | null => {
     const known = ids.get(text);
     if (known !== undefined) return known;
-    const id = byText.get(text) as number | undefined;
+    const id = byText.get(text);
     return id === undefined ? null : keep(text, id);
   };
   return {
@@ -35,7 +35,7 @@ export function storedDictionary(db: Database.Database, table: string, column: s
     textOf: (id) => {
       const known = texts.get(id);
       if (known !== undefined) return known;
-      const text = byId.get(id) as string | undefined;
+      const text = byId.get(id);
       if (text === undefined) return '';
       keep(text, id);
       return text;

@@ -83,6 +83,7 @@ function merged(group: readonly CycleRecord[]): CycleRecord {
   for (const field of FLOWING) out[field] = meanOverTime(group, field);
   out.spanMs = group.reduce((sum, record) => sum + record.spanMs, 0);
   out.warmKh = group.reduce((sum, record) => sum + record.warmKh, 0);
+  // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- a record whose numbers are replaced by numbers
   return out as unknown as CycleRecord;
 }
 

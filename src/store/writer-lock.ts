@@ -42,7 +42,7 @@ export function takeWriterLock(file: string, pid: number): WriterLock {
 
 function holderOf(lock: Database.Database): number | null {
   try {
-    return (lock.prepare('SELECT pid FROM holder').pluck().get() as number | undefined) ?? null;
+    return lock.prepare<[], number>('SELECT pid FROM holder').pluck().get() ?? null;
   } catch {
     return null;
   }

@@ -86,10 +86,11 @@ export function* simulatedNights(run: PlantRun): Generator<NightSheet> {
 function faulty(options: SimulatorOptions, before: Simulator, fault: Fault): Simulator {
   const truth = before.truth();
   const healthy = before.parameters();
-  const factors = Object.entries(fault.factors).map(([name, factor]) => [
-    name,
-    healthy[name as FactorName] * factor,
-  ]);
+  const wanted = new Map<string, number>(Object.entries(fault.factors));
+  const factors = Object.entries(healthy).flatMap(([name, value]) => {
+    const factor = wanted.get(name);
+    return factor === undefined || typeof value !== 'number' ? [] : [[name, value * factor] as const];
+  });
   return createSimulator({
     ...options,
     startMs: before.nowMs(),
@@ -123,7 +124,7 @@ class Hand {
   private readonly site: SiteConfig;
   simulator: Simulator;
   openHours: readonly [from: number, to: number] | null = null;
-  private readonly last = new Map<PointId, Reading>();
+  private readonly last = new Map<string, Reading>();
   private command: Command = 'hold';
 
   constructor(site: SiteConfig, simulator: Simulator) {
@@ -171,7 +172,7 @@ class Hand {
   private record(atMs: number, estimator: Estimator): CycleRecord {
     const estimate = estimator.estimate();
     const heard = Object.fromEntries(
-      Object.entries(HEARD).map(([point, field]) => [field, this.last.get(point as PointId)?.value ?? null]),
+      Object.entries(HEARD).map(([point, field]) => [field, this.last.get(point)?.value ?? null]),
     );
     const running = this.command === 'discharge';
     const roomC = this.last.get('room-temperature')?.value ?? null;

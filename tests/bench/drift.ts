@@ -117,12 +117,12 @@ async function playPlants(seed: number, seeds: number): Promise<Score[]> {
     const delays: number[] = [];
     let named = 0;
     for (let i = 0; i < seeds; i++) {
-      const run = {
+      const plant = {
         seed: seed * 100 + 50 + i,
         nights: FAULT_AT + TO_TELL_NIGHTS,
         fault: { ...fault, atNight: FAULT_AT },
       };
-      const sheets = [...simulatedNights(run)];
+      const sheets = [...simulatedNights(plant)];
       const told = firstTold(sheets, FAULT_AT, (found) => found.signature !== null);
       if (told === null) continue;
       delays.push(told.nights);
@@ -151,6 +151,7 @@ function playFigure(one: FigureCase, noise: Noises, seed: number, runs: number):
     delays.push(told.nights);
     if (told.findings.some((found) => found.signature === one.signature)) named++;
   }
+  // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- keys of By
   const figure = Object.keys(one.by)[0] as SeriesName;
   return { ...one, figure, told: delays.length / runs, named: named / runs, delays };
 }

@@ -41,6 +41,7 @@ export function driftingSheets(story: DriftStory): NightSheet[] {
       ? []
       : [
           {
+            // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- keys of Noises
             name: name as SeriesName,
             values: noiseSeries(random.fork(name), story.nights, noise, story.wildPart ?? 0.02),
           },
@@ -68,8 +69,6 @@ function sheetOf(
     const log = of(name);
     return log === null ? null : level * Math.exp(log);
   };
-  const learned = (name: string, value: number | null, unit: string): NightSheet['learned'] =>
-    value === null ? [] : [{ name, value, sd: null, unit }];
   return {
     ...base,
     night: { ...base.night, date: new Date(START_MS + night * DAY_MS).toISOString().slice(0, 10) },
@@ -90,8 +89,8 @@ function sheetOf(
       copAtRating: null,
     },
     learned: [
-      ...learned('heat-leak', scaled('leak', 2), 'W/K'),
-      ...learned('charging-factor', scaled('cop', 1), ''),
+      ...learnedFigure('heat-leak', scaled('leak', 2), 'W/K'),
+      ...learnedFigure('charging-factor', scaled('cop', 1), ''),
     ],
     probes: base.probes.map((probe) => ({ ...probe, errorAtIcePointK: of(`probe ${probe.point}`) })),
   };
@@ -112,4 +111,8 @@ function noiseSeries(random: Random, nights: number, { sd, rho }: FigureNoise, w
     const wild = random.next() < wildPart ? 4 * random.normal() : 0;
     return sd * (value + wild);
   });
+}
+
+function learnedFigure(name: string, value: number | null, unit: string): NightSheet['learned'] {
+  return value === null ? [] : [{ name, value, sd: null, unit }];
 }

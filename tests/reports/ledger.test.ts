@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { ledgerOf } from '../../src/reports/ledger.ts';
 import type { NightSheet } from '../../src/reports/night.ts';
+import { readSheet } from '../../src/reports/night-schema.ts';
 import { renderLedgerCsv, renderLedgerText } from '../../src/reports/render-ledger.ts';
 import { driftingSheets } from './drift-story.ts';
 import { juniper, toldSheet } from './juniper.ts';
@@ -105,7 +106,7 @@ describe('the ledger', () => {
     });
     const bodies = sheets.map((sheet) => JSON.stringify(sheet));
     const start = process.cpuUsage();
-    ledgerOf(bodies.map((body) => JSON.parse(body) as NightSheet));
+    ledgerOf(bodies.flatMap((body) => readSheet(body) ?? []));
     const { user, system } = process.cpuUsage(start);
     console.log(`a year's ledger: ${((user + system) / 1000).toFixed(0)} ms of processor`);
     expect(bodies).toHaveLength(365);

@@ -1,4 +1,4 @@
-import fc from 'fast-check';
+import * as fc from 'fast-check';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import type { Reading } from '../../src/points.ts';

@@ -1,5 +1,5 @@
 import Database from 'better-sqlite3';
-import fc from 'fast-check';
+import * as fc from 'fast-check';
 import { readFileSync, statSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
@@ -209,21 +209,23 @@ describe('files that cannot be used', () => {
   });
 });
 
+function wholeSeconds(fromMs: number, count: number): Reading[] {
+  return Array.from({ length: count }, (_, i) => ({
+    point: 'leaving-water',
+    atMs: fromMs + i * 1000,
+    value: i / 16,
+  }));
+}
+
 describe('a full disk', () => {
   it('keeps what could not be written, goes on, and writes it when there is room', () => {
     const file = scratchFile();
     const store = opened(file, { mostPages: 120, keepRawMs: DAY_MS });
-    const run = (fromMs: number, count: number): Reading[] =>
-      Array.from({ length: count }, (_, i) => ({
-        point: 'leaving-water',
-        atMs: fromMs + i * 1000,
-        value: i / 16,
-      }));
-    const old = run(T0 - 3 * DAY_MS, 12_000);
+    const old = wholeSeconds(T0 - 3 * DAY_MS, 12_000);
     store.addReadings(old);
     expect(store.flush().fault).toBeNull();
 
-    const fresh = run(T0, 9000);
+    const fresh = wholeSeconds(T0, 9000);
     store.addRecord(baseRecord(T0, 30_000));
     store.addReadings(fresh);
     expect(store.flush().fault?.code).toBe('store-full');
