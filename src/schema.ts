@@ -54,9 +54,15 @@ function refuse(
 
 function shown(value: unknown): string {
   if (value === undefined) return 'nothing';
-  if (typeof value === 'string') return `"${value}"`;
-  return JSON.stringify(value) ?? String(value);
+  return clipped(typeof value === 'string' ? `"${value}"` : (JSON.stringify(value) ?? typeof value));
 }
+
+/** A whole file, or a binary one, may stand where one word was expected. */
+function clipped(text: string): string {
+  const printable = text.replace(/[^\p{L}\p{N}\p{P}\p{S} ]/gu, '·');
+  return printable.length <= MOST_SHOWN ? printable : `${printable.slice(0, MOST_SHOWN)}…`;
+}
+const MOST_SHOWN = 80;
 
 /** A physical value with its unit, kept inside in the dimension's own unit; refused outside its range. */
 export function quantity(dimension: Dimension, least: string, most: string): z.ZodType<number> {
@@ -216,7 +222,7 @@ export function section<K extends Keys>(sentence: string, keys: K): z.ZodType<Pa
       Object.fromEntries(Object.entries(keys).map(([name, entry]) => [name, values[entry.key]])) as Parsed<K>,
   );
   sections.set(type, { sentence, keys });
-  return type as z.ZodType<Parsed<K>>;
+  return type;
 }
 
 /** A section given once for each name that the owner chooses, as the points and actuators are. */

@@ -34,7 +34,7 @@ export class AlertBoard {
       this.#standing.add(id);
       device.alert(id, sentence);
     }
-    for (const id of [...this.#standing]) {
+    for (const id of this.#standing) {
       if (alerts.has(id)) continue;
       this.#standing.delete(id);
       device.alert(id, null);

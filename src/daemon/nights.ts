@@ -54,7 +54,7 @@ export function sheetOf(
     records,
     plans: store.plansBetween(night.startMs - DAY_MS, night.endMs),
     ways: simpleWays({ site: config, night, records, timetableAt }),
-    ...(end ?? {}),
+    ...end,
     revision,
     issuedMs: nowMs,
   });

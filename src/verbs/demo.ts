@@ -18,16 +18,17 @@ import { loadSite } from './site.ts';
 import { SimulatedPlant } from './simulated-plant.ts';
 
 const FACTOR = 720;
-/** A hot week in the demo's July; the evening begins a little before noon, so that the whole night is on the sheet. */
+/** A hot day in the demo's July. It begins with an empty bank at midnight; from noon on it goes at the demo's pace. */
 const EVENING = '2026-07-14';
-const BEFORE_NOON_MS = HOUR_MS / 4;
+const MIDNIGHT_BEFORE_NOON_MS = 12 * HOUR_MS;
 const STEP_MS = 10_000;
 
 export async function demo(options: { stay?: boolean; seed?: string }): Promise<number> {
   const seed = Number(options.seed ?? '1');
   const folder = mkdtempSync(join(tmpdir(), 'rimehold-demo-'));
   const config = demoSite(folder);
-  const startMs = noonOf(config.site.zone, EVENING) - BEFORE_NOON_MS;
+  const noonMs = noonOf(config.site.zone, EVENING);
+  const startMs = noonMs - MIDNIGHT_BEFORE_NOON_MS;
   const clock = createSteppedClock(startMs);
   const running = await startDemoSite(config, clock);
   const line = progressLine(config);
@@ -35,7 +36,7 @@ export async function demo(options: { stay?: boolean; seed?: string }): Promise<
   try {
     plant = await startPlant(config, running, startMs, seed);
     console.log(greeting(running));
-    running.daemon.observe({ record: line.show });
+    running.daemon.observe({ record: (record) => line.show(record) });
     let stopped = false;
     let over = false;
     void stopSignal().then(() => (stopped = true));
@@ -99,7 +100,7 @@ async function startPlant(
     seed,
     startMs,
     weather,
-    start: { iceKg: 0, waterC: 12, roomC: 26 },
+    start: { iceKg: 0, waterC: 12, roomC: 25 },
   });
   const plant = new SimulatedPlant({ config, simulator, url: running.brokerUrl });
   await plant.start();
@@ -108,7 +109,8 @@ async function startPlant(
 
 function greeting(running: Running): string {
   return [
-    'rimehold demo: a simulated Juniper hut, one evening in two minutes, on a clock 720 times as fast.',
+    'rimehold demo: a simulated Juniper hut. The night before passes quickly; from noon',
+    'on one evening takes two minutes, on a clock 720 times as fast.',
     `Page: ${running.pageUrl ?? 'not served'}   Broker: ${running.brokerUrl}`,
     '',
     'time   leaving   ice on hand (90 % sure)   command and reason',
@@ -120,7 +122,7 @@ const LINES_EVERY_MS = HOUR_MS / 2;
 
 /** One line that is written over on a terminal; elsewhere a new line each half hour and at each change of command. */
 function progressLine(config: SiteConfig): { show(record: CycleRecord): void; end(): void } {
-  const live = process.stdout.isTTY === true;
+  const live = process.stdout.isTTY;
   let shownMs = 0;
   let command = '';
   return {

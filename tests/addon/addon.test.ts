@@ -17,7 +17,7 @@ describe('Dockerfile', () => {
 
   it('has no fault that a Dockerfile linter knows', () => {
     const serious = validate(text).filter(
-      (found) => found.severity === ValidationSeverity.Error || found.severity === ValidationSeverity.Warning,
+      (found) => found.severity === ValidationSeverity.ERROR || found.severity === ValidationSeverity.WARNING,
     );
     expect(serious).toEqual([]);
   });
@@ -118,7 +118,7 @@ describe.skipIf(!hasMosquitto)('broker configuration and access list', () => {
         .poll(() => heard.toSorted())
         .toEqual([
           'hub homie/5/juniper/dispatch/reason',
-        'hub homie/5/juniper/dispatch/wish/set',
+          'hub homie/5/juniper/dispatch/wish/set',
           'rimehold homie/5/juniper/dispatch/wish/set',
           'rimehold juniper/bank/leaving',
         ]);
