@@ -15,13 +15,16 @@ import type {
 
 const DAY_MS = 86_400_000;
 
+/** A scenario with the sun on level ground, W/m², where it is known. */
+export type SunlitScenario = PlanScenario & { readonly sunWPerM2?: ArrayLike<number> };
+
 export interface PlanInputs {
   readonly nowMs: number;
   readonly iceOnHandKwh: number;
   readonly lowKwh: number;
   readonly highKwh: number;
   /** One value a slot, from the slot that holds `nowMs`. */
-  readonly scenarios: readonly PlanScenario[];
+  readonly scenarios: readonly SunlitScenario[];
   readonly prices: readonly { readonly buy: number; readonly sell: number }[];
   readonly roomC: number | null;
   readonly homeNow: boolean;
@@ -29,8 +32,8 @@ export interface PlanInputs {
   readonly chillerSinceMs: number | null;
   /** Air round the bank as measured; null where there is no such point. */
   readonly surroundC: number | null;
-  /** Mean power of the house, the cooling plant left out; null when unknown. */
-  readonly houseW: number | null;
+  /** Power of the house, the cooling plant left out: a mean, or one value a slot; null when unknown. */
+  readonly houseW: number | ArrayLike<number> | null;
   readonly batteryPct: number | null;
   /** Terms and state of the demand charge; null where there is none. */
   readonly demand: { readonly price: number; readonly peakKw: number; readonly untilMs: number } | null;
@@ -47,6 +50,7 @@ export function planProblem(config: SiteConfig, inputs: PlanInputs): PlanProblem
   const startMs = Math.floor(inputs.nowMs / planning.slotMs) * planning.slotMs;
   const bySlot = (value: (atMs: number, t: number) => number): Float64Array =>
     Float64Array.from({ length: Math.max(0, slots) }, (_, t) => value(startMs + t * planning.slotMs, t));
+  const scenarios = withPanels(config, inputs.scenarios);
   const limitC = bySlot((atMs) => limitAt(config, atMs));
   return {
     nowMs: inputs.nowMs,
@@ -62,7 +66,7 @@ export function planProblem(config: SiteConfig, inputs: PlanInputs): PlanProblem
     homeNow: inputs.homeNow,
     chillerOn: inputs.chillerOn,
     chillerSinceMs: inputs.chillerSinceMs,
-    scenarios: inputs.scenarios,
+    scenarios,
     power: grid ? gridPower(config, inputs, bySlot) : islandPower(config, inputs, bySlot),
     plant: plantOf(config, inputs),
     chiller: chillerTerms(config),
@@ -73,6 +77,25 @@ export function planProblem(config: SiteConfig, inputs: PlanInputs): PlanProblem
     warmHourMoney: comfort.warmHourPrice,
     reserveKwh: planning.reserveKwh,
   };
+}
+
+/** Soiling, wiring, inverter and warm cells together, until the panels themselves have shown it (common practice). */
+const PANEL_PART = 0.78;
+
+/**
+ * Panels that no forecast knows yet give what the sun on level ground would make them give: a plan that believed in no
+ * sun at all would empty the battery on its first day.
+ */
+function withPanels(config: SiteConfig, scenarios: readonly SunlitScenario[]): readonly PlanScenario[] {
+  const panelsW = config.power.island?.panelsW ?? 0;
+  const known = scenarios.some((s) => Array.from(s.panelW).some((w) => w > 0));
+  if (known || !(panelsW > 0)) return scenarios;
+  return scenarios.map((s) => ({
+    ...s,
+    panelW: Float64Array.from(s.sunWPerM2 ?? s.panelW, (sun) =>
+      s.sunWPerM2 ? (sun / 1000) * panelsW * PANEL_PART : 0,
+    ),
+  }));
 }
 
 type BySlot = (value: (atMs: number, t: number) => number) => Float64Array;
@@ -138,9 +161,13 @@ function gridPower(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): Grid
     kind: 'grid',
     buy: bySlot((_, t) => inputs.prices[t].buy),
     sell: bySlot((_, t) => inputs.prices[t].sell),
-    houseW: bySlot(() => inputs.houseW ?? 0),
+    houseW: bySlot((_, t) => houseAt(inputs, t) ?? 0),
     demand: demandTerms(config, inputs, bySlot),
   };
+}
+
+function houseAt({ houseW }: PlanInputs, t: number): number | null {
+  return typeof houseW === 'object' ? (houseW?.[t] ?? null) : houseW;
 }
 
 function demandTerms(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): DemandTerms | null {
@@ -166,7 +193,7 @@ function islandPower(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): Is
   const generator = island?.generator;
   return {
     kind: 'island',
-    houseW: bySlot(() => inputs.houseW ?? island?.houseW ?? 0),
+    houseW: bySlot((_, t) => houseAt(inputs, t) ?? island?.houseW ?? 0),
     battery: battery
       ? {
           capacityKwh: battery.capacityKwh,

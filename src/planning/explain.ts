@@ -89,7 +89,7 @@ interface Need {
 function comingNeed(problem: PlanProblem): Need {
   const { nowMs, scenarios } = problem;
   const noon = noonOf(problem.zone, localDate(problem.zone, nowMs));
-  const endMs = nowMs < noon ? noon + DAY_MS : noon + DAY_MS;
+  const endMs = noon + DAY_MS;
   const need = needKwh(problem, nowMs, endMs);
   const weights = scenarios.map((s) => s.weight);
   let t = 0;
@@ -136,7 +136,7 @@ const nextMaking = (plan: Plan): PlanStep | undefined => plan.steps.find((step) 
 
 function holdSentence(plan: Plan, problem: PlanProblem): string {
   const need = comingNeed(problem);
-  const have = `${energyText(problem, problem.iceKwh)} ${problem.units === 'SI' ? 'are' : 'are'} in the bank`;
+  const have = `${energyText(problem, problem.iceKwh)} are in the bank`;
   const making = nextMaking(plan);
   const loadNow = problem.scenarios.some((s) => s.loadW[0] > 50);
   if (loadNow && discharges(plan.steps.find((step) => step.command !== 'hold')?.command ?? 'hold')) {
@@ -150,7 +150,12 @@ function holdSentence(plan: Plan, problem: PlanProblem): string {
     const when = need.startsMs === null ? '' : ` before ${clockText(problem, problem.nowMs, need.startsMs)}`;
     return `Resting: ${have}, and no cooling is expected${when}.`;
   }
-  return `Resting: ${have}, and the ${eveningWord(problem)} may need ${energyText(problem, need.mostKwh)} at most.`;
+  const evening = `the ${eveningWord(problem)} may need ${energyText(problem, need.mostKwh)} at most`;
+  const short = making !== undefined && need.mostKwh > problem.iceKwh;
+  const more = short
+    ? `; more is made from ${clockText(problem, problem.nowMs, making.startMs)} if it comes to that`
+    : '';
+  return `Resting: ${have}, and ${evening}${more}.`;
 }
 
 /** Whether the next making is what this hold waits for: it comes within half a day. */

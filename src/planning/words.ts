@@ -50,12 +50,12 @@ export function powerText(manner: Manner, watts: number): string {
 
 const WEEKDAYS = ['Sunday', 'Monday', 'Tuesday', 'Wednesday', 'Thursday', 'Friday', 'Saturday'];
 
-/** A time as seen from now: "03:15", "tomorrow 17:00", "Friday 17:00". A time of the coming night is today's. */
+/** A time as seen from now: "03:15", "17:00 tomorrow", "17:00 on Friday". The coming night needs no day. */
 export function clockText(manner: Manner, nowMs: number, atMs: number): string {
   const clock = localClock(manner.zone, atMs);
   const today = localDate(manner.zone, nowMs);
   const day = localDate(manner.zone, atMs);
   if (day === today || atMs - nowMs < DAY_MS / 2) return clock;
-  if (day === localDate(manner.zone, nowMs + DAY_MS)) return `tomorrow ${clock}`;
-  return `${WEEKDAYS[toWall(manner.zone, atMs).weekday]} ${clock}`;
+  if (day === localDate(manner.zone, nowMs + DAY_MS)) return `${clock} tomorrow`;
+  return `${clock} on ${WEEKDAYS[toWall(manner.zone, atMs).weekday]}`;
 }

@@ -1,12 +1,12 @@
 /** Who decides: the plan on what can be known, the plan on what will be, the simple strategies, and nobody. */
 import type { Strategy } from '../../src/commands.ts';
 import type { SiteConfig } from '../../src/config.ts';
-import { replan } from '../../src/cycle.ts';
 import { planInputs } from '../../src/cycle-plan.ts';
 import { isHome, type Planned } from '../../src/cycle-values.ts';
 import { limitAt } from '../../src/comfort-hours.ts';
 import { meanOverRooms } from '../../src/points.ts';
 import { createEstimator } from '../../src/estimation/estimator.ts';
+import type { IceEstimate } from '../../src/estimation/types.ts';
 import { createForecaster, type Forecast } from '../../src/forecasting/forecaster.ts';
 import type { Scenario } from '../../src/forecasting/scenarios.ts';
 import { planProblem } from '../../src/planning/build.ts';
@@ -21,6 +21,9 @@ import { toldIce, type Decider, type LoopOptions, type Quarter, type Sight } fro
 
 /** Plans are made afresh each hour (in life each quarter hour), and their steps followed in between. */
 const REPLAN_MS = HOUR_MS;
+
+/** Asked at the first tick of each quarter hour: whether that quarter begins an hour. */
+const newHour = (nowMs: number): boolean => nowMs % REPLAN_MS < HOUR_MS / 4;
 
 /** The mean of each hour's forecast, for strategies that foresee no more than a mean. */
 export type MeanForecasts = Map<number, Forecast>;
@@ -49,16 +52,16 @@ export function plannedDecider(
     strategy: 'planned',
     senses: { estimator, forecaster },
     decide: (sight) => {
-      const { nowMs, stages, state, moment, demand } = sight;
-      const onTheHour = nowMs % REPLAN_MS === 0 || state.planned === null;
+      const { nowMs, state } = sight;
+      const onTheHour = newHour(nowMs) || state.planned === null;
       if (nowMs <= o.countFromMs) {
         if (onTheHour) means.set(slotStart(nowMs, HOUR_MS), meanOf(forecaster.forecast(nowMs, null)));
         return simplePlanned('storage-priority', o.on, sight, latest(means, nowMs));
       }
       if (!onTheHour) return goingOn(sight, config);
-      const outlook = { outdoorForecast: null, datedPrices: o.on.dated(nowMs), demand };
-      const planned = replan(stages, state, moment, { wish: null, strategy: 'planned' }, outlook);
-      means.set(slotStart(nowMs, HOUR_MS), meanOf(planned.forecast));
+      const forecast = forecaster.forecast(nowMs, null);
+      means.set(slotStart(nowMs, HOUR_MS), meanOf(forecast));
+      const planned = solved(problemOf(config, o.on, sight, forecast, estimator.estimate()), forecast);
       problems.push(planned.problem);
       return planned;
     },
@@ -81,15 +84,9 @@ export function foresightDecider(
       if (nowMs <= o.countFromMs) {
         return simplePlanned('storage-priority', o.on, sight, latest(means, nowMs));
       }
-      if (nowMs % REPLAN_MS !== 0 && state.planned !== null) return goingOn(sight, config);
+      if (!newHour(nowMs) && state.planned !== null) return goingOn(sight, config);
       const forecast = { ...latest(means, nowMs), scenarios: [will(nowMs)] };
-      const problem = problemOf(config, o.on, sight, forecast);
-      const plan = solvePlan(problem, {
-        fallBack: (note) => {
-          throw new Error(note);
-        },
-      });
-      return { plan, problem, prices: [], forecast, strategy: 'planned', command: plan.command, reason: '' };
+      return solved(problemOf(config, o.on, sight, forecast, toldIce(sight.truth, config)), forecast);
     },
   };
 }
@@ -144,7 +141,8 @@ function simplePlanned(
   forecast: Forecast,
 ): Planned {
   const { config } = on;
-  const problem = problemOf(config, on, sight, from(forecast, sight.nowMs));
+  const ice = sight.stages.estimator.estimate();
+  const problem = problemOf(config, on, sight, from(forecast, sight.nowMs), ice);
   const command = simpleCommand(strategy, problem, config.planning.timetable);
   return { plan: noPlan(sight.nowMs), problem, prices: [], forecast, strategy, command, reason: '' };
 }
@@ -165,13 +163,29 @@ const blankPlan = timetablePlan(
   '',
 );
 
-function problemOf(config: SiteConfig, on: PlanCase, sight: Sight, forecast: Forecast): PlanProblem {
-  const { nowMs, stages, state, moment, demand, truth } = sight;
+function solved(problem: PlanProblem, forecast: Forecast): Planned {
+  const plan = solvePlan(problem, {
+    fallBack: (note) => {
+      throw new Error(note);
+    },
+  });
+  return { plan, problem, prices: [], forecast, strategy: 'planned', command: plan.command, reason: '' };
+}
+
+function problemOf(
+  config: SiteConfig,
+  on: PlanCase,
+  sight: Sight,
+  forecast: Forecast,
+  ice: IceEstimate,
+): PlanProblem {
+  const { nowMs, stages, state, moment, demand, houseW } = sight;
   const { slotMs } = config.planning;
   const slots = forecast.scenarios[0].loadW.length;
   const prices = priceSlots(config, slotStart(nowMs, slotMs), slotMs, slots, on.dated(nowMs));
-  const ice = toldIce(truth, config);
-  return planProblem(config, planInputs(stages, state, moment, ice, forecast, prices, demand));
+  const inputs = planInputs(stages, state, moment, ice, forecast, prices, demand);
+  const house = houseW && prices.map((slot) => houseW(slot.startMs + slotMs / 2));
+  return planProblem(config, { ...inputs, houseW: house ?? inputs.houseW });
 }
 
 function latest(means: MeanForecasts, nowMs: number): Forecast {

@@ -17,8 +17,8 @@ import type { WeatherSource } from '../../src/simulator/weather.ts';
 import { demandSoFar, type DemandState } from '../../src/tariff/demand.ts';
 import type { EnergySlot } from '../../src/tariff/energy.ts';
 import { priceParts } from '../../src/tariff/prices.ts';
-import { HOUR_MS, MINUTE_MS, toWall } from '../../src/time.ts';
-import type { PlanCase } from './plan-cases.ts';
+import { DAY_MS, HOUR_MS, MINUTE_MS, toWall } from '../../src/time.ts';
+import { TICK_MS, type PlanCase } from './plan-cases.ts';
 
 const QUARTER_MS = 15 * MINUTE_MS;
 
@@ -30,6 +30,8 @@ export interface Sight {
   readonly moment: Moment;
   readonly truth: Truth;
   readonly demand: DemandState | null;
+  /** The house's mean power by quarter hour of the day, learned on the way; null before the first day is over. */
+  readonly houseW: ((atMs: number) => number) | null;
 }
 
 export interface Decider {
@@ -122,13 +124,13 @@ class Loop {
   }
 
   private cycle(): void {
-    this.nowMs += MINUTE_MS;
+    this.nowMs += TICK_MS;
     const readings = this.simulator.advance(this.nowMs).toSorted((a, b) => a.atMs - b.atMs);
     const truth = this.simulator.truth();
     this.hear(readings);
     const moment = this.moment();
     if (this.state.planned === null) this.stages.estimator.advance(this.nowMs, readings.splice(0), null);
-    if (this.nowMs % QUARTER_MS === 0 || this.state.planned === null) this.decide(moment, truth);
+    if (this.newQuarter() || this.state.planned === null) this.decide(moment, truth);
     const { strategy } = this.decider;
     const ticked = tick(this.stages, this.state, moment, { wish: null, strategy }, readings);
     this.state = ticked.state;
@@ -137,10 +139,23 @@ class Loop {
     this.before = truth;
   }
 
+  /** Whether a quarter hour has begun since the tick before. */
+  private newQuarter(): boolean {
+    return Math.floor(this.nowMs / QUARTER_MS) !== Math.floor((this.nowMs - TICK_MS) / QUARTER_MS);
+  }
+
   private decide(moment: Moment, truth: Truth): void {
     const { nowMs, stages, state } = this;
     const demand = this.config.power.tariff?.demand ? demandSoFar(this.config, this.energy, nowMs) : null;
-    const planned = this.decider.decide({ nowMs, stages, state, moment, truth, demand });
+    const planned = this.decider.decide({
+      nowMs,
+      stages,
+      state,
+      moment,
+      truth,
+      demand,
+      houseW: this.houseProfile(),
+    });
     if (planned) this.state = { ...state, planned };
   }
 
@@ -170,34 +185,43 @@ class Loop {
       totals.pumpKwh +
       totals.fanKwh -
       (before.totals.chillerKwh + before.totals.pumpKwh + before.totals.fanKwh);
-    this.quarterWattMs += plantKwh * 3.6e9 + truth.houseW * MINUTE_MS;
-    if (nowMs % QUARTER_MS === 0) this.closeQuarter(truth);
+    this.quarterWattMs += plantKwh * 3.6e9 + truth.houseW * TICK_MS;
+    if (this.newQuarter()) this.closeQuarter(truth);
     if (nowMs <= o.countFromMs || nowMs > o.endMs) return;
     const started = truth.chillerW > 60 && before.chillerW <= 60;
     if (started) this.counted.starts += 1;
     this.counted.money += (started ? config.chiller.startCost : 0) + this.electricityMoney(truth, plantKwh);
     if (!truth.home) return;
     const limitC = limitAt(config.comfort, config.site.zone, nowMs);
-    this.counted.warmKh += Math.max(0, mean(truth.roomsC) - limitC) / 60;
+    this.counted.warmKh += Math.max(0, mean(truth.roomsC) - limitC) * (TICK_MS / HOUR_MS);
   }
 
   private electricityMoney(truth: Truth, plantKwh: number): number {
     const { island } = this.config.power;
     if (!island) return plantKwh * this.buyNow();
     const given = Math.max(0, this.batteryKwh(this.before) - this.batteryKwh(truth));
-    const made = (truth.generatorW * MINUTE_MS) / 3.6e9;
+    const made = (truth.generatorW * TICK_MS) / 3.6e9;
     return given * (island.battery?.wear ?? 0) + made * (island.generator?.price ?? 0);
   }
 
   private price: { untilMs: number; buy: number } = { untilMs: 0, buy: 0 };
 
   private buyNow(): number {
-    const fromMs = this.nowMs - MINUTE_MS;
+    const fromMs = this.nowMs - TICK_MS;
     if (fromMs >= this.price.untilMs) {
       const [part] = priceParts(this.config, fromMs, fromMs + HOUR_MS, this.o.on.dated(fromMs));
       this.price = { untilMs: Math.min(part.endMs, fromMs + QUARTER_MS), buy: part.buy };
     }
     return this.price.buy;
+  }
+
+  private readonly house = { kwh: new Float64Array(96), days: new Float64Array(96) };
+
+  private houseProfile(): Sight['houseW'] {
+    const { kwh, days } = this.house;
+    if (days.some((count) => count === 0)) return null;
+    const quarterOf = (atMs: number): number => Math.floor(atMs / QUARTER_MS) % 96;
+    return (atMs) => (kwh[quarterOf(atMs)] / days[quarterOf(atMs)]) * 4000;
   }
 
   private batteryKwh(truth: Truth): number {
@@ -216,22 +240,30 @@ class Loop {
     });
     const importKwh = this.quarterWattMs / 3.6e9;
     this.energy.push({ startMs: from.atMs, endMs: truth.atMs, importKwh, exportKwh: 0, heardMs: QUARTER_MS });
+    const quarter = Math.floor(from.atMs / QUARTER_MS) % 96;
+    this.house.kwh[quarter] += truth.totals.houseKwh - from.totals.houseKwh;
+    this.house.days[quarter] += 1;
     this.quarterWattMs = 0;
     this.quarterFrom = truth;
   }
 
-  /** The demand charge of every month in which counting went on, on house and plant together. */
+  /** The demand charge of every month on house and plant together, for the part of the month that counted. */
   private demandMoney(): number {
     const terms = this.config.power.tariff?.demand;
     if (!terms) return 0;
     const peaks = new Map<number, number>();
+    const days = new Map<number, number>();
     for (const slot of this.energy) {
       if (slot.startMs < this.o.countFromMs || slot.startMs >= this.o.endMs) continue;
       const month = toWall(this.config.site.zone, slot.startMs).month;
       const kw = slot.importKwh / ((slot.endMs - slot.startMs) / HOUR_MS);
       peaks.set(month, Math.max(peaks.get(month) ?? 0, kw));
+      days.set(month, (days.get(month) ?? 0) + (slot.endMs - slot.startMs) / DAY_MS);
     }
-    return [...peaks.values()].reduce((sum, kw) => sum + kw * terms.price, 0);
+    return [...peaks].reduce(
+      (sum, [month, kw]) => sum + (kw * terms.price * (days.get(month) ?? 0)) / 30.5,
+      0,
+    );
   }
 
   /** An estimator that is told the truth. */

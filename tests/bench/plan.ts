@@ -72,7 +72,7 @@ export async function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
 
 function runCase(on: PlanCase, seed: number, nights: number, warmUpDays: number): CaseResult {
   const { site } = on.config;
-  const countFromMs = fromWall(site.zone, 2026, 6, 20, 12 * 60);
+  const countFromMs = fromWall(site.zone, 2026, 7, 1, 12 * 60);
   const endMs = countFromMs + nights * DAY_MS;
   const { designDayC, designRangeK } = on.config.cabin;
   const weather = seededWeather({ seed, ...site, hotDayC: designDayC ?? 34, rangeK: designRangeK });
@@ -179,9 +179,10 @@ function rowOf(result: CaseResult, name: Run): (string | number)[] {
   ];
 }
 
-/** Means over the cases. */
+/** Money over all cases together; warm hours as means over the cases. */
 function figuresOf(results: readonly CaseResult[]): Record<string, number> {
-  const over = (name: Run): number => results.reduce((sum, r) => sum + overPct(r, name), 0) / results.length;
+  const total = (name: Run): number => results.reduce((sum, r) => sum + r.money[name], 0);
+  const over = (name: Run): number => 100 * (total(name) / total('foresight') - 1);
   const warm = (name: Run): number =>
     results.reduce((sum, r) => sum + r.runs[name].warmKh / r.nights, 0) / results.length;
   return {

@@ -74,8 +74,8 @@ describe('words', () => {
   it('names a time by its day when it is far', () => {
     const now = fromWall('Europe/Madrid', 2026, 7, 1, 20 * 60);
     expect(clockText(eur, now, now + 5 * HOUR_MS)).toBe('01:00');
-    expect(clockText(eur, now, now + 21 * HOUR_MS)).toBe('tomorrow 17:00');
-    expect(clockText(eur, now, now + 45 * HOUR_MS)).toBe('Friday 17:00');
+    expect(clockText(eur, now, now + 21 * HOUR_MS)).toBe('17:00 tomorrow');
+    expect(clockText(eur, now, now + 45 * HOUR_MS)).toBe('17:00 on Friday');
   });
 });
 
@@ -86,7 +86,9 @@ describe('reasons', () => {
       chillerOn: true,
       chillerSinceMs: fromWall('Europe/Madrid', 2026, 7, 1, 195),
     });
-    expect(said(p)).toMatchInlineSnapshot(`"Making ice since 03:15: power costs 11 ct until 06:00, then 16 ct, and the evening may need 12.4 kWh; 4.1 are in the bank."`);
+    expect(said(p)).toMatchInlineSnapshot(
+      `"Making ice since 03:15: power costs 11 ct until 06:00, then 16 ct, and the evening may need 12.4 kWh; 4.1 are in the bank."`,
+    );
   });
 
   it('says from when on it rests, waits, cools and saves', () => {
@@ -101,28 +103,34 @@ describe('reasons', () => {
       cool: said(summer(9, ice(0.6), 0)),
       island: said(island(11)),
       dark: said(island(4)),
+      mild: said(summer(9, ice(6), 100)),
+      none: said(summer(9, { ...ice(0.6), scenarios: Array.from({ length: 12 }, () => scenario(SLOTS)) })),
       melts: said(summer(20, { iceKwh: 3.4, iceLowKwh: 1.4, iceHighKwh: 5.4 }, 150)),
     };
     expect(sentences).toMatchInlineSnapshot(`
       {
-        "cool": "Resting: 0.6 kWh are in the bank, and the evening may need 3.3 kWh at most.",
-        "dark": "Waiting to make ice until 07:45, when the sun has more to spare; 3.0 kWh are in the bank, and the evening may need 12.4.",
+        "cool": "Resting: 0.6 kWh are in the bank, and the evening may need 3.3 kWh at most; more is made from 02:15 tomorrow if it comes to that.",
+        "dark": "Waiting to make ice until 07:30, when the sun has more to spare; 3.0 kWh are in the bank, and the evening may need 12.4.",
         "evening": "Cooling with ice: the rest of the night may need 8.0 kWh; 7.0 are in the bank, which lasts until about 00:00, and more is made from 00:00.",
         "full": "Resting: the bank is full with 14.0 kWh.",
-        "island": "Making ice from now until about 18:45: the panels give 1.5 kW more than the house needs, and the evening may need 12.4 kWh; 3.0 are in the bank.",
+        "island": "Making ice from now until about 23:30: the panels give 1.5 kW more than the house needs, and the evening may need 12.4 kWh; 3.0 are in the bank.",
         "late": "Cooling with ice: the rest of the night may need 4.8 kWh; 4.0 are in the bank, which lasts until about 00:30, and more is made from 00:00.",
         "melts": "Cooling with ice: the rest of the night may need 2.9 kWh; 3.4 are in the bank, which lasts until about 22:15, and more is made from 00:45.",
-        "rests": "Resting: 11.0 kWh are in the bank, and the evening may need 12.4 kWh at most.",
+        "mild": "Resting: 6.0 kWh are in the bank, and the evening may need 4.0 kWh at most.",
+        "none": "Resting: 0.6 kWh are in the bank, and no cooling is expected.",
+        "rests": "Resting: 11.0 kWh are in the bank, and the evening may need 12.4 kWh at most; more is made from 00:00 tomorrow if it comes to that.",
         "short": "Cooling with ice: the rest of the night may need 8.0 kWh; 3.2 are in the bank, which lasts until about 21:30, and more is made from 22:30.",
         "start": "Making ice from now until about 09:30: power costs 11 ct until 06:00, then 16 ct, and the evening may need 12.4 kWh; 3.0 are in the bank.",
-        "waits": "Cooling with ice: the rest of the night may need 2.1 kWh; 2.8 are in the bank, which lasts until about tomorrow 16:15, and more is made from 00:30.",
+        "waits": "Cooling with ice: the rest of the night may need 2.1 kWh; 2.8 are in the bank, which lasts until about 16:15 tomorrow, and more is made from 00:30.",
       }
     `);
   });
 
   it('speaks inch-pound and dollars where the site does', () => {
     const p = summer(20, { ...ice(7), units: 'IP', currency: 'USD' });
-    expect(said(p)).toMatchInlineSnapshot(`"Cooling with ice: the rest of the night may need 27,400 BTU; 23,900 are in the bank, which lasts until about 00:00, and more is made from 00:00."`);
+    expect(said(p)).toMatchInlineSnapshot(
+      `"Cooling with ice: the rest of the night may need 27,400 BTU; 23,900 are in the bank, which lasts until about 00:00, and more is made from 00:00."`,
+    );
   });
 
   it('says what waiting would cost, what ice is worth and what would change its mind', () => {
@@ -137,11 +145,8 @@ describe('reasons', () => {
     `);
     const later = summer(9, ice(11));
     const rests = planOf(later);
-    expect([
-      waitSentence(rests, later),
-      worthSentence(rests, later),
-      flipSentence(rests, later),
-    ]).toMatchInlineSnapshot(`
+    expect([waitSentence(rests, later), worthSentence(rests, later), flipSentence(rests, later)])
+      .toMatchInlineSnapshot(`
       [
         "Making ice this hour instead would cost 3 ct more.",
         "One more kWh of ice would be worth 6.7 ct.",
