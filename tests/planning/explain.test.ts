@@ -155,6 +155,13 @@ describe('reasons', () => {
     `);
   });
 
+  it('says so when it lets the bank melt out', () => {
+    const p = summer(20, { iceKwh: 3.4, iceLowKwh: 1.4, iceHighKwh: 5.4 });
+    expect(explain({ ...planOf(p), command: 'discharge', meltsOut: true }, p)).toBe(
+      'Letting the bank melt out on a mild evening: it may hold anything from 1.4 to 5.4 kWh, and an empty bank settles that.',
+    );
+  });
+
   it('says when and why it is not a fresh plan', () => {
     const p = summer(4, ice(4.1));
     const timetable = [
