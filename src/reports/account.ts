@@ -27,6 +27,8 @@ const PROBE_SUSPECT_K = 0.5;
 
 export interface IceState {
   readonly kwh: number;
+  /** Heat that the water holds above the useful leaving temperature, as cold below zero; 0 while there is ice on hand. */
+  readonly pastUseKwh: number;
   readonly lowKwh: number;
   readonly highKwh: number;
   readonly kg: number;
@@ -40,15 +42,22 @@ export function netW(record: CycleRecord): number {
  * Ice on hand at the start of the first span: the record before the night where there is one; else the first record led
  * back by its own fluxes.
  */
-export function iceAtStart(spans: readonly Span[], before: CycleRecord | null): IceState {
+export function iceAtStart(spans: readonly Span[], before: CycleRecord | null, site: SiteConfig): IceState {
   const first = spans[0];
-  if (before !== null && first.fromMs - before.atMs < first.record.spanMs) return iceState(before, 0);
-  return iceState(first.record, (netW(first.record) * first.hours) / 1000);
+  if (before !== null && first.fromMs - before.atMs < first.record.spanMs) return iceState(before, 0, site);
+  return iceState(first.record, (netW(first.record) * first.hours) / 1000, site);
 }
 
-export function iceState(record: CycleRecord, lessKwh: number): IceState {
+/** Ice on hand ends at zero where its water gets too warm to cool; the account goes on below it. */
+function pastUseKwh(record: CycleRecord, site: SiteConfig): number {
+  const { waterL, usefulLeavingC } = site.bank;
+  return Math.min(0, ((usefulLeavingC - record.waterC) * waterL * WATER_J_PER_L_K) / 3.6e6);
+}
+
+export function iceState(record: CycleRecord, lessKwh: number, site: SiteConfig): IceState {
   return {
     kwh: record.iceOnHandKwh - lessKwh,
+    pastUseKwh: pastUseKwh(record, site),
     lowKwh: record.iceOnHandLowKwh - lessKwh,
     highKwh: record.iceOnHandHighKwh - lessKwh,
     kg: record.iceKg,
@@ -56,7 +65,7 @@ export function iceState(record: CycleRecord, lessKwh: number): IceState {
 }
 
 export function iceOf(spans: readonly Span[], start: IceState, site: SiteConfig): NightSheet['ice'] {
-  const end = iceState(spans[spans.length - 1].record, 0);
+  const end = iceState(spans[spans.length - 1].record, 0, site);
   const lowest = extreme(spans, (record) => record.iceOnHandKwh, -1);
   return {
     startKwh: rounded(start.kwh, 3),
@@ -81,6 +90,7 @@ type Balance = NightSheet['balance'];
 type Residuals = Balance['whileKwh'];
 
 export interface BalanceInput {
+  readonly site: SiteConfig;
   readonly spans: readonly Span[];
   readonly start: IceState;
   readonly night: Night;
@@ -90,17 +100,18 @@ export interface BalanceInput {
 }
 
 export function balanceOf(input: BalanceInput): Balance {
-  const { spans, start } = input;
-  const end = iceState(spans[spans.length - 1].record, 0);
+  const { spans, start, site } = input;
+  const end = iceState(spans[spans.length - 1].record, 0, site);
   const inKwh = energyKwh(spans, (record) => record.chargingW);
   const outKwh = energyKwh(spans, (record) => record.dischargingW);
   const leakKwh = energyKwh(spans, (record) => record.leakW);
-  const changeKwh = end.kwh - start.kwh;
+  const warmedKwh = start.pastUseKwh - end.pastUseKwh;
+  const changeKwh = end.kwh - start.kwh - warmedKwh;
   const residualKwh = inKwh - outKwh - leakKwh - changeKwh;
   const throughput = Math.max(inKwh, outKwh + leakKwh);
   const residualPct = throughput >= LEAST_THROUGHPUT_KWH ? (residualKwh / throughput) * 100 : null;
   const uncertaintyKwh = Math.hypot(halfWidth(start), halfWidth(end));
-  const whileKwh = residualsByMode(spans, start.kwh);
+  const whileKwh = residualsByMode(spans, start, site);
   const heard = heardOut(spans);
   const verdict = verdictOf(residualPct, residualKwh, uncertaintyKwh);
   const culprit =
@@ -110,6 +121,7 @@ export function balanceOf(input: BalanceInput): Balance {
     outKwh: rounded(outKwh, 3),
     leakKwh: rounded(leakKwh, 3),
     changeKwh: rounded(changeKwh, 3),
+    warmedPastUseKwh: rounded(warmedKwh, 3),
     residualKwh: rounded(residualKwh, 3),
     residualPct: residualPct === null ? null : rounded(residualPct, 2),
     uncertaintyKwh: rounded(uncertaintyKwh, 3),
@@ -143,16 +155,17 @@ function sideOf(mode: Mode): 'charging' | 'discharging' | 'resting' {
 }
 
 /** Each step's own residual, gathered by what the plant did in it; steps over a gap apart. */
-function residualsByMode(spans: readonly Span[], startKwh: number): Residuals {
+function residualsByMode(spans: readonly Span[], start: IceState, site: SiteConfig): Residuals {
   const out = { charging: 0, discharging: 0, resting: 0, gaps: 0 };
-  let ice = startKwh;
+  let cold = start.kwh + start.pastUseKwh;
   let endMs = spans[0].fromMs;
   for (const span of spans) {
     const fluxKwh = (netW(span.record) * span.hours) / 1000;
-    const residual = fluxKwh - (span.record.iceOnHandKwh - ice);
+    const now = span.record.iceOnHandKwh + pastUseKwh(span.record, site);
+    const residual = fluxKwh - (now - cold);
     const overGap = span.fromMs - endMs > span.record.spanMs;
     out[overGap ? 'gaps' : sideOf(span.record.mode)] += residual;
-    ice = span.record.iceOnHandKwh;
+    cold = now;
     endMs = span.toMs;
   }
   return out;

@@ -60,7 +60,7 @@ export function simpleWays(input: WaysInput): WayRun[] {
   const slots = slotsOf(input.site, spans, input.night);
   const machine = machineOf(input.site, spans);
   const before = input.records.filter((record) => record.atMs <= input.night.startMs).at(-1) ?? null;
-  const startKwh = iceAtStart(spans, before).kwh;
+  const startKwh = iceAtStart(spans, before, input.site).kwh;
   const mostKwh = fullBankKwh(input.site);
   const cheapest = Math.min(...slots.map((slot) => slot.price));
   const isCheap = (slot: Slot): boolean => slot.price <= cheapest + 1e-9;

@@ -21,7 +21,14 @@ const balance = z.strictObject({
   inKwh: describe(number, 'heat that the ice machine took out of the bank'),
   outKwh: describe(number, 'heat that the melt-water loop brought into the bank'),
   leakKwh: describe(number, 'heat that leaked into the bank'),
-  changeKwh: describe(number, 'ice on hand at the end less at the start'),
+  changeKwh: describe(
+    number,
+    'cold at the end less at the start, that of water too warm to use counted below zero',
+  ),
+  warmedPastUseKwh: describe(
+    number,
+    'how much more heat the water holds at the end above the useful temperature',
+  ),
   residualKwh: describe(number, 'in - out - leak - change: cold that no flux accounts for'),
   residualPct: describe(maybe, 'of the throughput, the larger of in and out + leak'),
   uncertaintyKwh: describe(number, 'what the intervals of ice at start and end leave open, 90 %'),

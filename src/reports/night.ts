@@ -53,12 +53,13 @@ export function nightSheet(input: NightInput): NightSheet {
     );
   }
   const before = input.records.filter((record) => record.atMs <= night.startMs);
-  const start = iceAtStart(spans, before.at(-1) ?? null);
+  const start = iceAtStart(spans, before.at(-1) ?? null, site);
   const probes = input.probes ?? [];
   const coverage = coverageOf(spans, night, input.issuedMs, site.site.zone);
   const show = displayFor(site.site);
   const doubtfulMinutes = coverage.clockDoubtfulMinutes;
-  const balance = balanceOf({ spans, start, night, probes, show, doubtfulMinutes });
+  const balance = balanceOf({ site, spans, start, night, probes, show, doubtfulMinutes });
+  const ice = iceOf(spans, start, site);
   const electricity = electricityOf(site, spans);
   const worth = worthOfIce(site, spans, balance.inKwh);
   const figures = {
@@ -69,16 +70,14 @@ export function nightSheet(input: NightInput): NightSheet {
     issued: formatInstant(input.issuedMs),
     ...coverage,
     strategy: spans[spans.length - 1].record.strategy,
-    ice: iceOf(spans, start, site),
+    ice,
     made: asIce(balance.inKwh),
     melted: asIce(balance.outKwh),
     leaked: asIce(balance.leakKwh),
     balance,
     electricity,
     supply: supplyOf(spans),
-    comparisons: (input.ways ?? []).map((way) =>
-      likeForLike(way, electricity.money, start.kwh + balance.changeKwh, worth),
-    ),
+    comparisons: (input.ways ?? []).map((way) => likeForLike(way, electricity.money, ice.endKwh, worth)),
     iceWorthMoneyPerKwh: roundedOrNull(worth, 5),
     cop: copOf(site, spans, night),
     delivered: deliveredOf(spans),
@@ -124,11 +123,23 @@ function worthOfIce(site: SiteConfig, spans: readonly Span[], madeKwh: number): 
 
 /**
  * The next revision of a sheet, or null when nothing but its number and date of issue would change: a sheet is written
- * once, and again only for a reason.
+ * once, and again only for a reason. What the learners said at the end of the night is known only then, so a sheet
+ * made later without it keeps what was written.
  */
 export function nextRevision(written: NightSheet, fresh: NightSheet): NightSheet | null {
-  if (bare(written) === bare(fresh)) return null;
-  return { ...fresh, revision: written.revision + 1 };
+  const unlearned = fresh.learned.length === 0;
+  const whole = unlearned
+    ? { ...fresh, learned: written.learned, probes: probesKept(written, fresh) }
+    : fresh;
+  if (bare(written) === bare(whole)) return null;
+  return { ...whole, revision: written.revision + 1 };
+}
+
+function probesKept(written: NightSheet, fresh: NightSheet): NightSheet['probes'] {
+  return fresh.probes.map((probe) => {
+    const before = written.probes.find((one) => one.point === probe.point);
+    return before === undefined ? probe : { ...before, staleMinutes: probe.staleMinutes };
+  });
 }
 
 function bare(sheet: NightSheet): string {

@@ -101,13 +101,16 @@ function iceTable(sheet: NightSheet, show: Display): string {
       '',
       balance.residualPct === null ? '' : `${fixed(balance.residualPct, 1)} %`,
     ],
+    ...(Math.abs(balance.warmedPastUseKwh) < 0.005
+      ? []
+      : [['+ water past use', show.heat(balance.warmedPastUseKwh), '', '']]),
     ['= at the end', show.heat(ice.endKwh), show.mass(ice.endKg), within(ice.endLowKwh, ice.endHighKwh)],
   ];
   const table = ruled(
     'Ice on hand',
     ['', show.heatUnit, `as ice, ${show.massUnit}`, '90 % interval'],
     rows,
-    5,
+    rows.length - 1,
   );
   return `${table}<p>${escaped(balance.sentence)}</p>`;
 }

@@ -68,6 +68,9 @@ function iceLines(sheet: NightSheet, show: Display): string[] {
     ['- melted for the rooms', show.heat(melted.kwh), show.mass(melted.kg), ''],
     ['- leaked', show.heat(leaked.kwh), show.mass(leaked.kg), ''],
     ['- residual', show.heat(balance.residualKwh), '', residualShare(sheet)],
+    ...(Math.abs(balance.warmedPastUseKwh) < 0.005
+      ? []
+      : [['+ water past use', show.heat(balance.warmedPastUseKwh), '', '']]),
     [
       '= on hand at the end',
       show.heat(ice.endKwh),
@@ -279,9 +282,8 @@ function probeLines(sheet: NightSheet, show: Display): string[] {
           MARGIN,
         )),
   ];
-  const learned = sheet.learned.map(
-    (one) =>
-      `${one.name} ${one.value.toPrecision(3)}${one.sd === null ? '' : ` +- ${one.sd.toPrecision(2)}`} ${one.unit}`,
+  const learned = sheet.learned.map((one) =>
+    `${one.name} ${one.value.toPrecision(3)}${one.sd === null ? '' : ` +- ${one.sd.toPrecision(2)}`} ${one.unit}`.trimEnd(),
   );
   return [...lines, ...(learned.length === 0 ? [] : noted('learned', learned.join(', '), MARGIN))];
 }

@@ -88,6 +88,28 @@ describe('the energy account', () => {
     expect(clock.balance.culprit).toMatch(/clock/);
   });
 
+  it('goes on below zero where the water gets too warm to use, so that an emptied bank is no residual', () => {
+    const told = tellNight({ zone: ZONE, night: JULY, stepMs: 60_000, startKwh: 7.5 });
+    // 240 L of water warm by 1 K for each 0.2803 kWh (4.205 kJ/(L K)), from 10 degC where ice on hand is zero.
+    const records = told.map((record) => ({
+      ...record,
+      iceOnHandKwh: Math.max(0, record.iceOnHandKwh),
+      waterC: record.iceOnHandKwh < 0 ? 10 - record.iceOnHandKwh / ((240 * 4.205) / 3600) : 2,
+    }));
+    const evening = records.slice(0, 780);
+    expect(evening.at(-1)?.iceOnHandKwh).toBe(0);
+    const whole = toldSheet({}, { records });
+    expect(Math.abs(whole.balance.residualKwh)).toBeLessThan(0.005);
+    expect(Math.abs(whole.balance.whileKwh.discharging)).toBeLessThan(0.005);
+    const cut = toldSheet({}, { records: evening, issuedMs: JULY.startMs + 13 * HOUR_MS });
+    expect(cut.balance.warmedPastUseKwh).toBeGreaterThan(0.5);
+    expect(Math.abs(cut.balance.residualKwh)).toBeLessThan(0.005);
+    const { ice, made, melted, leaked, balance } = cut;
+    const end =
+      ice.startKwh + made.kwh - melted.kwh - leaked.kwh - balance.residualKwh + balance.warmedPastUseKwh;
+    expect(end).toBeCloseTo(ice.endKwh, 2);
+  });
+
   it('says what the estimate leaves open when that explains the residual', () => {
     const { balance } = toldSheet({ lostW: { charging: 90 } });
     expect(balance.verdict).toBe('within-estimate');
@@ -301,6 +323,11 @@ describe('form', () => {
     expect(nextRevision(first, toldSheet({}, { issuedMs: JULY.endMs + 9e6 }))).toBeNull();
     const late = nextRevision(first, toldSheet({ startKwh: 10.6 }));
     expect(late?.revision).toBe(2);
+    // Made again from the store alone, without what the learners knew at noon: no reason for a revision.
+    expect(nextRevision(first, toldSheet({}, { learned: [], probes: [] }))).toBeNull();
+    const forgetful = nextRevision(first, toldSheet({ startKwh: 10.6 }, { learned: [], probes: [] }));
+    expect(forgetful?.learned).toEqual(first.learned);
+    expect(forgetful?.probes).toEqual(first.probes);
     expect(first.revision).toBe(1);
   });
 });
