@@ -92,15 +92,15 @@ function pointRow(point: PointRow, format: Format): HTMLTableRowElement {
   const heard = point.fresh ? words.fresh : point.heard ? words.stale : words.never;
   const [low, high] = point.plausible;
   const remark = point.setAside ? words.setAside(point.setAside) : point.why || point.what;
-  const name = h('span', {}, point.point, point.required ? h('small', {}, ` ${words.required}`) : null);
+  const name = h('span', {}, point.point, point.required ? h('small', {}, words.required) : null);
   return row(
     name,
-    h('span', { class: point.fresh ? '' : 'caution' }, heard),
     figure(point.last, point.last === null ? strings.none : format.value(point.last, point.unit)),
     point.ageMs === null ? strings.none : age(point.ageMs),
-    h('span', { class: 'quiet' }, words.range(format.value(low, point.unit), format.value(high, point.unit))),
+    h('span', { class: point.fresh ? '' : 'caution' }, heard),
     errorText(point, format),
     h('span', { class: 'note' }, remark),
+    h('span', { class: 'quiet' }, words.range(format.value(low, point.unit), format.value(high, point.unit))),
   );
 }
 
