@@ -12,9 +12,14 @@ const TRAIN_HOURS = 45 * 24;
 const ROW_WEIGHT = 1 / 8;
 /** The prior counts as this many independent rows: two days. */
 const PRIOR_ROWS = 16;
-/** Fading of the offset of the last hour, per hour, and of the day's mean offset, h; before anything is learned. */
-const QUICK_FADE = 0.85;
-const SLOW_FADE_HOURS = 60;
+/** How an offset fades before anything is learned: that of the last hour, per hour, and the day's mean, h. */
+export interface Fading {
+  readonly quick: number;
+  readonly slowHours: number;
+}
+
+/** Keeps the prior of a feature that never moved from vanishing. */
+const LEAST_VARIANCE = 1e-4;
 const FEATURES = 7;
 
 /** What is known at an hour: offsets of the main series, its daily wave, and a companion series. */
@@ -39,6 +44,7 @@ export function fitAnomaly(
   series: HourSeries,
   prior: readonly number[],
   companion: HourSeries | null,
+  fading: Fading,
   leads: number,
 ): AnomalyModel {
   const bins = hourBins(series, prior);
@@ -47,7 +53,7 @@ export function fitAnomaly(
   const known = offsets.map((_, i) => knownAt(offsets, beside, series.firstHour, i));
   const scale = variances(known);
   const byLead = Array.from({ length: leads }, (_, i) =>
-    fitLead(offsets, known, series.firstHour, i + 1, scale),
+    fitLead(offsets, known, series.firstHour, fading, i + 1, scale),
   );
   return { bins, byLead };
 }
@@ -155,11 +161,11 @@ function rowOf(known: Known, target: number): number[] {
   ];
 }
 
-const priorOf = (lead: number): number[] => [
-  QUICK_FADE ** lead,
-  Math.exp(-lead / SLOW_FADE_HOURS),
+const priorOf = (fading: Fading, lead: number): number[] => [
+  fading.quick ** lead,
+  Math.exp(-lead / fading.slowHours),
   0,
-  0.4 * Math.exp(-lead / SLOW_FADE_HOURS),
+  0.4 * Math.exp(-lead / fading.slowHours),
   0,
   0,
   0,
@@ -173,17 +179,18 @@ function variances(known: readonly (Known | null)[]): Float64Array {
     for (const [j, value] of rowOf(state, i).entries()) sums[j] += value * value;
     count += 1;
   }
-  return sums.map((sum) => Math.max(0.1, sum / Math.max(1, count)));
+  return sums.map((sum) => Math.max(LEAST_VARIANCE, sum / Math.max(1, count)));
 }
 
 function fitLead(
   offsets: readonly (number | null)[],
   known: readonly (Known | null)[],
   firstHour: number,
+  fading: Fading,
   lead: number,
   scale: Float64Array,
 ): Float64Array {
-  const prior = priorOf(lead);
+  const prior = priorOf(fading, lead);
   const equations = normalEquations(
     prior,
     scale.map((variance) => PRIOR_ROWS * variance),

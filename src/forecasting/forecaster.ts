@@ -82,7 +82,7 @@ export function createForecaster(
       const ahead = weather.predict(book, lastHour, leads);
       const hubC = external ? hubByLead(external, lastHour, leads) : null;
       const past = lookBack(book, issues, lastHour, leads, cabin.track(book).unexplainedW);
-      issues = keepIssue(issues, issueOf(lastHour, ahead, hubC));
+      issues = keepIssue(issues, issueOf(lastHour, ahead, hubC, book.panelScale));
       const frame = scenarioFrame(config, plant, book, cabin, grid, lastHour, seen, nowMs);
       const scenarios = drawScenarios(config, options.seed, frame, ahead, hubC, past);
       return {

@@ -101,8 +101,8 @@ const isIssue = (issue: unknown): boolean =>
   Array.isArray(issue.outdoorC) &&
   'dewC' in issue &&
   Array.isArray(issue.dewC) &&
-  'clearness' in issue &&
-  Array.isArray(issue.clearness) &&
+  'sunYield' in issue &&
+  Array.isArray(issue.sunYield) &&
   'hubC' in issue;
 const isCabin = (cabin: unknown): boolean =>
   cabin === null || (typeof cabin === 'object' && 'parameters' in cabin && 'refusedDays' in cabin);

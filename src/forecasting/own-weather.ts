@@ -21,6 +21,10 @@ export interface OwnWeather {
 /** Hours between two trainings; the offset itself is always today's. */
 const TRAIN_EVERY_HOURS = 12;
 
+/** A mass of air stays for days, clouds for hours (from experience, no source; learned from there). */
+const AIR_FADING = { quick: 0.85, slowHours: 60 } as const;
+const CLOUD_FADING = { quick: 0.75, slowHours: 24 } as const;
+
 interface Trained {
   readonly atHour: number;
   readonly leads: number;
@@ -50,9 +54,9 @@ function train(config: SiteConfig, book: Book, atHour: number, leads: number): T
   return {
     atHour,
     leads,
-    outdoor: fitAnomaly(outdoorC, prior, dewC, leads),
-    dew: fitAnomaly(dewC, flat(Math.min(...prior)), null, leads),
-    clearness: fitAnomaly(clearness, flat(USUAL_CLEARNESS), null, leads),
+    outdoor: fitAnomaly(outdoorC, prior, dewC, AIR_FADING, leads),
+    dew: fitAnomaly(dewC, flat(Math.min(...prior)), null, AIR_FADING, leads),
+    clearness: fitAnomaly(clearness, flat(USUAL_CLEARNESS), null, CLOUD_FADING, leads),
   };
 }
 

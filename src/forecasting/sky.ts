@@ -3,7 +3,7 @@
  * power; without panels from the daily range of temperature, which is wide under a clear sky.
  */
 import type { SiteConfig } from '../config.ts';
-import { quantile } from '../numerics/quantile.ts';
+import { weightedQuantile } from '../numerics/quantile.ts';
 import {
   clearSkyGhiWPerM2,
   extraterrestrialWPerM2,
@@ -28,6 +28,8 @@ const LEAST_CLEAR_W_PER_M2 = 40;
 export const MOST_CLEARNESS = 1.2;
 /** Days that show what the panels give under a clear sky. */
 const SHOWING_DAYS = 30;
+/** Newer days show better: the sun's path moves over a plane that the file may not tell rightly. */
+const SHOWING_FADE_DAYS = 10;
 /** Power of panels under 1000 W/m² over their rating: inverter, heat and dirt (common practice, no source). */
 const USUAL_YIELD = 0.8;
 
@@ -54,18 +56,28 @@ export function clearSkyOf(config: SiteConfig, hour: number): ClearSky {
 export function panelScale(config: SiteConfig, lines: readonly HourLine[]): Float64Array | null {
   const rated = config.power.island ? (config.power.island.panelsW / 1000) * USUAL_YIELD : null;
   const last = lines.at(-1)?.hour ?? 0;
-  const byHour: number[][] = Array.from({ length: 24 }, () => []);
+  const byHour: Seen[] = Array.from({ length: 24 }, () => ({ ratios: [], weights: [] }));
+  const all: Seen = { ratios: [], weights: [] };
   for (const line of lines) {
     if (line.panelW === null || line.clearOnPanelsWPerM2 < LEAST_CLEAR_W_PER_M2) continue;
-    if (line.hour > last - SHOWING_DAYS * 24) {
-      byHour[hourOfDay(line.hour)].push(Math.max(0, line.panelW) / line.clearOnPanelsWPerM2);
+    const ageDays = (last - line.hour) / 24;
+    if (ageDays > SHOWING_DAYS) continue;
+    for (const seen of [byHour[hourOfDay(line.hour)], all]) {
+      seen.ratios.push(Math.max(0, line.panelW) / line.clearOnPanelsWPerM2);
+      seen.weights.push(Math.exp(-ageDays / SHOWING_FADE_DAYS));
     }
   }
-  const all = byHour.flat();
-  if (all.length === 0 && !rated) return null;
-  const overall = all.length >= 24 ? quantile(all, 0.9) : (rated ?? Math.max(...all));
-  return Float64Array.from(byHour, (ratios) => (ratios.length >= 5 ? quantile(ratios, 0.9) : overall));
+  if (all.ratios.length === 0 && !rated) return null;
+  const overall = all.ratios.length >= 24 ? clearRatio(all) : (rated ?? Math.max(...all.ratios));
+  return Float64Array.from(byHour, (seen) => (seen.ratios.length >= 5 ? clearRatio(seen) : overall));
 }
+
+interface Seen {
+  readonly ratios: number[];
+  readonly weights: number[];
+}
+
+const clearRatio = ({ ratios, weights }: Seen): number => weightedQuantile(ratios, weights, 0.9);
 
 /** Clearness of each line from panel power; null at night and where no power was heard. */
 function panelClearness(lines: readonly HourLine[], scale: Float64Array): (number | null)[] {

@@ -15,6 +15,7 @@ import { HOUR_MS } from '../../src/time.ts';
 import { cabinSite, MIDSUMMER_MS, record } from './site.ts';
 
 const FIRST = MIDSUMMER_MS / HOUR_MS;
+const FADING = { quick: 0.85, slowHours: 60 };
 const flat = Array.from({ length: 24 }, () => 20);
 
 /** A daily wave with offsets of each day that keep 60 % of themselves from one day to the next. */
@@ -61,7 +62,7 @@ describe('bins', () => {
 describe("today's offset", () => {
   it('lets a warm day fade as days of this site do', () => {
     const series = wave(40, 7);
-    const model = fitAnomaly(series, flat, null, 36);
+    const model = fitAnomaly(series, flat, null, FADING, 36);
     const warm = {
       firstHour: FIRST,
       values: [...series.values.slice(0, -24), ...series.values.slice(-24).map((v) => (v ?? 0) + 5)],
@@ -79,7 +80,7 @@ describe("today's offset", () => {
     const whole = wave(60, 9);
     for (let day = 35; day < 59; day += 1) {
       const seen = { firstHour: FIRST, values: whole.values.slice(0, day * 24) };
-      const model = fitAnomaly(seen, flat, null, 24);
+      const model = fitAnomaly(seen, flat, null, FADING, 24);
       const ahead = predictAnomaly(model, seen, null);
       for (let i = 0; i < 24; i += 1) {
         const came = whole.values[day * 24 + i] ?? 0;
@@ -97,7 +98,7 @@ describe("today's offset", () => {
       firstHour: FIRST,
       values: [...wave(10, 3).values, ...Array.from({ length: 30 }, () => null)],
     };
-    const model = fitAnomaly(gap, flat, null, 3);
+    const model = fitAnomaly(gap, flat, null, FADING, 3);
     expect(Array.from(predictAnomaly(model, gap, null))).toEqual(
       [0, 1, 2].map((lead) => model.bins[(10 * 24 + 30 + lead) % 24]),
     );
@@ -138,7 +139,7 @@ describe("a hub's forecast", () => {
         outdoorC: leads.map((c) => c - ownOff),
         hubC: leads.map((c) => c - hubOff),
         dewC: [],
-        clearness: [],
+        sunYield: [],
       };
     });
 
@@ -176,7 +177,7 @@ const happened = (error: number) => ({
   disturbance: () => 20,
 });
 
-const issue = (hour: number): Issue => ({ hour, outdoorC: [], dewC: [], clearness: [], hubC: null });
+const issue = (hour: number): Issue => ({ hour, outdoorC: [], dewC: [], sunYield: [], hubC: null });
 
 const draw = (seed: number) => drawTrajectories([], happened(0), FIRST, 36, 400, createRandom(seed));
 
