@@ -5,10 +5,11 @@ import type { PointStatus } from '../mqtt/intake.ts';
 import { bankLimits } from '../plant/bank.ts';
 import { pointSpec, valueOf, type LivePoints } from '../points.ts';
 import { CAUTION } from '../reports/caution.ts';
-import type { NightSheet } from '../reports/night-schema.ts';
-import { readSheet } from '../reports/night-schema.ts';
+import { driftOf } from '../reports/drift.ts';
+import { readSheet, type NightSheet } from '../reports/night-schema.ts';
 import { renderCsv } from '../reports/render-csv.ts';
 import { renderHtml } from '../reports/render-html.ts';
+import type { CycleRecord } from '../record.ts';
 import { HOUR_MS, nightAt, type Clock } from '../time.ts';
 import type { InterlockRow, NightRow, NowView, PointRow, WebSource, WishPreview } from '../web/source.ts';
 import { INTERLOCKS } from '../dispatch/interlocks.ts';
@@ -30,7 +31,14 @@ export function pageSource({ daemon, parts, version }: PageSourceOptions): WebSo
     now: () => nowView({ daemon, parts, version }, clock),
     records: (fromMs, toMs) => store.recordsBetween(fromMs, toMs),
     plansBetween: (fromMs, toMs) => store.plansBetween(fromMs - 1, toMs),
-    nights: (from, to) => ({ rows: sheets(from, to).map(nightRow), drifts: [] }),
+    nights: (from, to) => ({
+      rows: sheets(from, to).map(nightRow),
+      // what drifts shows only over weeks, so it is read from all nights, whichever are looked at
+      drifts: driftOf(sheets('0000-00-00', to)).map(({ since, sentence, look }) => ({
+        sinceDate: since,
+        sentence: `${sentence} ${look}`,
+      })),
+    }),
     night: (date) => storedSheet(store, date),
     nightHtml: (date) => {
       const sheet = storedSheet(store, date);
@@ -100,7 +108,11 @@ function nowView({ daemon, parts, version }: PageSourceOptions, clock: Clock): N
     helpsMost: estimate?.helpsMost ?? null,
     points: intake.status().map((status) => pointRow(status, live, nowMs, estimate?.probes ?? [])),
     learned: estimate?.learned ?? [],
-    interlocks: interlockRows(view.last?.spoken ?? [], parts.actuators.faults(live, nowMs)),
+    interlocks: interlockRows(
+      view.last?.spoken ?? [],
+      view.last?.record ?? null,
+      parts.actuators.faults(live, nowMs),
+    ),
     cautions: [CAUTION],
     health: health(daemon, parts),
   };
@@ -151,13 +163,22 @@ function whyUnused(status: PointStatus): string {
   return 'The last value is too old to be used.';
 }
 
+/** The compressor's own times are no rows of the table: they hold back what was asked, whatever speaks. */
+const TIMES = ['minimum on time', 'minimum off time'];
+
 function interlockRows(
   spoken: readonly { id: string; sentence: string }[],
+  record: CycleRecord | null,
   faults: readonly ActuatorFault[],
 ): InterlockRow[] {
-  const rows = INTERLOCKS.map(({ id }) => {
+  const rows = [...INTERLOCKS.map(({ id }) => id), ...TIMES].map((id) => {
     const word = spoken.find((one) => one.id === id);
-    return { name: id, speaks: word !== undefined, sentence: word?.sentence ?? '' };
+    const held = record !== null && record.heldBackBy.split(', ').includes(id);
+    return {
+      name: id,
+      speaks: word !== undefined || held,
+      sentence: word?.sentence ?? (held ? record.reason : ''),
+    };
   });
   return [
     ...rows,
