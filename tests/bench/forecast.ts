@@ -7,7 +7,7 @@
 import { siteSchema, type SiteConfig } from '../../src/config.ts';
 import { expectedHome } from '../../src/comfort-hours.ts';
 import { ensembleQuantile } from '../../src/forecasting/ensemble.ts';
-import { createForecaster, type Forecaster } from '../../src/forecasting/forecaster.ts';
+import { createForecaster, type Forecaster, type HubPoint } from '../../src/forecasting/forecaster.ts';
 import type { Observed } from '../../src/forecasting/hours.ts';
 import { coverage, crps, cvRmsePct, nmbePct } from '../../src/forecasting/scores.ts';
 import { createRandom, type Random } from '../../src/numerics/random.ts';
@@ -19,6 +19,8 @@ import { QUARTER_MS, runTruth } from './forecast-truth.ts';
 
 const ISSUE_MS = 3 * HOUR_MS;
 const LEARN_DAYS = 30;
+/** Days of the runs with a hub. */
+const FLOOR_DAYS = 45;
 
 interface Pair {
   readonly lead: number;
@@ -71,8 +73,26 @@ export interface Walk {
   readonly days: number;
 }
 
+/**
+ * What a hub says beside the own history. `known` gives the measured temperature itself: what is left is the error of
+ * cabin, sun and people, the floor under any forecast. `made-up` is the measured temperature with a bias of 1.5 K and a
+ * wandering error of about 1.5 K a day ahead; no real forecast of these days is at hand.
+ */
+type Hub = 'none' | 'known' | 'made-up';
+
+function hubSays(hub: Hub, file: WeatherFile, nowMs: number, random: Random): HubPoint[] | null {
+  if (hub === 'none') return null;
+  const draw = random.fork(`hub ${nowMs}`);
+  let offK = 0.5 * draw.normal();
+  return Array.from({ length: 42 }, (_, i) => {
+    const atMs = nowMs + (i - 2) * HOUR_MS;
+    offK = 0.97 * offK + 0.4 * draw.normal();
+    return { atMs, temperatureC: file.at(atMs).outdoorC + (hub === 'known' ? 0 : 1.5 + offK) };
+  });
+}
+
 /** One walk through a file. */
-export function walkFile(file: WeatherFile, random: Random, days: number): Walk {
+export function walkFile(file: WeatherFile, random: Random, days: number, hub: Hub = 'none'): Walk {
   const config = siteAt(file.place);
   const scoreFrom = Date.UTC(file.year, 5, 1, 6);
   const fromMs = scoreFrom - LEARN_DAYS * DAY_MS;
@@ -90,7 +110,7 @@ export function walkFile(file: WeatherFile, random: Random, days: number): Walk 
     const nowMs = quarter.startMs;
     if (nowMs >= toMs) break;
     if (nowMs % ISSUE_MS === 0 && i > 0) {
-      const forecast = forecaster.forecast(nowMs, null);
+      const forecast = forecaster.forecast(nowMs, hubSays(hub, file, nowMs, noise));
       if (nowMs >= scoreFrom) {
         const hour = i / 4;
         const perHour = HOUR_MS / forecast.slotMs;
@@ -231,6 +251,12 @@ function scorePanels(
   }
 }
 
+const baselineCvRmsePct = (pairs: readonly Pair[], forecast: (pair: Pair) => number): number =>
+  cvRmsePct(
+    pairs.map(forecast),
+    pairs.map((pair) => pair.observed),
+  ) ?? -1;
+
 interface Score {
   readonly cvRmsePct: number;
   readonly nmbePct: number;
@@ -280,7 +306,7 @@ export function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
   const random = createRandom(seed);
   const files = [newark(), greensboro()].filter((file) => file !== null);
   const walks = files.map((file) => ({ file, ...walkFile(file, random.fork(file.name), quick ? 20 : 100) }));
-  const panels = walkPanels(quick ? 15 : 70);
+  const panels = walkPanels(quick ? 10 : 70);
   const rows: (string | number)[][] = [];
   for (const { file, load, outdoor } of walks) {
     rows.push(rowOf(`${file.name}: load, W`, load));
@@ -299,10 +325,34 @@ export function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
     }
     rows.push(rowOf(`${file.name}: outdoor, °C`, outdoor));
   }
+  const floors = quick
+    ? []
+    : files.map((file) => walkFile(file, random.fork(file.name), FLOOR_DAYS, 'known').load);
+  const hubs = quick
+    ? []
+    : files.map((file) => walkFile(file, random.fork(file.name), FLOOR_DAYS, 'made-up').load);
+  for (const [i, file] of files.entries()) {
+    if (quick) break;
+    rows.push(rowOf(`${file.name}: load, outdoor temperature known`, floors[i]));
+    rows.push(rowOf(`${file.name}: load, made-up hub of 1.5 K`, hubs[i]));
+  }
   if (panels) rows.push(rowOf('Golden 2016: panels, W', panels));
   const all = walks.flatMap((walk) => walk.load);
   const total = all.length > 0 ? scoreOf(all) : null;
   const panelScore = panels && scoreOf(panels);
+  const perFile = Object.fromEntries(
+    walks.flatMap(({ file, load }) => {
+      const score = scoreOf(load);
+      const key = file.name.split(' ')[0].toLowerCase();
+      return [
+        [`${key}LoadCvRmsePct`, score.cvRmsePct],
+        [`${key}LoadNmbePct`, score.nmbePct],
+        [`${key}SkillVsYesterdayPct`, score.skillVsYesterdayPct],
+        [`${key}SkillVsBinsPct`, score.skillVsBinsPct],
+        [`${key}Coverage80Pct`, score.coverage80Pct],
+      ];
+    }),
+  );
   const result: BenchResult = {
     title: 'Forecast of the load and of panel power, 36 h ahead, issued every 3 h on the past alone',
     budget:
@@ -326,6 +376,12 @@ export function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
       coverage80Pct: total?.coverage80Pct ?? 'no data',
       panelSkillVsYesterdayPct: panelScore?.skillVsYesterdayPct ?? 'no data',
       panelCoverage80Pct: panelScore?.coverage80Pct ?? 'no data',
+      loadCvRmseTemperatureKnownPct:
+        quick || floors.length === 0 ? 'not run' : scoreOf(floors.flat()).cvRmsePct,
+      loadCvRmseMadeUpHubPct: quick || hubs.length === 0 ? 'not run' : scoreOf(hubs.flat()).cvRmsePct,
+      yesterdayCvRmsePct: total ? baselineCvRmsePct(all, (pair) => pair.yesterday) : 'no data',
+      binsCvRmsePct: total ? baselineCvRmsePct(all, (pair) => meanOf(pair.bins)) : 'no data',
+      ...perFile,
       scoredDays: walks[0]?.days ?? 0,
     },
   };
