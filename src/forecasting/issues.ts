@@ -5,9 +5,9 @@
 import { hourOfDay } from './bins.ts';
 import type { HoursAhead } from './own-weather.ts';
 
-/** Hours between issues that are kept, and how long they are. */
+/** Hours between issues that are kept, and how long they are: errors of last season would be too wide or too narrow. */
 export const ISSUE_EVERY_HOURS = 3;
-export const ISSUE_DAYS = 45;
+export const ISSUE_DAYS = 30;
 
 export interface Issue {
   /** Last whole hour known at issue; lead 1 is the hour after it. */

@@ -6,7 +6,7 @@
  */
 import type { TariffConfig } from '../config.ts';
 import { RimeholdError } from '../errors.ts';
-import { DAY_MS, MINUTE_MS, fromWallMs, utcOffsetMs } from '../time.ts';
+import { DAY_MS, MINUTE_MS, fromWallMs, minuteOfClock, utcOffsetMs } from '../time.ts';
 
 export interface Stretch {
   readonly startMs: number;
@@ -23,11 +23,6 @@ type Period = TariffConfig['periods'][number];
 
 const WEEKDAYS = ['SU', 'MO', 'TU', 'WE', 'TH', 'FR', 'SA'] as const;
 
-/** Minutes of the day of an `HH:MM` reading. */
-export function minuteOf(clock: string): number {
-  return Number(clock.slice(0, 2)) * 60 + Number(clock.slice(3, 5));
-}
-
 /**
  * The stretches of a local clock range that begin on local days `dayMs` for which `holds` is true and that overlap
  * [fromMs, toMs). `dayMs` is the local midnight written as if it were UTC. `to` at or before `from` is on the next day.
@@ -40,8 +35,8 @@ export function clockStretches(
   toMs: number,
   holds: (dayMs: number) => boolean = () => true,
 ): Stretch[] {
-  const start = minuteOf(from);
-  const end = minuteOf(to) + (minuteOf(to) <= start ? 24 * 60 : 0);
+  const start = minuteOfClock(from);
+  const end = minuteOfClock(to) + (minuteOfClock(to) <= start ? 24 * 60 : 0);
   const firstDay = Math.floor((fromMs + utcOffsetMs(zone, fromMs)) / DAY_MS) * DAY_MS - 2 * DAY_MS;
   const stretches: Stretch[] = [];
   for (let dayMs = firstDay; dayMs < toMs + 2 * DAY_MS; dayMs += DAY_MS) {

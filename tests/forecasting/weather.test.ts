@@ -201,10 +201,10 @@ describe('error trajectories', () => {
     expect(draw(5)[3].outdoorC).not.toEqual(draw(6)[3].outdoorC);
   });
 
-  it('are kept one every three hours for 45 days', () => {
+  it('are kept one every three hours for 30 days', () => {
     let kept: Issue[] = [];
     for (let hour = 0; hour < 60 * 24; hour += 1) kept = keepIssue(kept, issue(hour));
-    expect(kept).toHaveLength(45 * 8);
+    expect(kept).toHaveLength(30 * 8);
   });
 });
 
