@@ -2,7 +2,16 @@
 import type { NightValue } from './change-point.ts';
 import type { FigureName, NightSheet } from './night-schema.ts';
 
-export const SERIES = ['leak', 'cop', 'machine-power', 'coil', 'flow', 'pump-power', 'load'] as const;
+export const SERIES = [
+  'leak',
+  'cop',
+  'machine-power',
+  'coolant',
+  'coil',
+  'flow',
+  'pump-power',
+  'load',
+] as const;
 export type SeriesName = (typeof SERIES)[number] | `probe ${string}`;
 
 export interface Series {
@@ -15,7 +24,8 @@ export interface Series {
 }
 
 interface Spec {
-  readonly of: (sheet: NightSheet) => number | null;
+  /** `anchored` says whether what the learner holds has been tried on the plant of late. */
+  readonly of: (sheet: NightSheet, anchored: boolean) => number | null;
   readonly weather: (sheet: NightSheet) => readonly (number | null)[];
   readonly leastNoise: number;
   readonly leastStep?: number;
@@ -33,6 +43,18 @@ const figure = (name: FigureName) => (sheet: NightSheet) => sheet.figures[name];
 const learned = (sheet: NightSheet, name: string): number | null =>
   sheet.learned.find((one) => one.name === name)?.value ?? null;
 
+/** A bank that ran out tells the learner what it had wrong, all at once: until then its figures are beliefs. */
+const RAN_OUT_KWH = 0.3;
+/** Nights after that for which they are taken for the plant's own. */
+const ANCHORED_NIGHTS = 7;
+
+/** For each sheet, whether the bank ran out on one of the last nights, this one left out: its correction is under way. */
+function anchoredNights(sheets: readonly NightSheet[]): boolean[] {
+  return sheets.map((_, i) =>
+    sheets.slice(Math.max(0, i - ANCHORED_NIGHTS), i).some((sheet) => sheet.ice.lowestKwh < RAN_OUT_KWH),
+  );
+}
+
 const outdoor = (sheet: NightSheet): readonly (number | null)[] => [sheet.weather.outdoorMeanC];
 /** Thicker ice and warmer air both make the machine work harder: where the charge began, how far it went, and the air meanwhile. */
 const charge = (sheet: NightSheet): readonly (number | null)[] => [
@@ -47,21 +69,32 @@ const charge = (sheet: NightSheet): readonly (number | null)[] => [
  */
 const SPECS: Readonly<Record<(typeof SERIES)[number], Spec>> = {
   leak: {
-    of: (sheet) => learned(sheet, 'heat-leak') ?? sheet.figures.heatLeakWPerK,
+    of: (sheet, anchored) => (anchored ? (learned(sheet, 'heat-leak') ?? sheet.figures.heatLeakWPerK) : null),
     weather: outdoor,
     leastNoise: 0.03,
     // Among the learned figures the one that wanders most; what soaks an insulation moves it far more.
     leastStep: Math.log(1.3),
   },
   cop: {
-    of: (sheet) => learned(sheet, 'charging-factor') ?? sheet.figures.copAtRating,
+    of: (sheet, anchored) =>
+      anchored ? (learned(sheet, 'charging-factor') ?? sheet.figures.copAtRating) : null,
     weather: (sheet) => [sheet.weather.outdoorMeanC, sheet.conditions.chargeInventoryPct],
     leastNoise: 0.015,
   },
   'machine-power': { of: figure('machinePowerAtRatingW'), weather: charge, leastNoise: 0.015 },
-  coil: { of: figure('coilNtu'), weather: outdoor, leastNoise: 0.02 },
+  coolant: {
+    of: figure('coolantBelowZeroK'),
+    weather: (sheet) => [sheet.conditions.chargeOutdoorC, sheet.conditions.chargeInventoryPct],
+    leastNoise: 0.02,
+  },
+  // Below the dew point the coil takes moisture too, and more heat with it: colder water, damper air.
+  coil: {
+    of: figure('coilNtu'),
+    weather: (sheet) => [sheet.conditions.dischargeLeavingC, sheet.conditions.dischargeHumidityPct ?? 0],
+    leastNoise: 0.02,
+  },
   flow: {
-    of: (sheet) => sheet.figures.flowLPerMin ?? learned(sheet, 'pump-flow'),
+    of: (sheet, anchored) => sheet.figures.flowLPerMin ?? (anchored ? learned(sheet, 'pump-flow') : null),
     weather: outdoor,
     leastNoise: 0.02,
   },
@@ -81,6 +114,7 @@ function rangeOf(sheet: NightSheet): number | null {
 /** Sheets in order of their nights, those of one plant. */
 export function seriesOf(sheets: readonly NightSheet[]): Series[] {
   const usable = sheets.filter((sheet) => sheet.coveredPct >= ENOUGH_PCT && sheet.clockDoubtfulMinutes < 60);
+  const anchored = anchoredNights(usable);
   const plant = SERIES.map((name): Series => {
     const { of, weather, leastNoise, leastStep = LEAST_RELATIVE_STEP } = SPECS[name];
     return {
@@ -88,8 +122,8 @@ export function seriesOf(sheets: readonly NightSheet[]): Series[] {
       relative: true,
       leastNoise,
       leastStep,
-      nights: usable.flatMap((sheet) => {
-        const value = of(sheet);
+      nights: usable.flatMap((sheet, i) => {
+        const value = of(sheet, anchored[i]);
         const known = weather(sheet).filter((one) => one !== null);
         if (value === null || !(value > 0) || known.length < weather(sheet).length) return [];
         return [{ date: sheet.night.date, value: Math.log(value), weather: known }];

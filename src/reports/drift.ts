@@ -111,7 +111,8 @@ const BROUGHT_ABOUT_BY: Readonly<Partial<Record<SeriesName, readonly SeriesName[
   coil: ['pump-power'],
   'pump-power': ['flow'],
   'machine-power': ['cop'],
-  leak: ['cop', 'machine-power'],
+  coolant: ['machine-power'],
+  leak: ['cop', 'coolant', 'machine-power'],
 };
 
 function explainedAway(one: Told, all: readonly Told[], dates: readonly string[]): boolean {
@@ -150,6 +151,8 @@ function signatureOf(one: Told, all: readonly Told[], dates: readonly string[]):
       return alongside(one, 'machine-power', all, dates) > 0 ? 'dirty-condenser' : 'low-refrigerant';
     case 'machine-power':
       return step > 0 ? 'dirty-condenser' : 'low-refrigerant';
+    case 'coolant':
+      return step < 0 ? 'low-refrigerant' : null;
     case 'coil':
       // Water that comes back warmer than it did has passed the coil more slowly.
       return step < 0 ? 'fouled-coil' : 'tired-pump';
@@ -167,6 +170,7 @@ const FIGURE_WORDS: Readonly<Record<string, string>> = {
   leak: 'heat leak',
   cop: 'ice made per kWh',
   'machine-power': 'machine power at its rating',
+  coolant: 'coolant below 0 \u00b0C while charging',
   coil: 'transfer units of the coil',
   flow: 'melt-water flow',
   'pump-power': 'pump power',

@@ -16,6 +16,8 @@ const WATER_W_PER_K_PER_L_MIN = 4205 / 60;
 const LEAST_HOURS = 1;
 /** Under this inventory the shrinking ice itself lowers the conductance. */
 const STEADY_INVENTORY_PCT = 30;
+/** About half inventory, where the ice is neither thin nor thick. */
+const [HALF_PCT, NEAR_HALF_PCT] = [50, 15];
 /** Ice on hand below which a bank counts as having run out. */
 const LEAST_ICE_KWH = 0.3;
 /** Base of the degree-hours, below the comfort limit: below it a cabin needs no cooling (common practice, no source). */
@@ -41,7 +43,12 @@ export function figuresOf(site: SiteConfig, spans: readonly Span[]): Figures {
 }
 
 function machineFigures(site: SiteConfig, charging: readonly Span[]) {
-  const none = { copAtRating: null, iceMakingAtRatingW: null, machinePowerAtRatingW: null };
+  const none = {
+    copAtRating: null,
+    iceMakingAtRatingW: null,
+    machinePowerAtRatingW: null,
+    coolantBelowZeroK: null,
+  };
   const hours = hoursOf(charging);
   const outdoorC = meanOver(charging, (record) => record.outdoorC);
   if (!(hours >= LEAST_HOURS) || outdoorC === null) return none;
@@ -54,7 +61,20 @@ function machineFigures(site: SiteConfig, charging: readonly Span[]) {
     copAtRating: rounded((madeW / usedW) * lift, 4),
     iceMakingAtRatingW: rounded(madeW * Math.sqrt(lift), 2),
     machinePowerAtRatingW: rounded(usedW / Math.sqrt(lift), 2),
+    // What drives the heat out of the bank: a machine that takes less leaves its coolant warmer. Thick ice asks for
+    // colder coolant, so only about half inventory counts.
+    coolantBelowZeroK: roundedOrNull(
+      median(charging.flatMap(({ record }) => depressionAtHalf(record) ?? [])),
+      3,
+    ),
   };
+}
+
+function depressionAtHalf(record: CycleRecord): number | null {
+  const { coolantSupplyC, inventoryPct } = record;
+  return coolantSupplyC === null || !(Math.abs(inventoryPct - HALF_PCT) < NEAR_HALF_PCT)
+    ? null
+    : -coolantSupplyC;
 }
 
 function loopFigures(site: SiteConfig, flowing: readonly Span[]) {
@@ -117,6 +137,14 @@ export function conditionsOf(spans: readonly Span[]): NightSheet['conditions'] {
     ),
     chargeInventoryPct: roundedOrNull(
       meanOver(charging, (record) => record.inventoryPct),
+      1,
+    ),
+    dischargeLeavingC: roundedOrNull(
+      meanOver(flowing, (record) => record.leavingWaterC),
+      2,
+    ),
+    dischargeHumidityPct: roundedOrNull(
+      meanOver(flowing, (record) => record.roomHumidityPct),
       1,
     ),
     dischargeInventoryPct: roundedOrNull(

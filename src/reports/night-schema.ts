@@ -129,6 +129,7 @@ export const FIGURES = [
   'copAtRating',
   'iceMakingAtRatingW',
   'machinePowerAtRatingW',
+  'coolantBelowZeroK',
   'meltWPerK',
   'coilNtu',
   'flowLPerMin',
@@ -228,7 +229,13 @@ export const nightSheetSchema = z
       .record(z.enum(FIGURES), maybe)
       .describe('what drift is read from, weather taken out as far as one night allows'),
     conditions: z
-      .strictObject({ chargeOutdoorC: maybe, chargeInventoryPct: maybe, dischargeInventoryPct: maybe })
+      .strictObject({
+        chargeOutdoorC: maybe,
+        chargeInventoryPct: maybe,
+        dischargeInventoryPct: maybe,
+        dischargeLeavingC: maybe,
+        dischargeHumidityPct: maybe,
+      })
       .describe('under which the figures were found'),
     trace,
     caution: z.string(),

@@ -73,10 +73,13 @@ function sheetOf(
     ...base,
     night: { ...base.night, date: new Date(START_MS + night * DAY_MS).toISOString().slice(0, 10) },
     weather: { outdoorMeanC: outdoorC, outdoorMaxC: outdoorC + 8, outdoorMinC: outdoorC - 7 },
+    ice: { ...base.ice, lowestKwh: night % 3 === 0 ? 0 : 1 + (night % 7) / 10 },
     conditions: {
       ...base.conditions,
       chargeOutdoorC: outdoorC - 5,
       chargeInventoryPct: 55 + 3 * Math.sin(night),
+      dischargeLeavingC: 4 + Math.sin(0.7 * night),
+      dischargeHumidityPct: 48 + 4 * Math.sin(1.3 * night),
     },
     figures: {
       ...base.figures,
@@ -87,6 +90,7 @@ function sheetOf(
       loadPerDegree: scaled('load', 0.08),
       heatLeakWPerK: null,
       copAtRating: null,
+      coolantBelowZeroK: scaled('coolant', 8),
     },
     learned: [
       ...learnedFigure('heat-leak', scaled('leak', 2), 'W/K'),

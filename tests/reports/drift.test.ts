@@ -64,6 +64,7 @@ const QUIET: Noises = {
   leak: { sd: 0.03, rho: 0.2 },
   cop: { sd: 0.015, rho: 0.2 },
   'machine-power': { sd: 0.015, rho: 0.2 },
+  coolant: { sd: 0.02, rho: 0.2 },
   coil: { sd: 0.03, rho: 0.2 },
   flow: { sd: 0.02, rho: 0.2 },
   'pump-power': { sd: 0.01, rho: 0.2 },
@@ -86,6 +87,7 @@ describe('signatures', () => {
     ['wet-insulation', { leak: Math.log(1.5) }],
     ['dirty-condenser', { cop: DOWN, 'machine-power': UP }],
     ['low-refrigerant', { cop: DOWN }],
+    ['low-refrigerant', { coolant: DOWN }],
     ['fouled-coil', { coil: DOWN }],
     ['tired-pump', { flow: DOWN, coil: -DOWN }],
     ['lying-probe', { 'probe leaving-water': 0.5 }],
@@ -121,6 +123,14 @@ describe('signatures', () => {
     const healed = driftingSheets({ ...story({}), nights: 110, seed: 5 }).slice(60);
     const found = driftOf([...sheets, ...healed]);
     expect(found.map((one) => one.signature)).toEqual(['wet-insulation', null]);
+  });
+
+  it('does not take a learner that is put right for a plant that changed', () => {
+    const sheets = driftingSheets(story({ cop: DOWN })).map((sheet, i) => ({
+      ...sheet,
+      ice: { ...sheet.ice, lowestKwh: i < 60 ? 4 : 0 },
+    }));
+    expect(driftOf(sheets)).toEqual([]);
   });
 
   it('says nothing on quiet nights, on few nights, on none', () => {
