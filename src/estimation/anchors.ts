@@ -6,13 +6,15 @@ import { marginal } from './report.ts';
 import { X } from './layout.ts';
 import type { Heard } from './update.ts';
 
+/** Charging is stopped at the bank's limit: more than this, as a fraction of it, is hardly ever there. */
+const MOST_ICE = 1.04;
 /** Level this near the full level counts as full, mm. */
 const LEVEL_NEAR_MM = 1;
 /** The machine must have run this long before its coolant means a full bank. */
 const SETTLED_S = 1200;
 
 export function anchorsOf(core: Core, drive: Drive, nowMs: number): Heard['anchors'] {
-  return [...electrode(core, nowMs), ...full(core, drive, nowMs)];
+  return [{ ice: MOST_ICE, side: 'at-most' }, ...electrode(core, nowMs), ...full(core, drive, nowMs)];
 }
 
 /** A change of the electrode is the moment itself; between changes it tells which side the ice is on. */

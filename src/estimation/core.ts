@@ -41,6 +41,7 @@ export interface Core {
   restingS: number;
   /** Probability of flow where only the leaving water tells. */
   flowChance: number;
+  leavingBeforeC: number | null;
   /** Measured over nominal flow, once a meter was heard. */
   meterRatio: number | null;
   electrode: boolean | null;
@@ -97,7 +98,8 @@ export function newCore(config: SiteConfig, startMs: number, stepMs: number): Co
     chargingS: 0,
     flowingS: 0,
     restingS: 0,
-    flowChance: 0.3,
+    flowChance: 0.1,
+    leavingBeforeC: null,
     meterRatio: null,
     electrode: null,
     fullSaid: false,

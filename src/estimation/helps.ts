@@ -14,7 +14,7 @@ interface Trial {
 }
 
 /** Narrowing of the deviation below which an instrument is not worth naming. */
-const WORTH_NAMING = 0.05;
+const WORTH_NAMING = 0.01;
 
 function trials(models: PlantModels, belief: Belief): Trial[] {
   const fullMm = levelRiseMm(models.bank, models.bank.mostIceKg);

@@ -111,7 +111,7 @@ function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [n
     power: [0, 0.12, SLOW_S],
     powerIce: [0, 0.1, SLOW_S],
     enteringOffset: [0, 0.3, SLOW_S],
-    levelZero: [level ?? 500, level === null ? 300 : 6, 60 * DAY_S],
+    levelZero: [level ?? 500, level === null ? 300 : 4, 60 * DAY_S],
     leavingOffset: [0, 0.3, SLOW_S],
     topOffset: [0, 0.3, SLOW_S],
     middleOffset: [0, 0.3, SLOW_S],
@@ -133,5 +133,8 @@ export function priorsFor(bank: BankModel): Priors {
 /** Width of the coolant's rise through the coil that is guessed, K at the nameplate's ice making; no source. */
 export const COOLANT_RISE_K = 3;
 
-/** What a flow meter may err by, as a logarithm (common practice, no source). */
-export const METER_SD = 0.025;
+/**
+ * What a flow meter may err by, as a logarithm (common practice, no source); more where the loop carries brine, whose
+ * heat capacity depends on a mixture that the site file does not know: 3,850 to 4,200 J/(kg K).
+ */
+export const METER_SD = { water: 0.025, brine: 0.06 };

@@ -32,10 +32,12 @@ interface Stored {
 
 const TOLD = [
   'flows',
+  'predictedLeavingC',
   'chargingS',
   'flowingS',
   'restingS',
   'flowChance',
+  'leavingBeforeC',
   'meterRatio',
   'electrode',
   'fullSaid',
@@ -66,19 +68,20 @@ function storeBelief({ logWeight, mean, cov }: Belief): StoredBelief {
   return { logWeight, mean: [...mean], cov: lower };
 }
 
-function restoreBelief(stored: StoredBelief): Belief | null {
-  const mean = Float64Array.from(stored.mean);
+function restoreBelief(stored: Partial<StoredBelief>): Belief | null {
+  const { logWeight = 0, mean: means = [], cov: lower = [] } = stored;
+  const mean = Float64Array.from(means);
   const cov = new Float64Array(STATES * STATES);
-  if (mean.length !== STATES || stored.cov.length !== TRIANGLE) return null;
+  if (mean.length !== STATES || lower.length !== TRIANGLE) return null;
   let next = 0;
   for (let i = 0; i < STATES; i++) {
     for (let j = 0; j <= i; j++) {
-      cov[i * STATES + j] = stored.cov[next];
-      cov[j * STATES + i] = stored.cov[next++];
+      cov[i * STATES + j] = lower[next];
+      cov[j * STATES + i] = lower[next++];
     }
   }
   const whole = mean.every(Number.isFinite) && cov.every(Number.isFinite);
-  return whole ? { logWeight: stored.logWeight, mean, cov } : null;
+  return whole ? { logWeight, mean, cov } : null;
 }
 
 /**
@@ -102,5 +105,7 @@ export function restoreInto(core: Core, memory: unknown): void {
   core.folder.restore((stored.folder ?? []).map(([p, v, at]) => [p, v, at ?? Number.NEGATIVE_INFINITY]));
   if (stored.capacity) core.capacity = stored.capacity;
   if (stored.told) Object.assign(core, stored.told);
-  if (core.meterRatio !== null) core.priors.sd[X.flow] = METER_SD;
+  if (core.meterRatio !== null) {
+    core.priors.sd[X.flow] = core.models.internal ? METER_SD.brine : METER_SD.water;
+  }
 }

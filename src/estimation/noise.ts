@@ -14,6 +14,8 @@ export interface Alike {
 
 export const NOISE = {
   waterFlowing: { fresh: 0.05, alike: 0.15, lastsS: 1500 },
+  /** A probe at some height in moving water: where the front stands is known less well than what leaves. */
+  heightFlowing: { fresh: 0.06, alike: 0.4, lastsS: 3600 },
   /** Coolant from an internal-melt coil, which has next to no mass of its own. */
   coilFlowing: { fresh: 0.05, alike: 0.12, lastsS: 400 },
   waterResting: { fresh: 0.05, alike: 0.25, lastsS: 3600 },
@@ -25,7 +27,7 @@ export const NOISE = {
   /** Logarithm of power. */
   power: { fresh: 0.01, alike: 0.05, lastsS: 3600 },
   /** mm. */
-  level: { fresh: 1, alike: 2, lastsS: 3600 },
+  level: { fresh: 2, alike: 1, lastsS: 2400 },
   /** Inventory as a fraction, at an anchor. */
   anchor: { fresh: 0.02, alike: 0.05, lastsS: 3600 },
 } as const satisfies Record<string, Alike>;

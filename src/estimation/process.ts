@@ -58,6 +58,8 @@ export const newFlows = (): Flows => ({ chargingW: 0, loopW: 0, leakW: 0 });
 const LEAST_LIQUID = 0.06;
 /** Time in which the coolant within an internal-melt coil is renewed, s; no source. */
 const COIL_CONTENT_S = 90;
+/** Least melt conductance of an internal-melt coil with ice round it, of that at half inventory; measured tank: a half. */
+const LEAST_SHARE = 0.45;
 /** A coil that warms or cools water alone does so by natural convection: part of the start of freezing. No source. */
 const BARE_PART = 0.6;
 
@@ -311,7 +313,13 @@ function throughCoil(models: PlantModels, x: Float64Array, drive: Drive, dt: num
 function coilConductanceWPerK(models: PlantModels, x: Float64Array, freezing: boolean): number {
   if (!(x[X.ice] > 0)) return BARE_PART * freezeWPerKOf(models, x);
   if (freezing) return freezeWPerKOf(models, x);
-  return Math.max(0.3 * BARE_PART * freezeWPerKOf(models, x), meltWPerKOf(models, x));
+  // Ice that recedes from the tube leaves water whose resistance grows as a logarithm: it cannot grow far.
+  const least = LEAST_SHARE * models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
+  return Math.max(
+    least * Math.min(1, x[X.ice] / 0.03),
+    BARE_PART * 0.5 * freezeWPerKOf(models, x),
+    meltWPerKOf(models, x),
+  );
 }
 
 /** Takes the machine's heat out: from the ice when there is some, from warm water first when there is little. */

@@ -76,28 +76,37 @@ export function runningOf(
   };
 }
 
-/** Mean time between changes of the pump, s, for telling flow by temperature. No source. */
-const DWELL_S = 5400;
-/** What one minute's leaving water can tell at most, as a logarithm of odds. */
-const MOST_EVIDENCE = 2.5;
+/** Mean length of a rest and of a run of the pump, s, for telling flow by temperature. No source. */
+const REST_S = 14_400;
+const RUN_S = 9000;
+/** What one step's leaving water can tell at most, as a logarithm of odds. */
+const MOST_EVIDENCE = 3;
+/** Change of a resting probe within a minute, in a pocket or on a pipe that takes the room's warmth, K. */
+const REST_SD_K = 0.1;
+
+/** What the leaving water tells in a step: what it read, read before, and would read with flow by each belief. */
+export interface LeavingStory {
+  readonly readC: number;
+  readonly beforeC: number;
+  readonly flowing: readonly { readonly weight: number; readonly leavingC: number }[];
+  readonly flowSdK: number;
+}
+
+const density = (x: number, sd: number): number => Math.exp(-0.5 * (x / sd) ** 2) / sd;
 
 /**
- * Probability of flow after a step (two-state hidden Markov filter): `restC` and `flowC` are what the leaving water
- * would read without and with flow, `readC` what it reads; null when it was not heard.
+ * Probability of flow after a step (two-state hidden Markov filter). A resting probe changes slowly, wherever it has
+ * drifted to; with flow it shows what the bank would send.
  */
-export function flowProbability(
-  before: number,
-  dtS: number,
-  readC: number | null,
-  restC: number,
-  flowC: number,
-  sdK: number,
-): number {
-  const change = 1 - Math.exp(-dtS / DWELL_S);
-  const prior = before * (1 - change) + (1 - before) * change;
-  if (readC === null) return prior;
-  const evidence = ((readC - restC) ** 2 - (readC - flowC) ** 2) / (2 * sdK * sdK);
-  const bounded = Math.max(-MOST_EVIDENCE, Math.min(MOST_EVIDENCE, evidence));
-  const odds = (prior / (1 - prior)) * Math.exp(bounded);
-  return odds / (1 + odds);
+export function flowProbability(before: number, dtS: number, story: LeavingStory | null): number {
+  const prior = before * Math.exp(-dtS / RUN_S) + (1 - before) * -Math.expm1(-dtS / REST_S);
+  if (story === null) return prior;
+  const rest = density(story.readC - story.beforeC, REST_SD_K) + 1e-4;
+  const flow = story.flowing.reduce(
+    (sum, { weight, leavingC }) => sum + weight * density(story.readC - leavingC, story.flowSdK),
+    1e-4,
+  );
+  const evidence = Math.max(-MOST_EVIDENCE, Math.min(MOST_EVIDENCE, Math.log(flow / rest)));
+  const odds = (prior / (1 - prior)) * Math.exp(evidence);
+  return Math.min(0.995, Math.max(0.005, odds / (1 + odds)));
 }

@@ -3,8 +3,8 @@ import { beliefFrom, type Belief } from './filter.ts';
 import { LAYERS, STATES, X, type Priors } from './layout.ts';
 
 /** Inventories that the first beliefs are centred on; the first of them is a bank without ice. */
-const START_ICE = [0, 0.12, 0.3, 0.5, 0.7, 0.9, 1.02];
-const START_SD = 0.09;
+const START_ICE = [0, 0.15, 0.4, 0.65, 0.9];
+const START_SD = 0.12;
 
 /** Beliefs from all-water to full, with the slow quantities of `slow` or of the priors. */
 export function openBeliefs(priors: Priors, slow: Belief | null): Belief[] {
@@ -27,7 +27,12 @@ const NEARLY_EMPTY = 0.02;
  * While water flows: what if the ice is gone that was believed in, or is there after all? One such idea at a time runs
  * along at little weight; readings raise it or let it go. A single Gaussian could not change its mind so far.
  */
-export function withIdea(beliefs: readonly Belief[], best: Belief, leavingC: number): Belief[] {
+export function withIdea(
+  beliefs: readonly Belief[],
+  best: Belief,
+  leavingC: number,
+  internal: boolean,
+): Belief[] {
   if (beliefs.length > 1) return [...beliefs];
   const idea: Belief = {
     logWeight: best.logWeight + IDEA,
@@ -37,6 +42,8 @@ export function withIdea(beliefs: readonly Belief[], best: Belief, leavingC: num
   if (best.mean[X.ice] > NEARLY_EMPTY) {
     restate(idea, X.ice, 0, 0.01);
     for (const layer of LAYERS) restate(idea, layer, Math.max(0, leavingC), 1.5);
+    // Ice in a coil's reach may be gone while the water beyond is still cold.
+    if (internal) restate(idea, X.top, 2.5, 2.5);
   } else {
     restate(idea, X.ice, 0.15, 0.1);
     for (const layer of LAYERS) restate(idea, layer, Math.max(0, Math.min(leavingC, best.mean[layer])), 1.5);

@@ -8,9 +8,9 @@ import { forget, predict, type Belief } from './filter.ts';
 import { LAYERS, METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
 import { tidy, weightsOf } from './mixture.ts';
 import { processNoise } from './noise.ts';
-import { advance, type Drive } from './process.ts';
+import { advance, newFlows, type Drive } from './process.ts';
 import { anchorsOf } from './anchors.ts';
-import { flowProbability, runningOf, type Running } from './running.ts';
+import { flowProbability, runningOf, type LeavingStory, type Running } from './running.ts';
 import { bound, restate, withIdea } from './start.ts';
 import { bestOf, learn, type Circumstances, type Heard } from './update.ts';
 import { judgeEntering } from './entering.ts';
@@ -27,6 +27,8 @@ const PUMP_HEAT_PART = 0.8;
 const FLUSHED_S = 180;
 /** Layers have settled enough under flow for a second idea of the ice to be tried. */
 const IDEAS_AFTER_S = 1500;
+/** Heat of a loop that nobody tells of, as part of the nameplate's ice making. No source. */
+const UNTOLD_FLOW_PART = 0.7;
 /** Start surges and meter glitches above this multiple of the nameplate are cut. */
 const MOST_POWER_FACTOR = 1.8;
 
@@ -80,23 +82,26 @@ function toldRunning(core: Core, nowMs: number, ordered: Command | null): Runnin
     core.flowChance = 0.02 + 0.96 * running.flowing;
     return running;
   }
-  const readC = core.folder.fresh('leaving-water');
-  const best = bestOf(core.beliefs).mean;
-  const offset = best[X.leavingOffset];
-  const foreseen = (flowing: number): number => {
-    const x = Float64Array.from(best);
-    advance(core.models, x, driveOf(core, { ...running, flowing }, nowMs), { ...core.flows });
-    return x[X.out];
-  };
-  core.flowChance = flowProbability(
-    core.flowChance,
-    core.stepMs / 1000,
-    readC === null ? null : readC - offset,
-    foreseen(0),
-    foreseen(1),
-    0.12,
-  );
+  const drive = driveOf(core, { ...running, flowing: 1 }, nowMs);
+  core.flowChance = flowProbability(core.flowChance, core.stepMs / 1000, leavingStory(core, drive));
   return { ...running, flowing: core.flowChance > 0.5 ? 1 : 0 };
+}
+
+/** Spread of what flow would show, K: wide at its start, when the bank has rested. */
+const FLOW_SD_K = { start: 0.8, run: 0.15 };
+
+function leavingStory(core: Core, drive: Drive): LeavingStory | null {
+  const readC = core.folder.fresh('leaving-water');
+  const beforeC = core.leavingBeforeC;
+  core.leavingBeforeC = readC ?? beforeC;
+  if (readC === null || beforeC === null) return null;
+  const weights = weightsOf(core.beliefs);
+  const flowing = core.beliefs.map(({ mean }, i) => {
+    const x = Float64Array.from(mean);
+    advance(core.models, x, drive, newFlows());
+    return { weight: weights[i], leavingC: x[X.out] + mean[X.leavingOffset] };
+  });
+  return { readC, beforeC, flowing, flowSdK: core.flowChance > 0.5 ? FLOW_SD_K.run : FLOW_SD_K.start };
 }
 
 function tellTime(core: Core, running: Running, dtS: number): void {
@@ -111,8 +116,9 @@ function tellTime(core: Core, running: Running, dtS: number): void {
 
 /** A meter's error is small: from its first word the flow gain is the meter's own. */
 function trustMeter(core: Core): void {
-  core.priors.sd[X.flow] = METER_SD;
-  for (const belief of core.beliefs) restate(belief, X.flow, 0, METER_SD);
+  const sd = core.models.internal ? METER_SD.brine : METER_SD.water;
+  core.priors.sd[X.flow] = sd;
+  for (const belief of core.beliefs) restate(belief, X.flow, 0, sd);
 }
 
 /** The points that stand for melt water entering and leaving, where an internal-melt tank names only its coolant. */
@@ -198,7 +204,9 @@ function changeOver(core: Core): void {
     for (const i of [X.leavingOffset, X.enteringOffset]) {
       restate(belief, i, core.priors.mean[i], core.priors.sd[i]);
     }
-    belief.cov[X.ice * STATES + X.ice] += 0.04 ** 2;
+    restate(belief, X.meltNow, core.priors.mean[X.meltNow], core.priors.sd[X.meltNow]);
+    restate(belief, X.coil, core.priors.mean[X.coil], core.priors.sd[X.coil]);
+    belief.cov[X.ice * STATES + X.ice] += 0.1 ** 2;
   }
 }
 
@@ -220,7 +228,9 @@ function start(core: Core, heard: Heard): void {
 function move(core: Core, drive: Drive, running: Running, dtS: number): void {
   const best = bestOf(core.beliefs);
   const chillerLost = !running.chillerKnown && core.folder.everHeard('chiller-power');
-  const unknownW = chillerLost ? core.models.nominalIceMakingW : 0;
+  // Where only the leaving water tells of flow, a run may be missed or imagined.
+  const guessed = running.flowFrom === 'temperature' ? UNTOLD_FLOW_PART * core.models.nominalIceMakingW : 0;
+  const unknownW = (chillerLost ? core.models.nominalIceMakingW : 0) + guessed;
   const flows = { ...core.flows };
   for (const belief of core.beliefs) {
     predict(belief, (x) => advance(core.models, x, drive, flows), ZERO, core.work);
@@ -251,7 +261,7 @@ function housekeep(core: Core): void {
     leavingC !== null &&
     core.health.get('leaving-water')?.setAside == null
   ) {
-    core.beliefs = withIdea(core.beliefs, bestOf(core.beliefs), leavingC);
+    core.beliefs = withIdea(core.beliefs, bestOf(core.beliefs), leavingC, core.models.internal);
   }
   core.sinceTidyS = 0;
 }

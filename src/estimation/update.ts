@@ -66,7 +66,8 @@ function waterRule(
   const trueC = readC - mean[PROBE_OFFSET[point]];
   if (trueC < SUPERCOOLED_C && now.drive.charging > 0 && mean[X.ice] < 0.1 && !models.sealed) return null;
   if (now.drive.flowing > 0) {
-    const noise = models.internal && point === 'leaving-water' ? NOISE.coilFlowing : NOISE.waterFlowing;
+    const leaving = models.internal ? NOISE.coilFlowing : NOISE.waterFlowing;
+    const noise = point === 'leaving-water' ? leaving : NOISE.heightFlowing;
     return now.flowingS < PIPE_S ? null : { noise, plateau: false };
   }
   if (now.restingS < 2 * PIPE_S) return null;
@@ -123,7 +124,8 @@ function learnWater(learner: Learner, beliefs: readonly Belief[], now: Circumsta
       continue;
     }
     const found = correct(belief, sense, readC, varianceOf(rule.noise, now.drive.dtS), learner.work);
-    weigh(belief, logDensity(found));
+    // How far above 0 °C resting water stands beside ice says little of how much ice there is.
+    weigh(belief, rule.noise === NOISE.waterResting ? SILENT : logDensity(found));
     if (belief !== best) continue;
     learner.innovated(point, found);
     notePlateau(health, rule.plateau && iceIsSure(belief));

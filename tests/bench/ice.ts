@@ -155,7 +155,7 @@ function report(
     const empty = own.flatMap((score) => score.emptyMin);
     return [
       scenario.form,
-      `(${scenario.set})${scenario.ordered ? '' : ' log'}`,
+      `(${scenario.set})`,
       scenario.pattern,
       scenario.trouble,
       round(rms(own.flatMap((score) => score.errors))),
