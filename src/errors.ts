@@ -13,6 +13,7 @@ export type ErrorCode =
   | 'store-full'
   | 'store-broken'
   | 'file-unreadable'
+  | 'file-unwritable'
   | 'payload'
   | 'internal';
 
@@ -47,4 +48,20 @@ export function exitStatusOf(error: unknown): number {
 export function sentenceOf(error: unknown): string {
   if (error instanceof Error) return error.message || error.name;
   return String(error);
+}
+
+const SYSTEM_WORDS: Readonly<Record<string, string>> = {
+  ENOENT: 'there is no such file or folder',
+  ENOTDIR: 'a part of its path is no folder',
+  EACCES: 'this user may not do that',
+  EPERM: 'this user may not do that',
+  EROFS: 'its disk is read-only',
+  ENOSPC: 'its disk is full',
+  EISDIR: 'it is a folder',
+};
+
+/** Why the system refused a file, in plain words. */
+export function systemWords(error: unknown): string {
+  const code = error instanceof Error && 'code' in error ? String(error.code) : '';
+  return SYSTEM_WORDS[code] ?? sentenceOf(error);
 }

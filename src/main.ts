@@ -1,5 +1,4 @@
 /** The composition root: config → build → start → stop. The only file that constructs adapters. */
-import { readFileSync } from 'node:fs';
 import { fileURLToPath } from 'node:url';
 import cron from 'node-cron';
 import pino from 'pino';
@@ -10,6 +9,7 @@ import { pageSource } from './daemon/page-source.ts';
 import type { DaemonParts, Log } from './daemon/ports.ts';
 import { setByOwner } from './daemon/set.ts';
 import { NOT_BEFORE_MS } from './dispatch/clock.ts';
+import { RimeholdError } from './errors.ts';
 import { Actuators } from './mqtt/actuators.ts';
 import { announcements } from './mqtt/announce.ts';
 import { BrokerClient } from './mqtt/client.ts';
@@ -20,12 +20,9 @@ import { Intake } from './mqtt/intake.ts';
 import type { BrokerOptions, LinkState } from './mqtt/link.ts';
 import type { Store } from './store/store.ts';
 import type { Clock } from './time.ts';
-import { secret, siteStore } from './verbs/site.ts';
+import { readBytes, secret, siteStore } from './verbs/site.ts';
+import { VERSION } from './verbs/version.ts';
 import { createWebServer, type WebServer } from './web/server.ts';
-
-export const VERSION: string = (
-  JSON.parse(readFileSync(new URL('../package.json', import.meta.url), 'utf8')) as { version: string }
-).version;
 
 export interface BuildOptions {
   readonly clock: Clock;
@@ -41,69 +38,111 @@ export interface Running {
   /** Address of the page; null when it is not served. */
   readonly pageUrl: string | null;
   readonly brokerUrl: string;
+  /** Resolves when the site can only be ended: another client has taken over the name at the broker. */
+  readonly givenUp: Promise<RimeholdError>;
+  /** Stops everything, whatever fails in it; rejects when something was lost. */
   stop(): Promise<void>;
 }
 
+type Stops = (() => void | Promise<void>)[];
+
 /** Builds and starts everything; what was started is stopped again when a later part cannot start. */
 export async function startSite(config: SiteConfig, options: BuildOptions): Promise<Running> {
-  const stops: (() => void | Promise<void>)[] = [];
-  const stop = async (): Promise<void> => {
-    for (const one of stops.splice(0).toReversed()) await one();
-  };
+  const stops: Stops = [];
   try {
-    return await start(config, options, stops, stop);
+    return { ...(await start(config, options, stops)), stop: () => stopAll(stops) };
   } catch (error) {
-    await stop();
+    // The first fault is the one to tell; a second one from the clean-up would hide it.
+    await stopAll(stops).catch(() => undefined);
     throw error;
   }
 }
 
+async function stopAll(stops: Stops): Promise<void> {
+  const faults: unknown[] = [];
+  for (const one of stops.splice(0).toReversed()) {
+    try {
+      await one();
+    } catch (error) {
+      faults.push(error);
+    }
+  }
+  if (faults.length > 0) throw faults[0];
+}
+
+/**
+ * What another program may have already (the store, the ports) is taken before the broker is spoken to: a second
+ * rimehold of the same site must not throw the first one off the broker only to find that it cannot run.
+ */
 async function start(
   config: SiteConfig,
   options: BuildOptions,
-  stops: (() => void | Promise<void>)[],
-  stop: () => Promise<void>,
-): Promise<Running> {
-  const { clock, clockRate = 1, log = createLog(config), seed = 1 } = options;
-  const templates = announcements(config);
-  const passphrase = secret('the passphrase', config.web.passphraseFile, config.web.passphraseEnv);
+  stops: Stops,
+): Promise<Omit<Running, 'stop'>> {
+  const { passphraseFile, passphraseEnv } = config.web;
+  const passphrase = secret('the passphrase', 'web.passphrase', passphraseFile, passphraseEnv);
   const store = siteStore(config, false);
-  stops.push(() => closeStore(store, log));
+  stops.push(() => closeStore(store));
   const embedded = config.broker.embedded
     ? await startEmbeddedBroker({ host: config.broker.listenHost, port: config.broker.listenPort })
     : null;
   if (embedded) stops.push(() => embedded.stop());
-  const intake = new Intake(config.points);
-  const actuators = new Actuators(config);
-  let daemon: Daemon | null = null;
-  let device: HomieDevice | null = null;
+  const { client, daemon, parts, givenUp } = build(config, options, store, embedded);
+  const web = await startPage(daemon, parts, passphrase);
+  if (web) stops.push(() => web.server.stop());
+  await client.start();
+  stops.push(() => client.stop());
+  await listen(client, parts);
+  daemon.start();
+  stops.push(async () => {
+    daemon.stop();
+    await parts.device.stop();
+  });
+  stops.push(noonJob(daemon, parts.clockRate));
+  return {
+    daemon,
+    parts,
+    pageUrl: web?.url ?? null,
+    brokerUrl: embedded?.url ?? config.broker.url,
+    givenUp,
+  };
+}
+
+/** Constructs what speaks through the broker, and the daemon; nothing is started. */
+function build(
+  config: SiteConfig,
+  options: BuildOptions,
+  store: Store,
+  embedded: EmbeddedBroker | null,
+): { client: BrokerClient; daemon: Daemon; parts: DaemonParts; givenUp: Promise<RimeholdError> } {
+  const { clock, clockRate = 1, log = createLog(config), seed = 1 } = options;
+  const templates = announcements(config);
+  let giveUp: (fault: RimeholdError) => void = () => undefined;
+  const givenUp = new Promise<RimeholdError>((resolve) => (giveUp = resolve));
   const client = new BrokerClient(brokerOptions(config, embedded), {
-    message: (message) => daemon?.hear(message),
+    message: (message) => daemon.hear(message),
     state: (state, sentence) => {
       linkChanged(state, sentence, log);
-      daemon?.linked(state === 'connected', sentence);
+      daemon.linked(state === 'connected', sentence);
       if (state === 'connected') {
-        void device?.announce();
+        void device.announce();
         for (const announcement of templates) void client.publish(announcement);
-      } else device?.away();
+      } else device.away();
+      if (state === 'taken-over') giveUp(new RimeholdError('broker-refused', sentence));
     },
     note: (sentence) => log.info({}, sentence),
   });
-  await client.start();
-  stops.push(() => client.stop());
-  const settings = {
-    strategy: config.planning.strategy,
-    wish: 'none' as const,
-    wishForMs: 7_200_000,
-    limitC: config.comfort.limitC,
-  };
-  device = new HomieDevice({
+  const device = new HomieDevice({
     config,
     publisher: client,
-    settings,
+    settings: {
+      strategy: config.planning.strategy,
+      wish: 'none' as const,
+      wishForMs: 7_200_000,
+      limitC: config.comfort.limitC,
+    },
     nowMs: () => clock.nowMs(),
-    onSet: (path, value) =>
-      daemon === null ? 'it has only just started' : setByOwner(daemon, clock, path, value),
+    onSet: (path, value) => setByOwner(daemon, clock, path, value),
   });
   const parts: DaemonParts = {
     config,
@@ -111,39 +150,25 @@ async function start(
     clockRate,
     seed,
     store,
-    intake,
-    actuators,
+    intake: new Intake(config.points),
+    actuators: new Actuators(config),
     publisher: client,
     device,
     log,
     notBeforeMs: clockRate === 1 ? NOT_BEFORE_MS : 0,
     stopwatch: () => performance.now(),
   };
-  daemon = new Daemon(parts);
-  daemon.linked(client.connected, 'Connected.');
-  const refused = await client.subscribe(
-    [...new Set([...intake.topics(), ...actuators.topics()])].map((filter) => ({
-      filter,
-      qos: 1,
-      retained: true,
-    })),
-  );
+  const daemon = new Daemon(parts);
+  return { client, daemon, parts, givenUp };
+}
+
+/** Asks for every topic of the plant, and waits for what the broker has kept of them. */
+async function listen(client: BrokerClient, { intake, actuators, log }: DaemonParts): Promise<void> {
+  const topics = new Set([...intake.topics(), ...actuators.topics()]);
+  const refused = await client.subscribe([...topics].map((filter) => ({ filter, qos: 1, retained: true })));
   for (const filter of refused)
     log.error({ filter }, `The broker refuses to let rimehold read ${filter}; mend its access list.`);
-  void device.announce();
-  for (const announcement of templates) void client.publish(announcement);
   await settle();
-  daemon.start();
-  const running = daemon;
-  const spoken = device;
-  stops.push(async () => {
-    running.stop();
-    await spoken.stop();
-  });
-  stops.push(noonJob(running, clockRate));
-  const web = await startPage(running, parts, passphrase);
-  if (web) stops.push(() => web.server.stop());
-  return { daemon, parts, pageUrl: web?.url ?? null, brokerUrl: embedded?.url ?? config.broker.url, stop };
 }
 
 /** Time for what the broker has kept to arrive before the first look. */
@@ -184,17 +209,29 @@ export function brokerOptions(config: SiteConfig, embedded: EmbeddedBroker | nul
   const clientId = broker.clientId ?? `rimehold-${site.id}`;
   if (embedded)
     return { url: embedded.url, clientId, protocol: '3.1.1', user: null, password: null, tls: null, will };
-  const file = (path: string | null): Uint8Array | null => (path === null ? null : readFileSync(path));
+  const file = (path: string | null, key: string): Uint8Array | null =>
+    path === null
+      ? null
+      : readBytes(path, 'a certificate or its key', `mend broker.tls.${key} in the site file`);
   return {
     url: broker.url,
     clientId,
     protocol: broker.protocol,
     user: broker.user,
-    password: secret('the password of the broker', broker.passwordFile, broker.passwordEnv),
+    password: secret(
+      'the password of the broker',
+      'broker.password',
+      broker.passwordFile,
+      broker.passwordEnv,
+    ),
     tls:
       broker.tls === null
         ? null
-        : { ca: file(broker.tls.caFile), cert: file(broker.tls.certFile), key: file(broker.tls.keyFile) },
+        : {
+            ca: file(broker.tls.caFile, 'ca-file'),
+            cert: file(broker.tls.certFile, 'cert-file'),
+            key: file(broker.tls.keyFile, 'key-file'),
+          },
     will,
   };
 }
@@ -213,8 +250,19 @@ function linkChanged(state: LinkState, sentence: string, log: Log): void {
   else log.warn({ link: state }, sentence);
 }
 
-function closeStore(store: Store, log: Log): void {
+/** Writes what still waits; throws what was lost when that is refused. */
+function closeStore(store: Store): void {
+  const { waitingReadings, waitingRecords } = store.health();
   const { fault } = store.close();
-  if (fault !== null)
-    log.error({ code: fault.code }, `${fault.message} What still waited in memory is lost with this stop.`);
+  if (fault === null) return;
+  const why =
+    fault.code === 'store-full'
+      ? `the disk of ${store.file} is full or refuses writes; free some space before the next start`
+      : fault.message;
+  throw new RimeholdError(
+    fault.code,
+    `${waitingReadings} readings and ${waitingRecords} records that waited in memory are lost with this stop: ${why}.`,
+    fault.context,
+    { cause: fault },
+  );
 }

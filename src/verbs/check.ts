@@ -3,14 +3,16 @@ import { existsSync } from 'node:fs';
 import type { SiteConfig } from '../config.ts';
 import { heatIntoRoom } from '../dispatch/alerts.ts';
 import { EXIT, RimeholdError, sentenceOf } from '../errors.ts';
-import { brokerOptions, VERSION } from '../main.ts';
+import { brokerOptions } from '../main.ts';
 import { BrokerClient } from '../mqtt/client.ts';
 import { Intake, type PointStatus } from '../mqtt/intake.ts';
 import { pointSpec, valueOf } from '../points.ts';
 import type { ProbeState } from '../reports/coverage.ts';
 import { readSheet } from '../reports/night-schema.ts';
+import { noted, PAPER_WIDTH, wrapped } from '../reports/paper.ts';
 import { formatDuration, formatInstant, parseDuration, ZONE_DATA_VERSION } from '../time.ts';
 import { loadSite, siteStore } from './site.ts';
+import { VERSION } from './version.ts';
 
 interface PointLine {
   readonly point: string;
@@ -23,6 +25,14 @@ interface PointLine {
   readonly errorAtIcePointK: number | null;
   readonly checked: string | null;
   readonly note: string;
+}
+
+/** What was heard at the broker: nothing when it could not be connected, not all when it refused a topic. */
+interface Heard {
+  readonly broker: string;
+  readonly connected: boolean;
+  readonly refused: readonly string[];
+  readonly intake: Intake;
 }
 
 interface Verdict {
@@ -46,11 +56,7 @@ export async function check(options: { config: string; listen: string; json?: bo
   const config = loadSite(options.config);
   const { words: database, sound, probes } = checkStore(config);
   const heard = config.broker.embedded
-    ? {
-        broker: 'embedded: nothing can be heard before `rimehold run` starts it',
-        reached: true,
-        intake: new Intake(config.points),
-      }
+    ? unheard(config)
     : await listen(config, listenMs, options.json !== true);
   const points = heard.intake.status().map((status) => pointLine(status, heard.intake, probes));
   const missing = config.broker.embedded ? [] : points.filter((point) => point.required && !point.fresh);
@@ -62,9 +68,17 @@ export async function check(options: { config: string; listen: string; json?: bo
     broker: heard.broker,
     points,
     warnings: warningsOf(config),
-    mayRun: sound && heard.reached && missing.length === 0,
+    mayRun: sound && heard.connected && heard.refused.length === 0 && missing.length === 0,
   };
-  console.log(options.json ? JSON.stringify(verdict) : text(verdict, missing));
+  const obstacles = [
+    ...(sound ? [] : ['the database must be usable']),
+    ...(heard.connected ? [] : ['the broker must be reached']),
+    ...(heard.refused.length === 0 ? [] : [`the broker must let this user read ${heard.refused.join(', ')}`]),
+    ...(missing.length === 0 || !heard.connected
+      ? []
+      : [`${missing.map(({ point }) => point).join(', ')} must be heard`]),
+  ];
+  console.log(options.json ? JSON.stringify(verdict) : text(verdict, heard.connected, obstacles));
   return verdict.mayRun ? EXIT.yes : EXIT.no;
 }
 
@@ -100,12 +114,13 @@ function lastProbes(body: string | null): readonly ProbeState[] {
   }));
 }
 
+function unheard(config: SiteConfig): Heard {
+  const broker = 'embedded: nothing can be heard before `rimehold run` starts it';
+  return { broker, connected: true, refused: [], intake: new Intake(config.points) };
+}
+
 /** Connects beside a running daemon, under a name of its own, and listens. */
-async function listen(
-  config: SiteConfig,
-  listenMs: number,
-  talk: boolean,
-): Promise<{ broker: string; reached: boolean; intake: Intake }> {
+async function listen(config: SiteConfig, listenMs: number, talk: boolean): Promise<Heard> {
   const intake = new Intake(config.points);
   const options = { ...brokerOptions(config, null), clientId: `rimehold-check-${process.pid}`, will: null };
   const client = new BrokerClient(options, {
@@ -120,13 +135,9 @@ async function listen(
     );
     if (talk) console.error(`Listening for ${formatDuration(listenMs)} …`);
     await heardAll(intake, listenMs);
-    const broker =
-      refused.length === 0
-        ? `${options.url}, MQTT ${client.version}`
-        : `${options.url} refuses to let this user read ${refused.join(', ')}`;
-    return { broker, reached: refused.length === 0, intake };
+    return { broker: `${options.url}, MQTT ${client.version}`, connected: true, refused, intake };
   } catch (error) {
-    return { broker: sentenceOf(error), reached: false, intake };
+    return { broker: sentenceOf(error), connected: false, refused: [], intake };
   } finally {
     await client.stop();
   }
@@ -178,32 +189,40 @@ function warningsOf(config: SiteConfig): string[] {
   return warnings;
 }
 
-function text(verdict: Verdict, missing: readonly PointLine[]): string {
-  const lines = [
-    `${verdict.site}, rimehold ${verdict.version}, zone rules ${verdict.zoneData}`,
-    `database  ${verdict.database}`,
-    `broker    ${verdict.broker}`,
-    '',
-    'point                    last value      age      at 0 °C   note',
-    ...verdict.points.map(row),
-    '',
-    ...verdict.warnings,
+function text(verdict: Verdict, connected: boolean, obstacles: readonly string[]): string {
+  const points = [
+    'point                    last value      age    at 0 °C   note',
+    ...verdict.points.flatMap(rows),
   ];
-  const end = verdict.mayRun
-    ? 'The plant may run.'
-    : missing.length > 0
-      ? `Not yet: ${missing.map(({ point }) => point).join(', ')} must be heard first.`
-      : 'Not yet: see above.';
-  return [...lines, end].join('\n');
+  return [
+    ...wrapped(`${verdict.site}, rimehold ${verdict.version}, zone rules ${verdict.zoneData}`),
+    ...noted('database', verdict.database, 10),
+    ...noted('broker', verdict.broker, 10),
+    '',
+    ...(connected ? points : ['No point was listened for: the broker comes first.']),
+    '',
+    ...verdict.warnings.flatMap((warning) => wrapped(warning)),
+    ...wrapped(obstacles.length === 0 ? 'The plant may run.' : `Not yet: ${obstacles.join('; ')}.`),
+  ].join('\n');
 }
 
-function row(line: PointLine): string {
+/** A point on one line, its note below it where both are too long for 80 columns. */
+function rows(line: PointLine): string[] {
+  const name = `${line.fresh ? ' ' : line.required ? '!' : '?'} ${line.point.padEnd(22)}`;
+  const unusable = line.value === null && line.ageS === null;
+  const head = unusable ? name : `${name} ${figures(line)}`;
+  if (line.note === '') return [head.trimEnd()];
+  const whole = `${head}   ${line.note}`;
+  if (Array.from(whole).length <= PAPER_WIDTH) return [whole];
+  return [head.trimEnd(), ...noted('', line.note, 4)];
+}
+
+function figures(line: PointLine): string {
   const value = line.value === null ? '–' : `${Number(line.value.toFixed(2))} ${line.unit}`;
   const age = line.ageS === null ? '–' : `${line.ageS} s`;
   const error =
     line.errorAtIcePointK === null
       ? '–'
       : `${line.errorAtIcePointK >= 0 ? '+' : '−'}${Math.abs(line.errorAtIcePointK).toFixed(2)} K`;
-  const mark = line.fresh ? ' ' : line.required ? '!' : '?';
-  return `${mark} ${line.point.padEnd(22)} ${value.padStart(12)} ${age.padStart(8)} ${error.padStart(10)}   ${line.note}`.trimEnd();
+  return `${value.padStart(10)} ${age.padStart(8)} ${error.padStart(10)}`;
 }

@@ -1,11 +1,10 @@
 /** `rimehold estimate`: ice on hand through a reading log, offline, by the same estimator. */
-import { writeFileSync } from 'node:fs';
 import { EXIT } from '../errors.ts';
 import { estimateLog, type LogRow } from '../estimation/offline.ts';
 import type { Reading } from '../points.ts';
 import { formatInstant } from '../time.ts';
 import { logWords, readLog } from './import.ts';
-import { loadSite } from './site.ts';
+import { loadSite, writeText } from './site.ts';
 
 const HEADER = 'time,ice_on_hand_kwh,low_kwh,high_kwh,ice_kg,inventory_pct';
 
@@ -23,7 +22,8 @@ export async function estimate(options: {
   for (const words of logWords(summary)) console.error(words);
   readings.sort((a, b) => a.atMs - b.atMs);
   const rows = estimateLog(config, readings);
-  writeFileSync(options.out, `${[HEADER, ...rows.map(csvRow)].join('\r\n')}\r\n`);
+  const csv = `${[HEADER, ...rows.map(csvRow)].join('\r\n')}\r\n`;
+  writeText(options.out, csv, 'the estimate', 'name another file with --out');
   const last = rows.at(-1) ?? null;
   if (options.json) console.log(JSON.stringify({ out: options.out, rows: rows.length, ...summary, last }));
   else console.log(words(options.out, rows.length, last));

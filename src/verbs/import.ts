@@ -4,7 +4,7 @@ import { createInterface } from 'node:readline';
 import { EXIT, RimeholdError } from '../errors.ts';
 import type { Reading } from '../points.ts';
 import { isLogHeader, LOG_HEADER, parseLogLine } from '../reading-log.ts';
-import { loadSite, siteStore } from './site.ts';
+import { loadSite, siteStore, unreadable } from './site.ts';
 
 export interface LogSummary {
   readonly readings: number;
@@ -38,7 +38,7 @@ export async function readLog(
         if (!isLogHeader(text))
           throw new RimeholdError(
             'usage',
-            `${file}: expected the header "${LOG_HEADER}" on line 1, found "${text.slice(0, 60)}".`,
+            `Expected a reading log with the header "${LOG_HEADER}" on line 1 of ${file}, found "${text.slice(0, 60)}"; give it that header and one reading a line.`,
             { file },
           );
         continue;
@@ -61,17 +61,12 @@ export async function readLog(
     }
   } catch (error) {
     if (error instanceof RimeholdError) throw error;
-    throw new RimeholdError(
-      'file-unreadable',
-      `Expected a reading log in ${file}, but it cannot be read: ${String(error)}.`,
-      { file },
-      { cause: error },
-    );
+    throw unreadable(file, 'a reading log', `name a CSV file with the header "${LOG_HEADER}"`, error);
   }
   if (number === 0)
     throw new RimeholdError(
       'usage',
-      `${file}: expected the header "${LOG_HEADER}" on line 1, found an empty file.`,
+      `Expected a reading log with the header "${LOG_HEADER}" on line 1 of ${file}, found an empty file; give it that header and one reading a line.`,
       { file },
     );
   take(batch);
@@ -82,24 +77,38 @@ export async function readLog(
 export function logWords({ faulty, faults, dropped }: LogSummary): string[] {
   const more = faulty > faults.length ? [`… and ${faulty - faults.length} more faulty lines.`] : [];
   const drops = Object.entries(dropped).map(([name, count]) => `Dropped ${count} × ${name}.`);
-  return [...faults, ...more, ...drops];
+  const todo = faulty > 0 ? ['Mend these lines and do it again: no reading is counted twice.'] : [];
+  return [...faults, ...more, ...drops, ...todo];
 }
 
 export async function importLog(file: string, options: { config: string; json?: boolean }): Promise<number> {
   const config = loadSite(options.config);
   const store = siteStore(config, false);
-  let summary: LogSummary;
-  try {
-    summary = await readLog(file, (readings) => store.addReadings(readings));
-  } finally {
-    const { fault } = store.close();
-    if (fault !== null) throw fault;
-  }
+  const taken = readLog(file, (readings) => store.addReadings(readings));
+  await taken.catch(() => undefined);
+  const { fault } = store.close();
+  const summary = await taken;
+  if (fault !== null) throw notWritten(file, config.store.file, fault);
   for (const words of logWords(summary)) console.error(words);
   if (options.json) console.log(JSON.stringify({ file, ...summary }));
   else
     console.log(
-      `${summary.readings} readings from ${file} are in ${config.store.file}; ${summary.faulty} faulty lines left out.`,
+      `${counted(summary.readings, 'reading')} from ${file} taken into ${config.store.file}; ${counted(summary.faulty, 'faulty line')} left out.`,
     );
   return summary.faulty === 0 ? EXIT.yes : EXIT.no;
+}
+
+function counted(count: number, what: string): string {
+  return `${count} ${what}${count === 1 ? '' : 's'}`;
+}
+
+/** A full disk while a log comes in: unlike in the daemon nothing waits, but nothing is gone either. */
+function notWritten(log: string, database: string, fault: RimeholdError): RimeholdError {
+  if (fault.code !== 'store-full') return fault;
+  return new RimeholdError(
+    'store-full',
+    `Expected room in ${database} for all of ${log}, found its disk full or refusing writes; free some space and import it again: no reading is counted twice.`,
+    fault.context,
+    { cause: fault },
+  );
 }

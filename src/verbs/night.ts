@@ -1,8 +1,7 @@
 /** `rimehold night [DATE]`: one night sheet as text, JSON or a page that prints on one sheet. */
 import type { SiteConfig } from '../config.ts';
 import { sheetFor } from '../daemon/nights.ts';
-import { EXIT, RimeholdError } from '../errors.ts';
-import type { NightSheet } from '../reports/night-schema.ts';
+import { EXIT } from '../errors.ts';
 import { renderHtml } from '../reports/render-html.ts';
 import { renderText } from '../reports/render-text.ts';
 import type { Store } from '../store/store.ts';
@@ -16,7 +15,12 @@ export function night(
   const config = loadSite(options.config);
   const store = siteStore(config, true);
   try {
-    const sheet = find(config, store, date);
+    const wanted = wantedDate(config, store, date);
+    const sheet = sheetFor(config, store, wanted, nowMs(store));
+    if (sheet === null) {
+      console.error(`Expected a night with records, found none for ${wanted}; ${nightsKept(store)}.`);
+      return EXIT.no;
+    }
     process.stdout.write(
       options.json
         ? `${JSON.stringify(sheet)}\n`
@@ -30,20 +34,22 @@ export function night(
   }
 }
 
-/** The sheet of a date, or of the last closed night when none is named. */
-function find(config: SiteConfig, store: Store, date: string | undefined): NightSheet {
+/** The date that was named, or that of the last closed night. */
+function wantedDate(config: SiteConfig, store: Store, date: string | undefined): string {
   const { zone } = config.site;
-  const nowMs = Math.max(Date.now(), store.latestRecord()?.atMs ?? 0);
-  if (date !== undefined) nightOf(zone, date);
-  const wanted = date ?? store.sheets().at(-1)?.date ?? localDate(zone, nowMs);
-  const sheet = sheetFor(config, store, wanted, nowMs);
-  if (sheet !== null) return sheet;
+  if (date !== undefined) return nightOf(zone, date).date;
+  return store.sheets().at(-1)?.date ?? localDate(zone, nowMs(store));
+}
+
+/** On a lapse clock the records may be ahead of this machine's time. */
+function nowMs(store: Store): number {
+  return Math.max(Date.now(), store.latestRecord()?.atMs ?? 0);
+}
+
+/** Which nights can be shown, for a person who asked for another one. */
+export function nightsKept(store: Store): string {
   const known = store.sheets();
-  const have =
-    known.length === 0
-      ? 'no night is closed yet; the first sheet comes at the first noon after a night on which the daemon ran'
-      : `nights from ${known[0].date} to ${known[known.length - 1].date} have sheets`;
-  throw new RimeholdError('usage', `Expected a night with records, found none for ${wanted}; ${have}.`, {
-    date: wanted,
-  });
+  return known.length === 0
+    ? 'no night is closed yet: the first sheet comes at the first noon after a night on which the daemon ran'
+    : `name one from ${known[0].date} to ${known[known.length - 1].date}`;
 }

@@ -1,8 +1,9 @@
 /** `rimehold nights`: the ledger of nights. */
-import { EXIT } from '../errors.ts';
+import { EXIT, RimeholdError } from '../errors.ts';
 import { readSheet } from '../reports/night-schema.ts';
 import { renderCsv } from '../reports/render-csv.ts';
 import { noonOf } from '../time.ts';
+import { nightsKept } from './night.ts';
 import { loadSite, siteStore } from './site.ts';
 
 export function nights(options: {
@@ -13,14 +14,32 @@ export function nights(options: {
   json?: boolean;
 }): number {
   const config = loadSite(options.config);
-  for (const date of [options.from, options.to]) if (date !== undefined) noonOf(config.site.zone, date);
+  const { from, to } = options;
+  checkDate('--from', from, config.site.zone);
+  checkDate('--to', to, config.site.zone);
   const store = siteStore(config, true);
   try {
-    const sheets = store.sheets(options.from, options.to).flatMap(({ body }) => readSheet(body) ?? []);
+    const sheets = store.sheets(from, to).flatMap(({ body }) => readSheet(body) ?? []);
     if (options.json) console.log(JSON.stringify(sheets));
     else process.stdout.write(renderCsv(sheets));
-    return sheets.length > 0 ? EXIT.yes : EXIT.no;
+    if (sheets.length > 0) return EXIT.yes;
+    console.error(`Expected night sheets${spanWords(from, to)}, found none; ${nightsKept(store)}.`);
+    return EXIT.no;
   } finally {
     store.close();
   }
+}
+
+function checkDate(option: string, date: string | undefined, zone: string): void {
+  if (date === undefined) return;
+  try {
+    noonOf(zone, date);
+  } catch (cause) {
+    const sentence = `Expected ${option} with a date as YYYY-MM-DD, found "${date}".`;
+    throw new RimeholdError('usage', sentence, { option, date }, { cause });
+  }
+}
+
+function spanWords(from: string | undefined, to: string | undefined): string {
+  return `${from === undefined ? '' : ` from ${from}`}${to === undefined ? '' : ` to ${to}`}`;
 }

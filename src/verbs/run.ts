@@ -17,15 +17,28 @@ export interface RunOptions {
 export async function run(options: RunOptions): Promise<number> {
   const config = loadSite(options.config);
   const { clock, clockRate } = clockOf(options);
-  const running = await startSite(config, { clock, clockRate });
+  // Listened for from the start: a signal that comes while it starts ends it as cleanly as any other.
+  const asked = stopSignal();
+  const starting = startSite(config, { clock, clockRate });
+  const running = await Promise.race([starting, asked]);
+  if (running === undefined) return stopWhileStarting(starting);
   printSheets(config, running);
   console.error(
     `rimehold watches ${config.site.name} through ${running.brokerUrl}${running.pageUrl === null ? '' : `; its page is at ${running.pageUrl}`}`,
   );
-  await stopSignal();
+  const fault = await Promise.race([asked, running.givenUp]);
   await running.stop();
+  if (fault instanceof RimeholdError) throw fault;
   return EXIT.yes;
 }
+
+/** A broker that does not answer may hold the start for long; then nothing runs yet that would need a goodbye. */
+async function stopWhileStarting(starting: Promise<Running>): Promise<never> {
+  const stopped = starting.then((running) => running.stop()).catch(() => undefined);
+  await Promise.race([stopped, new Promise((done) => setTimeout(done, MOST_WAIT_MS))]);
+  process.exit(EXIT.yes);
+}
+const MOST_WAIT_MS = 2000;
 
 export function printSheets(config: SiteConfig, { daemon }: Running): void {
   if (config.nights.print)
