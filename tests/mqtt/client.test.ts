@@ -1,5 +1,4 @@
 import { execFileSync } from 'node:child_process';
-import { pbkdf2Sync, randomBytes } from 'node:crypto';
 import { mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { createServer } from 'node:net';
 import { tmpdir } from 'node:os';
@@ -7,7 +6,7 @@ import { join } from 'node:path';
 import { Aedes } from 'aedes';
 import { describe, expect } from 'vitest';
 import { startEmbeddedBroker } from '../../src/mqtt/embedded-broker.ts';
-import { freePort, hasMosquitto } from './mosquitto.ts';
+import { freePort, hasMosquitto, passwords } from './mosquitto.ts';
 import { pause, until } from './observer.ts';
 import { FAST, test } from './stage.ts';
 
@@ -361,13 +360,6 @@ describe.skipIf(!hasMosquitto).concurrent('against mosquitto', () => {
 });
 
 const TLS_LINES = ['cafile FOLDER/ca.crt', 'certfile FOLDER/server.crt', 'keyfile FOLDER/server.key'];
-
-/** A password file as mosquitto 2.0 writes it: PBKDF2-SHA512, 101 rounds. */
-function passwords(user: string, password: string): Record<string, string> {
-  const salt = randomBytes(12);
-  const hash = pbkdf2Sync(password, salt, 101, 64, 'sha512');
-  return { passwords: `${user}:$7$101$${salt.toString('base64')}$${hash.toString('base64')}\n` };
-}
 
 function hasOpenssl(): boolean {
   try {

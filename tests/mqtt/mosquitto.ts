@@ -1,5 +1,6 @@
 /** A real mosquitto for a test: its own free loopback port, its own temporary folder, ended by whoever started it. */
 import { spawn, type ChildProcess } from 'node:child_process';
+import { pbkdf2Sync, randomBytes } from 'node:crypto';
 import { existsSync, mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { connect, createServer, type AddressInfo } from 'node:net';
 import { tmpdir } from 'node:os';
@@ -42,6 +43,13 @@ export async function freePort(): Promise<number> {
   const { port } = server.address() as AddressInfo;
   await new Promise((done) => server.close(done));
   return port;
+}
+
+/** The file `passwords` as mosquitto 2.0 writes it: PBKDF2-SHA512, 101 rounds. */
+export function passwords(user: string, password: string): Record<string, string> {
+  const salt = randomBytes(12);
+  const hash = pbkdf2Sync(password, salt, 101, 64, 'sha512');
+  return { passwords: `${user}:$7$101$${salt.toString('base64')}$${hash.toString('base64')}\n` };
 }
 
 export async function startMosquitto(options: MosquittoOptions = {}): Promise<Mosquitto> {
