@@ -218,10 +218,20 @@ function batteryLow(was: boolean, view: PlantView, limits: Limits): boolean {
   return latch(was, below(valueOf(view.live, 'battery-charge'), limits.batteryFloorPct), 3);
 }
 
+/**
+ * A pump that runs without water: it draws less than it should, or its water does not flow. A pump that draws nothing
+ * does not run, which is the switch's fault and not dryness. Only readings from after the priming count.
+ */
 function ranDry(memory: DispatchMemory, view: PlantView, limits: Limits): boolean {
-  if (memory.pumpOnSinceMs === null || view.nowMs - memory.pumpOnSinceMs < PRIMING_MS) return false;
-  const power = valueOf(view.live, 'pump-power');
-  const flow = valueOf(view.live, 'loop-flow');
+  const sinceMs = memory.pumpOnSinceMs;
+  if (sinceMs === null) return false;
+  const primed = (point: 'pump-power' | 'loop-flow'): number | null => {
+    const heard = view.live[point];
+    return heard?.value != null && heard.atMs >= sinceMs + PRIMING_MS ? heard.value : null;
+  };
+  const power = primed('pump-power');
+  if (power !== null && power <= limits.pumpRunningAboveW) return false;
+  const flow = primed('loop-flow');
   const noLoad = limits.dryPumpW !== null && power !== null && power < limits.dryPumpW;
   return noLoad || (flow !== null && flow < DRY_FLOW_SHARE * limits.flowLPerMin);
 }

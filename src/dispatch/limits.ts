@@ -12,6 +12,7 @@ export function limitsOf(config: SiteConfig): Limits {
     startW: chiller.startW,
     mostOutdoorC: chiller.mostOutdoorC,
     coilFreezeC: delivery.coilFreezeC,
+    pumpRunningAboveW: delivery.runningAboveW,
     dryPumpW: delivery.dryPumpW,
     flowLPerMin: delivery.flowLPerMin,
     fullCoolantC: bank.fullCoolantC,

@@ -46,6 +46,7 @@ export interface Limits {
   readonly startW: number;
   readonly mostOutdoorC: number;
   readonly coilFreezeC: number;
+  readonly pumpRunningAboveW: number;
   readonly dryPumpW: number | null;
   readonly flowLPerMin: number;
   readonly fullCoolantC: number | null;

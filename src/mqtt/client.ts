@@ -7,6 +7,7 @@
  * stale command ever waits in a queue. A command (QoS 1) that was in flight when the connection broke is given up;
  * values (QoS 2) are completed when the session is taken up again, as MQTT 5 section 4.4 asks.
  */
+import { Socket } from 'node:net';
 import { connect, type IConnackPacket, type MqttClient } from 'mqtt';
 import { failureOf, type Failure } from './connect-failure.ts';
 import {
@@ -141,6 +142,8 @@ export class BrokerClient implements Publisher {
   }
 
   #onConnect(client: MqttClient, connack: IConnackPacket): void {
+    // commands are small and must not wait for the next one to fill a packet
+    if (client.stream instanceof Socket) client.stream.setNoDelay(true);
     this.#limits = limitsOf(connack);
     this.#lastError = null;
     this.#everConnected = true;

@@ -22,6 +22,8 @@ const FACTOR = 720;
 const EVENING = '2026-07-14';
 const MIDNIGHT_BEFORE_NOON_MS = 12 * HOUR_MS;
 const STEP_MS = 10_000;
+/** A hot day that Juniper's machine is made for. */
+const HOT_DAY_C = 31;
 
 export async function demo(options: { stay?: boolean; seed?: string }): Promise<number> {
   const seed = Number(options.seed ?? '1');
@@ -94,7 +96,7 @@ async function startPlant(
   seed: number,
 ): Promise<SimulatedPlant> {
   const { latitudeDeg, longitudeDeg, elevationM } = config.site;
-  const weather = seededWeather({ seed, latitudeDeg, longitudeDeg, elevationM });
+  const weather = seededWeather({ seed, latitudeDeg, longitudeDeg, elevationM, hotDayC: HOT_DAY_C });
   const simulator = createSimulator({
     site: config,
     seed,

@@ -3,6 +3,7 @@
  * they hear nothing newer for three minutes. For the demo and for scenario tests; it shares nothing with the daemon
  * but the broker.
  */
+import { Socket } from 'node:net';
 import { connectAsync, type MqttClient } from 'mqtt';
 import type { SiteConfig } from '../config.ts';
 import { ORDER_LIFE_MS } from '../dispatch/interlocks.ts';
@@ -37,6 +38,7 @@ export class SimulatedPlant {
       ...(user === undefined ? {} : { username: user }),
       ...(password === undefined ? {} : { password }),
     });
+    if (this.#client.stream instanceof Socket) this.#client.stream.setNoDelay(true);
     this.#client.on('message', (topic, payload) => this.#obey(topic, payload.toString()));
     const topics = MACHINES.flatMap((machine) => config.actuators[machine]?.topic ?? []);
     if (topics.length > 0) await this.#client.subscribeAsync(topics, { qos: 1 });

@@ -16,6 +16,7 @@ const limits: Limits = {
   startW: 1800,
   mostOutdoorC: 43,
   coilFreezeC: -1,
+  pumpRunningAboveW: 10,
   dryPumpW: 20,
   flowLPerMin: 12,
   fullCoolantC: -14,
@@ -157,6 +158,16 @@ const TABLE: [name: string, Case, expected: Record<Command, [Command, string]>][
   ],
   ['dry pump by power', { points: { 'pump-power': 12 } }, deliveryStopped('dry pump')],
   ['dry pump by flow', { points: { 'loop-flow': 0.4 } }, deliveryStopped('dry pump')],
+  [
+    'pump that does not run at all is not dry',
+    { points: { 'pump-power': 2 } },
+    {
+      hold: ['hold', ''],
+      'charge-now': ['charge-now', ''],
+      discharge: ['discharge', ''],
+      'charge-and-discharge': ['charge-and-discharge', ''],
+    },
+  ],
   [
     'pump still priming',
     { points: { 'pump-power': 12 }, memory: { pumpOnSinceMs: NOW - 30_000 } },
