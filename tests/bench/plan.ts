@@ -38,9 +38,9 @@ interface CaseResult {
 }
 
 export async function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
-  const nights = quick ? 4 : 60;
+  const nights = quick ? 2 : 60;
   const results = planCases(seed).map((on, k) => runCase(on, seed * 100 + k, nights, quick ? 2 : 14));
-  const gaps = await milpGaps(seed, quick ? 10 : 50);
+  const gaps = await milpGaps(seed, quick ? 5 : 50);
   const lpGapPct = gaps.reduce((sum, gap) => sum + gap.gapPct, 0) / gaps.length;
   return {
     title: `Plan: ${nights} nights × ${results.length} cases in the truth plant`,
