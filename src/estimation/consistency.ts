@@ -49,6 +49,10 @@ const MEAN_OVER_S = 2400;
 /** Mean beyond which a probe is set aside, and below which it is taken back. */
 const ASIDE_ABOVE = 6;
 const BACK_BELOW = 2.5;
+/** A contradiction smaller than this is rather the model's fault than the probe's, K. */
+const ASIDE_K = 1.5;
+/** Mean beyond which the model is doubted instead. */
+export const DOUBTED_ABOVE = 2.5;
 const LEAST_STEPS = 20;
 const BACK_STEPS = 30;
 /** Change between two steps that no water makes, K. */
@@ -72,7 +76,7 @@ export function judgeProbe(health: ProbeHealth, look: ProbeLook): boolean {
   if (health.setAside !== null) return reconsider(health, nis, stuck);
   if (stuck) health.setAside = `the same ${look.readC.toFixed(2)} °C again and again`;
   else if (leapt) health.setAside = `leapt to ${look.readC.toFixed(1)} °C, which no water does`;
-  else if (health.nis > ASIDE_ABOVE && health.steps >= LEAST_STEPS) {
+  else if (health.nis > ASIDE_ABOVE && health.steps >= LEAST_STEPS && Math.abs(look.innovation) > ASIDE_K) {
     const off = look.readC - look.modelC;
     health.setAside = `reads ${Math.abs(off).toFixed(1)} K ${off > 0 ? 'above' : 'below'} what the bank can be`;
   }

@@ -23,7 +23,9 @@ export const NOISE = {
   waterWarm: { fresh: 0.06, alike: 0.25, lastsS: 1800 },
   waterLayered: { fresh: 0.1, alike: 0.7, lastsS: 1800 },
   waterOdd: { fresh: 0.3, alike: 1.5, lastsS: 1800 },
-  coolant: { fresh: 0.15, alike: 0.5, lastsS: 3600 },
+  coolant: { fresh: 0.15, alike: 0.6, lastsS: 7200 },
+  /** Where a coil also melts from within, water between tube and ice hides how thick the ice is. */
+  coolantHidden: { fresh: 0.15, alike: 1.5, lastsS: 14_400 },
   /** Logarithm of power. */
   power: { fresh: 0.01, alike: 0.05, lastsS: 3600 },
   /** mm. */
@@ -65,4 +67,12 @@ export function processNoise(
   into.fill(0, 0, STATES);
   into[X.ice] = part * part * Math.max(1, HEAT_LASTS_S / dtS) + (ICE_WANDER ** 2 * dtS) / 3600;
   for (const layer of LAYERS) into[layer] = (wander ** 2 * dtS) / 60;
+}
+
+/** When readings keep contradicting the model, its ice and its melting are doubted; in a square-root minute. */
+const DOUBT = { ice: 0.012, meltNow: 0.04 };
+
+export function addDoubt(noise: Float64Array, dtS: number): void {
+  noise[X.ice] += (DOUBT.ice ** 2 * dtS) / 60;
+  noise[X.meltNow] += (DOUBT.meltNow ** 2 * dtS) / 60;
 }

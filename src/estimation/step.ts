@@ -3,11 +3,11 @@ import type { Command } from '../commands.ts';
 import { coilWetFactor } from '../plant/delivery.ts';
 import type { PointName } from '../points.ts';
 import type { Core } from './core.ts';
-import { watchSwap } from './consistency.ts';
+import { DOUBTED_ABOVE, watchSwap } from './consistency.ts';
 import { forget, predict, type Belief } from './filter.ts';
 import { LAYERS, METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
 import { tidy, weightsOf } from './mixture.ts';
-import { processNoise } from './noise.ts';
+import { addDoubt, processNoise } from './noise.ts';
 import { advance, newFlows, type Drive } from './process.ts';
 import { anchorsOf } from './anchors.ts';
 import { flowProbability, runningOf, type LeavingStory, type Running } from './running.ts';
@@ -232,11 +232,14 @@ function move(core: Core, drive: Drive, running: Running, dtS: number): void {
   const guessed = running.flowFrom === 'temperature' ? UNTOLD_FLOW_PART * core.models.nominalIceMakingW : 0;
   const unknownW = (chillerLost ? core.models.nominalIceMakingW : 0) + guessed;
   const flows = { ...core.flows };
+  const leaving = core.health.get('leaving-water');
+  const doubted = leaving?.setAside === null && leaving.nis > DOUBTED_ABOVE && core.flowingS > FLUSHED_S;
   for (const belief of core.beliefs) {
     predict(belief, (x) => advance(core.models, x, drive, flows), ZERO, core.work);
     // The last evaluation of a prediction is at the belief's centre: its flows are the belief's.
     const iced = belief.mean[X.ice] > 0.01;
     processNoise(core.models, flows, running.flowing, iced, unknownW, dtS, core.noise);
+    if (doubted) addDoubt(core.noise, dtS);
     for (let i = 0; i < STATES; i++) belief.cov[i * STATES + i] += core.noise[i];
     if (belief === best) core.flows = { ...flows };
   }

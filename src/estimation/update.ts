@@ -187,12 +187,13 @@ function learnMachine(learner: Learner, beliefs: readonly Belief[], now: Circums
   if (now.drive.charging < 1 || now.chargingS < SETTLED_S) return;
   const { heard, drive } = now;
   const { senses } = learner;
+  const noise = learner.models.internal ? NOISE.coolantHidden : NOISE.coolant;
   for (const [point, readC] of [
     ['coolant-supply', heard.supplyC],
     ['coolant-return', heard.returnC],
   ] as const) {
     if (readC !== null && readC < 5) {
-      learnScalar(learner, beliefs, now, point, senses.coolant(point, drive), readC, NOISE.coolant);
+      learnScalar(learner, beliefs, now, point, senses.coolant(point, drive), readC, noise);
     }
   }
   if (drive.chillerW !== null) {
