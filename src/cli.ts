@@ -79,8 +79,8 @@ function program(): Command {
     .action(ending(async () => (await import('./verbs/night.ts')).night));
   cli
     .command('nights')
-    .description('the ledger of nights, and what drifts')
-    .option(...CONFIG)
+    .description('the ledger of nights, and what drifts; of several sites when several files are named')
+    .option('--config <files...>', 'site files', ['site.yaml'])
     .option('--from <date>', 'first night')
     .option('--to <date>', 'last night')
     .option('--csv', 'print it as CSV')

@@ -1,10 +1,11 @@
 import { limitAt } from './comfort-hours.ts';
 import type { SiteConfig } from './config.ts';
 import { charges, commandFor, discharges, type Command, type Wish } from './commands.ts';
-import { priceAt, type Stages, type Moment, type Planned, type CycleState } from './cycle-values.ts';
+import { isHome, priceAt, type Stages, type Moment, type Planned, type CycleState } from './cycle-values.ts';
 import type { Request } from './dispatch/types.ts';
 import { roomWantsCooling, withWish } from './dispatch/wishes.ts';
 import type { IceEstimate } from './estimation/types.ts';
+import { commandAt } from './planning/plan.ts';
 import { meanOverRooms } from './points.ts';
 import { localClock } from './time.ts';
 
@@ -18,7 +19,7 @@ export function requestOf(
 ): Request {
   const { config } = stages;
   const { planned } = state;
-  const planCommand = plannedCommand(planned, moment);
+  const planCommand = plannedCommand(config, planned, moment);
   const numbers = {
     iceOnHandKwh: estimate.iceOnHandKwh,
     iceOnHandLowKwh: estimate.lowKwh,
@@ -36,19 +37,30 @@ export function requestOf(
   const changedByRoom = discharges(planCommand) && !discharges(command);
   return {
     command,
-    reason: changedByRoom ? roomReason(stages, moment, command) : planReason(planned, planCommand),
+    reason: changedByRoom
+      ? roomReason(stages, moment, command)
+      : planReason(stages, moment, planned, planCommand),
     numbers,
   };
 }
 
-/** The strategy's command for the slot of now; later slots of an old plan are taken from its steps. */
-function plannedCommand(planned: Planned | null, { nowMs, clock }: Moment): Command {
+/** The strategy's command for now; the plan's own later steps say what follows when it grows old. */
+function plannedCommand(config: SiteConfig, planned: Planned | null, moment: Moment): Command {
   // Without a clock neither prices nor home hours mean anything: the room alone decides, with ice that is there.
-  if (clock.state === 'doubtful') return 'discharge';
+  if (moment.clock.state === 'doubtful') return 'discharge';
   if (planned === null) return 'hold';
-  if (nowMs < planned.plan.madeMs + planned.plan.slotMs) return planned.command;
-  const step = planned.plan.steps.findLast((candidate) => candidate.startMs <= nowMs);
-  return step?.command ?? 'hold';
+  return planned.strategy === 'planned'
+    ? commandAt(planned.plan, moment.nowMs, roomIsNear(config, moment))
+    : planned.command;
+}
+
+/** How far under the limit a room counts as soon to be cooled. */
+const NEAR_LIMIT_K = 0.5;
+
+function roomIsNear(config: SiteConfig, { nowMs, live }: Moment): boolean {
+  const roomC = meanOverRooms(live, 'room-temperature');
+  const limitC = limitAt(config.comfort, config.site.zone, nowMs);
+  return roomC !== null && roomC > limitC - NEAR_LIMIT_K && isHome(config, live, nowMs);
 }
 
 function withRoom({ config }: Stages, state: CycleState, { nowMs, live }: Moment, asked: Command): Command {
@@ -82,9 +94,19 @@ function shownC(config: SiteConfig, c: number): string {
   return config.site.units === 'IP' ? `${(c * 1.8 + 32).toFixed(1)} °F` : `${c.toFixed(1)} °C`;
 }
 
-function planReason(planned: Planned | null, command: Command): string {
+function planReason(
+  { config }: Stages,
+  { nowMs, live }: Moment,
+  planned: Planned | null,
+  command: Command,
+): string {
   if (planned === null) return 'Waiting for the first plan.';
-  return command === planned.command
-    ? planned.reason
-    : 'Going on with the last plan until the next one is made.';
+  if (command === planned.command) return planned.reason;
+  if (charges(command) !== charges(planned.command) || !discharges(command)) {
+    return `Going on with the plan made at ${localClock(config.site.zone, planned.plan.madeMs)}.`;
+  }
+  const limitC = limitAt(config.comfort, config.site.zone, nowMs);
+  const roomC = meanOverRooms(live, 'room-temperature') ?? limitC;
+  const making = charges(command) ? ', while making more' : '';
+  return `The rooms are at ${shownC(config, roomC)}, close to their limit of ${shownC(config, limitC)}: cooling with ice that is there${making}.`;
 }

@@ -12,7 +12,7 @@ import type { Stages, Moment, Wanted, Outlook, Planned, CycleState } from './cyc
 import { clear, speaking, type Spoken } from './dispatch/interlocks.ts';
 import { freshMemory, limitsOf } from './dispatch/limits.ts';
 import type { DispatchMemory, PlantView } from './dispatch/types.ts';
-import { wishNow } from './dispatch/wishes.ts';
+import { SET_POINT_UNDER_LIMIT_K, wishNow } from './dispatch/wishes.ts';
 import type { Estimator, IceEstimate } from './estimation/types.ts';
 import type { Forecaster } from './forecasting/forecaster.ts';
 import type { ClearedCommand } from './order.ts';
@@ -37,6 +37,16 @@ const SOLVE_LIMIT_MS = 2000;
 
 export function startState(nowMs: number, dispatch: DispatchMemory | null): CycleState {
   return { dispatch: dispatch ?? freshMemory(nowMs), planned: null, order: null, lastMs: null };
+}
+
+/** The rooms are held at a set point a little under their limits, so that is what the load is forecast for. */
+export function forecastSite(config: SiteConfig): SiteConfig {
+  const { limitC, sleepingLimitC } = config.comfort;
+  const sleeping = sleepingLimitC === null ? null : sleepingLimitC - SET_POINT_UNDER_LIMIT_K;
+  return {
+    ...config,
+    comfort: { ...config.comfort, limitC: limitC - SET_POINT_UNDER_LIMIT_K, sleepingLimitC: sleeping },
+  };
 }
 
 export function stagesOf(config: SiteConfig, estimator: Estimator, forecaster: Forecaster): Stages {

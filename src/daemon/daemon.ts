@@ -7,7 +7,7 @@ import type { Mode } from '../commands.ts';
 import type { SiteConfig } from '../config.ts';
 import { planRecordOf } from '../cycle-plan.ts';
 import type { CycleState, Moment, Stages } from '../cycle-values.ts';
-import { replan, replanDue, stagesOf, startState, tick, type Ticked } from '../cycle.ts';
+import { forecastSite, replan, replanDue, stagesOf, startState, tick, type Ticked } from '../cycle.ts';
 import { judgeClock, type ClockVerdict } from '../dispatch/clock.ts';
 import { RimeholdError, sentenceOf } from '../errors.ts';
 import { createEstimator } from '../estimation/estimator.ts';
@@ -78,7 +78,7 @@ export class Daemon {
     this.#stages = stagesOf(
       this.#config,
       createEstimator(this.#config, { seed, startMs: nowMs }),
-      createForecaster(this.#config, { seed, memory: this.#memory.load('forecaster') }),
+      createForecaster(forecastSite(this.#config), { seed, memory: this.#memory.load('forecaster') }),
     );
     this.#state = startState(nowMs, this.#memory.dispatch(nowMs));
   }
@@ -272,7 +272,7 @@ export class Daemon {
     const { limitC } = this.owner.settings(this.#parts.clock.nowMs());
     const memory = this.#stages.forecaster.memory();
     this.#config = withLimit(this.#parts.config, limitC);
-    const forecaster = createForecaster(this.#config, { seed: this.#parts.seed, memory });
+    const forecaster = createForecaster(forecastSite(this.#config), { seed: this.#parts.seed, memory });
     this.#stages = stagesOf(this.#config, this.#stages.estimator, forecaster);
     this.planAfresh();
   }

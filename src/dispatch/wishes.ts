@@ -25,7 +25,7 @@ export function withWish(asked: Command, wish: Wish | null): Command {
 /** Half width of the band round the room's set point in which delivery keeps doing what it does. */
 const BAND_K = 0.25;
 /** How far under the comfort limit the set point lies, so that the band stays below the limit. */
-const UNDER_LIMIT_K = 0.4;
+export const SET_POINT_UNDER_LIMIT_K = 0.4;
 
 /**
  * Whether a room that may be cooled wants it now: on above the band, off below it, else as before.
@@ -33,6 +33,6 @@ const UNDER_LIMIT_K = 0.4;
  */
 export function roomWantsCooling(roomC: number | null, limitC: number, delivering: boolean): boolean {
   if (roomC === null) return true;
-  const setPointC = limitC - UNDER_LIMIT_K;
+  const setPointC = limitC - SET_POINT_UNDER_LIMIT_K;
   return roomC > setPointC + (delivering ? -BAND_K : BAND_K);
 }

@@ -3,7 +3,7 @@
  * seasons, and every figure comes through the same pure functions that the daemon calls.
  */
 import type { SiteConfig } from '../../src/config.ts';
-import { replan, replanDue, stagesOf, startState, tick, type Ticked } from '../../src/cycle.ts';
+import { forecastSite, replan, replanDue, stagesOf, startState, tick, type Ticked } from '../../src/cycle.ts';
 import { planRecordOf } from '../../src/cycle-plan.ts';
 import type { CycleState, Moment, Stages, Wanted } from '../../src/cycle-values.ts';
 import { createEstimator } from '../../src/estimation/estimator.ts';
@@ -45,7 +45,7 @@ export class DirectLoop {
     this.stages = stagesOf(
       config,
       createEstimator(config, { seed, startMs }),
-      createForecaster(config, { seed }),
+      createForecaster(forecastSite(config), { seed }),
     );
     this.state = startState(startMs, null);
   }
