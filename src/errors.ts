@@ -65,3 +65,9 @@ export function systemWords(error: unknown): string {
   const code = error instanceof Error && 'code' in error ? String(error.code) : '';
   return SYSTEM_WORDS[code] ?? sentenceOf(error);
 }
+
+/** What was found, fit for a terminal: a whole file, or a binary one, may stand where one word was expected. */
+export function printable(text: string, most = 80): string {
+  const clean = text.replace(/[^\p{L}\p{N}\p{P}\p{S} ]/gu, '·');
+  return clean.length <= most ? clean : `${clean.slice(0, most)}…`;
+}

@@ -13,14 +13,14 @@ import { RimeholdError } from './errors.ts';
 import { Actuators } from './mqtt/actuators.ts';
 import { announcements } from './mqtt/announce.ts';
 import { BrokerClient } from './mqtt/client.ts';
-import { startEmbeddedBroker, type EmbeddedBroker } from './mqtt/embedded-broker.ts';
+import type { EmbeddedBroker } from './mqtt/embedded-broker.ts';
 import { HomieDevice } from './mqtt/homie-device.ts';
-import { deviceTopic } from './mqtt/homie.ts';
 import { Intake } from './mqtt/intake.ts';
-import type { BrokerOptions, LinkState } from './mqtt/link.ts';
+import type { LinkState } from './mqtt/link.ts';
 import type { Store } from './store/store.ts';
 import type { Clock } from './time.ts';
-import { readBytes, secret, siteStore } from './verbs/site.ts';
+import { brokerOptions } from './verbs/broker.ts';
+import { secret, siteStore } from './verbs/site.ts';
 import { VERSION } from './verbs/version.ts';
 import { createWebServer, type WebServer } from './web/server.ts';
 
@@ -83,9 +83,7 @@ async function start(
   const passphrase = secret('the passphrase', 'web.passphrase', passphraseFile, passphraseEnv);
   const store = siteStore(config, false);
   stops.push(() => closeStore(store));
-  const embedded = config.broker.embedded
-    ? await startEmbeddedBroker({ host: config.broker.listenHost, port: config.broker.listenPort })
-    : null;
+  const embedded = config.broker.embedded ? await startBroker(config) : null;
   if (embedded) stops.push(() => embedded.stop());
   const { client, daemon, parts, givenUp } = build(config, options, store, embedded);
   const web = await startPage(daemon, parts, passphrase);
@@ -106,6 +104,12 @@ async function start(
     brokerUrl: embedded?.url ?? config.broker.url,
     givenUp,
   };
+}
+
+/** Loaded only where a site asks for it, to spare a small machine the time and the memory. */
+async function startBroker({ broker }: SiteConfig): Promise<EmbeddedBroker> {
+  const { startEmbeddedBroker } = await import('./mqtt/embedded-broker.ts');
+  return startEmbeddedBroker({ host: broker.listenHost, port: broker.listenPort });
 }
 
 /** Constructs what speaks through the broker, and the daemon; nothing is started. */
@@ -201,39 +205,6 @@ async function startPage(
   });
   const { port } = await server.start();
   return { server, url: `http://${web.host}:${port}/` };
-}
-
-export function brokerOptions(config: SiteConfig, embedded: EmbeddedBroker | null): BrokerOptions {
-  const { broker, site } = config;
-  const will = { topic: `${deviceTopic(config)}/$state`, payload: 'lost' };
-  const clientId = broker.clientId ?? `rimehold-${site.id}`;
-  if (embedded)
-    return { url: embedded.url, clientId, protocol: '3.1.1', user: null, password: null, tls: null, will };
-  const file = (path: string | null, key: string): Uint8Array | null =>
-    path === null
-      ? null
-      : readBytes(path, 'a certificate or its key', `mend broker.tls.${key} in the site file`);
-  return {
-    url: broker.url,
-    clientId,
-    protocol: broker.protocol,
-    user: broker.user,
-    password: secret(
-      'the password of the broker',
-      'broker.password',
-      broker.passwordFile,
-      broker.passwordEnv,
-    ),
-    tls:
-      broker.tls === null
-        ? null
-        : {
-            ca: file(broker.tls.caFile, 'ca-file'),
-            cert: file(broker.tls.certFile, 'cert-file'),
-            key: file(broker.tls.keyFile, 'key-file'),
-          },
-    will,
-  };
 }
 
 export function createLog(config: SiteConfig): Log {

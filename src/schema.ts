@@ -3,6 +3,7 @@
  * From the same declaration come the parser, the faults, the reference and the options schema.
  */
 import * as z from 'zod';
+import { printable } from './errors.ts';
 import { isZone, parseDuration } from './time.ts';
 import { parseQuantity, unitNames, type Dimension } from './units.ts';
 
@@ -54,15 +55,8 @@ function refuse(
 
 function shown(value: unknown): string {
   if (value === undefined) return 'nothing';
-  return clipped(typeof value === 'string' ? `"${value}"` : (JSON.stringify(value) ?? typeof value));
+  return printable(typeof value === 'string' ? `"${value}"` : (JSON.stringify(value) ?? typeof value));
 }
-
-/** A whole file, or a binary one, may stand where one word was expected. */
-function clipped(text: string): string {
-  const printable = text.replace(/[^\p{L}\p{N}\p{P}\p{S} ]/gu, '·');
-  return printable.length <= MOST_SHOWN ? printable : `${printable.slice(0, MOST_SHOWN)}…`;
-}
-const MOST_SHOWN = 80;
 
 /** A physical value with its unit, kept inside in the dimension's own unit; refused outside its range. */
 export function quantity(dimension: Dimension, least: string, most: string): z.ZodType<number> {

@@ -21,14 +21,11 @@ export type SiteFile = { ok: true; config: SiteConfig } | { ok: false; faults: r
 export function parseSiteFile(text: string): SiteFile {
   const lines = new LineCounter();
   const document = parseDocument(text, { lineCounter: lines, prettyErrors: true });
-  if (document.errors.length > 0) {
-    return {
-      ok: false,
-      faults: document.errors.map((error) => ({
-        path: '',
-        sentence: `not readable as YAML: ${error.message.split('\n')[0]}`,
-      })),
-    };
+  // The first one only: a wrong indent makes a dozen more that are none.
+  const broken = document.errors.at(0);
+  if (broken) {
+    const sentence = `not readable as YAML: ${broken.message.split('\n')[0].replace(/:$/, '')}`;
+    return { ok: false, faults: [{ path: '', sentence }] };
   }
   const written: unknown = document.toJS();
   const parsed = siteSchema.safeParse(written ?? {});
@@ -77,6 +74,7 @@ function crossFaults(config: SiteConfig): Fault[] {
     ...bankFaults(config),
     ...powerFaults(config),
     ...actuatorFaults(config),
+    ...brokerFaults(config),
     ...secretFaults(config),
   ];
 }
@@ -152,6 +150,13 @@ function actuatorFaults({ actuators, points }: SiteConfig): Fault[] {
         ]
       : [],
   );
+}
+
+function brokerFaults({ broker }: SiteConfig): Fault[] {
+  if (URL.canParse(broker.url)) return [];
+  const shown = broker.url.replace(/\/\/.*@/, '//…@');
+  const expected = 'expected an address such as "mqtt://192.168.1.5:1883", with a port up to 65535';
+  return [{ path: 'broker/url', sentence: `${expected}, found "${shown}"` }];
 }
 
 function secretFaults({ broker, web }: SiteConfig): Fault[] {

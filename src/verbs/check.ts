@@ -3,7 +3,6 @@ import { existsSync } from 'node:fs';
 import type { SiteConfig } from '../config.ts';
 import { heatIntoRoom } from '../dispatch/alerts.ts';
 import { EXIT, RimeholdError, sentenceOf } from '../errors.ts';
-import { brokerOptions } from '../main.ts';
 import { BrokerClient } from '../mqtt/client.ts';
 import { Intake, type PointStatus } from '../mqtt/intake.ts';
 import { pointSpec, valueOf } from '../points.ts';
@@ -11,6 +10,7 @@ import type { ProbeState } from '../reports/coverage.ts';
 import { readSheet } from '../reports/night-schema.ts';
 import { noted, PAPER_WIDTH, wrapped } from '../reports/paper.ts';
 import { formatDuration, formatInstant, parseDuration, ZONE_DATA_VERSION } from '../time.ts';
+import { brokerOptions } from './broker.ts';
 import { loadSite, siteStore } from './site.ts';
 import { VERSION } from './version.ts';
 

@@ -1,7 +1,7 @@
 /** `rimehold import F.csv`: a reading log into the store. A faulty line is named and left out; the rest comes in. */
 import { createReadStream } from 'node:fs';
 import { createInterface } from 'node:readline';
-import { EXIT, RimeholdError } from '../errors.ts';
+import { EXIT, printable, RimeholdError } from '../errors.ts';
 import type { Reading } from '../points.ts';
 import { isLogHeader, LOG_HEADER, parseLogLine } from '../reading-log.ts';
 import { loadSite, siteStore, unreadable } from './site.ts';
@@ -38,7 +38,7 @@ export async function readLog(
         if (!isLogHeader(text))
           throw new RimeholdError(
             'usage',
-            `Expected a reading log with the header "${LOG_HEADER}" on line 1 of ${file}, found "${text.slice(0, 60)}"; give it that header and one reading a line.`,
+            `Expected a reading log with the header "${LOG_HEADER}" on line 1 of ${file}, found "${printable(text)}"; give it that header and one reading a line.`,
             { file },
           );
         continue;
@@ -56,7 +56,8 @@ export async function readLog(
         dropped[name] = (dropped[name] ?? 0) + 1;
       } else if (line.kind === 'fault') {
         faulty += 1;
-        if (faults.length < FAULTS_SHOWN) faults.push(`${file}, line ${number}: ${line.sentence}.`);
+        if (faults.length < FAULTS_SHOWN)
+          faults.push(`${file}, line ${number}: ${printable(line.sentence, 160)}.`);
       }
     }
   } catch (error) {

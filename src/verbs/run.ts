@@ -1,7 +1,7 @@
 /** `rimehold run`: the daemon, until it is told to stop. */
 import type { SiteConfig } from '../config.ts';
 import { EXIT, RimeholdError } from '../errors.ts';
-import { startSite, type Running } from '../main.ts';
+import type { Running } from '../main.ts';
 import { renderText } from '../reports/render-text.ts';
 import { createLapseClock } from '../simulator/lapse-clock.ts';
 import { parseInstant, type Clock } from '../time.ts';
@@ -19,6 +19,8 @@ export async function run(options: RunOptions): Promise<number> {
   const { clock, clockRate } = clockOf(options);
   // Listened for from the start: a signal that comes while it starts ends it as cleanly as any other.
   const asked = stopSignal();
+  // Loaded only now: a fault in the site file is told at once, also on a small machine.
+  const { startSite } = await import('../main.ts');
   const starting = startSite(config, { clock, clockRate });
   const running = await Promise.race([starting, asked]);
   if (running === undefined) return stopWhileStarting(starting);
