@@ -1,76 +1,19 @@
-/** The daemon's life on a real broker: told to stop, killed, its disk full, and a second daemon beside it. */
-import { execFileSync } from 'node:child_process';
-import { readdirSync, writeFileSync } from 'node:fs';
+/** The daemon's life on a real broker: told to stop, killed, and a second daemon beside it. */
 import { createServer } from 'node:net';
-import { join } from 'node:path';
 import { describe, expect, it, onTestFinished } from 'vitest';
-import { freePort, hasMosquitto, startMosquitto } from '../mqtt/mosquitto.ts';
-import { observe, until, type Observer } from '../mqtt/observer.ts';
-import { openStore, type Store } from '../../src/store/store.ts';
+import { freePort, hasMosquitto } from '../mqtt/mosquitto.ts';
+import { until } from '../mqtt/observer.ts';
+import { look, PATIENCE_MS, plant, ready, STATE, stateOf, stored, TIMED, valuesIn } from './plant.ts';
 import {
   expectNoInsides,
   expectRefusal,
   expectSentence,
   ownFolder,
   rimehold,
-  rimeholdAs,
   start,
   startDaemon,
   writeSite,
 } from './stranger.ts';
-
-const STATE = 'homie/5/juniper/$state';
-/** The machine may be busy with much else. */
-const PATIENCE_MS = 60_000;
-
-interface Plant {
-  readonly url: string;
-  readonly folder: string;
-  readonly observer: Observer;
-  readonly halt: () => Promise<void>;
-  /** Publishes leaving-water values, each a hundredth of a kelvin further, and returns them. */
-  readonly publish: (count: number) => Promise<number[]>;
-}
-
-async function plant(): Promise<Plant> {
-  const broker = await startMosquitto();
-  onTestFinished(() => broker.stop());
-  const observer = await observe(broker.url, 'homie/5/juniper/#');
-  onTestFinished(() => observer.stop());
-  let next = 0;
-  let lastMs = 0;
-  const publish = async (count: number): Promise<number[]> => {
-    const values = Array.from({ length: count }, () => 4 + next++ / 100);
-    for (const value of values) {
-      // each with a time of its own: two arrivals in one millisecond would be one reading
-      lastMs = Math.max(lastMs + 1, Date.now());
-      await observer.publish('juniper/bank/leaving', JSON.stringify({ value, at: new Date(lastMs) }));
-    }
-    return values;
-  };
-  return { url: broker.url, folder: ownFolder(), observer, halt: () => broker.halt(), publish };
-}
-
-/** The leaving water tells its own time. */
-const TIMED = [
-  'juniper/bank/leaving, unit: degC',
-  'juniper/bank/leaving, read: /value, time: /at, unit: degC',
-] as const;
-
-/** Looks into the database beside the daemon. */
-function look<T>(folder: string, read: (store: Store) => T, readOnly = true): T {
-  const store = openStore(join(folder, 'juniper.db'), { siteId: 'juniper', readOnly });
-  try {
-    return read(store);
-  } finally {
-    store.close();
-  }
-}
-
-const valuesIn = (store: Store): number[] => store.readingsBetween(0, Infinity).map(({ value }) => value);
-const stateOf = (observer: Observer): string | undefined => observer.latest(STATE)?.text;
-const ready = (observer: Observer): Promise<void> =>
-  until('the device to be ready', () => stateOf(observer) === 'ready', PATIENCE_MS);
 
 describe.skipIf(!hasMosquitto)('the daemon', () => {
   it('told to stop says goodbye, writes what waited and ends with 0', async () => {
@@ -118,9 +61,9 @@ describe.skipIf(!hasMosquitto)('the daemon', () => {
     const daemon = await startDaemon(folder);
     await ready(observer);
     await publish(50);
-    await until('a flush', () => look(folder, valuesIn).length >= 50, PATIENCE_MS);
+    await stored(folder, (count) => count >= 50);
     const more = publish(200);
-    await until('another', () => look(folder, valuesIn).length > 50, PATIENCE_MS);
+    await stored(folder, (count) => count > 50);
     const flushed = look(folder, (store) => ({
       values: valuesIn(store),
       records: store.recordsBetween(0, Infinity).length,
@@ -198,102 +141,3 @@ it('whose name another client has taken over, by a broker that tells, ends (3) a
   expect(last).toMatch(/rimehold-juniper.*broker\.client-id/);
   expect(look(folder, (store) => store.verify(), false)).toEqual([]);
 });
-
-const hasPrlimit = prlimitWorks();
-
-function prlimitWorks(): boolean {
-  try {
-    execFileSync('prlimit', ['--version'], { stdio: 'pipe' });
-    return true;
-  } catch {
-    console.warn('SKIPPED: prlimit is not installed; the full disk is not tried (it comes with util-linux).');
-    return false;
-  }
-}
-
-describe.skipIf(!hasPrlimit)('a full disk', () => {
-  /** Files may not be written (or may again), as on a full disk: SQLite meets EFBIG where it would meet ENOSPC. */
-  const room = (pid: number, bytes: '0' | 'unlimited'): void => {
-    execFileSync('prlimit', ['--pid', String(pid), `--fsize=${bytes}:unlimited`]);
-  };
-
-  it.skipIf(!hasMosquitto)(
-    'stops nothing: what comes waits in memory and is written when there is room again',
-    async () => {
-      const { url, folder, observer, publish } = await plant();
-      writeSite(folder, {
-        url,
-        changes: [TIMED],
-        store: 'file: juniper.db, flush: PT1S',
-        cycle: 'PT5S',
-        log: 'level: info',
-      });
-      const daemon = await startDaemon(folder);
-      await ready(observer);
-      const before = await publish(5);
-      await until('the first write', () => look(folder, valuesIn).length === 5, PATIENCE_MS);
-
-      room(daemon.pid, '0');
-      const fullMs = Date.now();
-      const during = await publish(30);
-      await until('a word of it', () => daemon.err().includes('juniper.db'), PATIENCE_MS);
-      await until(
-        'an alert',
-        () => alerts(observer).some((text) => text.includes('juniper.db')),
-        PATIENCE_MS,
-      );
-      const records = (): number =>
-        observer.seen.filter(({ topic }) => topic.endsWith('/dispatch/order')).length;
-      const then = records();
-      await until('another command', () => records() > then, PATIENCE_MS);
-      expect(look(folder, valuesIn)).toEqual(before);
-
-      room(daemon.pid, 'unlimited');
-      await until('the waiting readings', () => look(folder, valuesIn).length === 35, PATIENCE_MS);
-      expect(look(folder, valuesIn)).toEqual([...before, ...during]);
-      expect(look(folder, (store) => store.recordsBetween(fullMs, Infinity).length)).toBeGreaterThan(0);
-      await until('a word that it is over', () => daemon.err().includes('takes data again'), PATIENCE_MS);
-
-      room(daemon.pid, '0');
-      await publish(7);
-      daemon.signal('SIGTERM');
-      const { status, err } = await daemon.ended;
-      expect(status).toBe(3);
-      expectNoInsides(err);
-      const last = err.trimEnd().split('\n').at(-1) ?? '';
-      expectSentence(`${last}\n`);
-      expect(last).toMatch(/\d+ readings and \d+ records .*juniper\.db.*free some space/);
-      expect(look(folder, (store) => store.verify(), false)).toEqual([]);
-      expect(look(folder, valuesIn)).toEqual([...before, ...during]);
-    },
-  );
-
-  it('while a log comes in says so (3), and the same import later brings all of it once', async () => {
-    const folder = ownFolder();
-    writeSite(folder);
-    look(folder, () => undefined, false);
-    const lines = Array.from({ length: 20_000 }, (_, index) => {
-      const at = new Date(Date.UTC(2026, 6, 14) + index * 1000).toISOString();
-      return `${at},leaving-water,${4 + (index % 100) / 100}`;
-    });
-    writeFileSync(join(folder, 'july.csv'), `time,point,value\n${lines.join('\n')}\n`);
-    const ended = await rimeholdAs({ mostFileBytes: 300_000 }, folder, 'import', 'july.csv');
-    expectRefusal(ended, 3, 'juniper.db', 'july.csv', 'disk full', 'free some space');
-    expect(look(folder, valuesIn).length).toBeLessThan(lines.length);
-
-    expect(await rimehold(folder, 'import', 'july.csv')).toMatchObject({ status: 0, err: '' });
-    expect(look(folder, valuesIn)).toHaveLength(lines.length);
-  });
-
-  it('while a copy is made leaves no half of one (3)', async () => {
-    const folder = ownFolder();
-    writeSite(folder);
-    look(folder, () => undefined, false);
-    const ended = await rimeholdAs({ mostFileBytes: 40_000 }, folder, 'backup', 'copy.db');
-    expectRefusal(ended, 3, 'copy.db', 'disk full', 'free some space');
-    expect(readdirSync(folder).filter((name) => name.startsWith('copy'))).toEqual([]);
-  });
-});
-
-const alerts = ({ seen }: Observer): string[] =>
-  seen.filter(({ topic }) => topic.includes('/$alert/')).map(({ text }) => text);
