@@ -35,7 +35,7 @@ describe('values with units', () => {
     const parsed = parseSiteFile(
       changed(
         ['water: 240 L', 'water: 63.4 gal'],
-        ['limit: 25.5 degC', 'limit: 78 degF'],
+        ['limit: 26 degC', 'limit: 78 degF'],
         ['max-age: PT5M', 'max-age: PT90S'],
       ),
     );
