@@ -53,8 +53,8 @@ export function sentenceOf(error: unknown): string {
 const SYSTEM_WORDS: Readonly<Record<string, string>> = {
   ENOENT: 'there is no such file or folder',
   ENOTDIR: 'a part of its path is no folder',
-  EACCES: 'this user may not do that',
-  EPERM: 'this user may not do that',
+  EACCES: 'this user has no right to it',
+  EPERM: 'this user has no right to it',
   EROFS: 'its disk is read-only',
   ENOSPC: 'its disk is full',
   EISDIR: 'it is a folder',

@@ -39,7 +39,7 @@ function reasonFor(error: unknown, file: string): string {
 
 /** Reads and checks a site file; throws `config` with every fault at once. */
 export function loadSite(file: string): SiteConfig {
-  const text = readBytes(file, 'a site file', 'name yours with --config').toString('utf8');
+  const text = readBytes(file, 'a site file', 'name one that can be read with --config').toString('utf8');
   // Six missing sections would be a riddle to whoever made the file with a slip of the editor.
   if (text.split('\n').every((line) => /^\s*(#.*)?$/.test(line)))
     throw new RimeholdError(

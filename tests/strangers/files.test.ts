@@ -1,10 +1,18 @@
 /** Files that are not what they should be: site file, secrets, database, reading log, backup. */
 import Database from 'better-sqlite3';
-import { existsSync, mkdirSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
+import { chmodSync, existsSync, mkdirSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import { openStore } from '../../src/store/store.ts';
-import { expectNoInsides, expectRefusal, ownFolder, rimehold, writeSite } from './stranger.ts';
+import {
+  expectNoInsides,
+  expectRefusal,
+  ownFolder,
+  powerlessUser,
+  rimehold,
+  rimeholdAs,
+  writeSite,
+} from './stranger.ts';
 
 const HEADER = 'time,point,value';
 const READING = '2026-07-14T18:00:00Z,leaving-water,4.25';
@@ -19,6 +27,16 @@ describe('the site file', () => {
     const folder = ownFolder();
     mkdirSync(join(folder, 'sites'));
     expectRefusal(await rimehold(folder, 'run', '--config', 'sites'), 3, 'sites', 'folder', '--config');
+  });
+
+  const uid = powerlessUser();
+  it.skipIf(uid === null)('that may not be read is named with the reason', async () => {
+    const folder = ownFolder();
+    const file = writeSite(folder);
+    chmodSync(folder, 0o755);
+    chmodSync(join(folder, file), 0);
+    const ended = await rimeholdAs({ uid: uid ?? 0 }, folder, 'check');
+    expectRefusal(ended, 3, file, 'no right', '--config');
   });
 
   it.each([

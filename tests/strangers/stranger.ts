@@ -2,7 +2,7 @@
  * What a stranger has: the built command line, a folder of their own, a site file. Every process is ended by its own
  * number with the test that started it.
  */
-import { spawn, type ChildProcess } from 'node:child_process';
+import { spawn, spawnSync, type ChildProcess } from 'node:child_process';
 import { existsSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
@@ -48,13 +48,28 @@ export interface How {
   readonly out?: number | 'unread';
   /** Files may not grow beyond this many bytes, as on a disk that is nearly full. */
   readonly mostFileBytes?: number;
+  /** Number of the user that runs it; only root can name another. */
+  readonly uid?: number;
 }
 
-function launch(folder: string, args: readonly string[], { out, mostFileBytes }: How): Process {
+/** A user whom file modes hold back: whoever runs the tests, or where that is root, a user without rights; null for none. */
+export function powerlessUser(): number | null {
+  const own = process.getuid?.() ?? null;
+  if (own !== 0) return own;
+  const uid = 65_534;
+  if (spawnSync('test', ['-r', CLI], { uid }).status === 0) return uid;
+  console.warn(
+    'SKIPPED: run as root, in a folder that others may not enter; unreadable files are not tried.',
+  );
+  return null;
+}
+
+function launch(folder: string, args: readonly string[], { out, mostFileBytes, uid }: How): Process {
   const limit = mostFileBytes === undefined ? [] : ['prlimit', `--fsize=${mostFileBytes}:unlimited`];
   const [command, ...rest] = [...limit, process.execPath, CLI, ...args];
   const child = spawn(command, rest, {
     cwd: folder,
+    ...(uid === undefined ? {} : { uid }),
     stdio: ['ignore', typeof out === 'number' ? out : 'pipe', 'pipe'],
   });
   const said = { out: '', err: '' };
