@@ -1,6 +1,6 @@
 #!/usr/bin/env node
 /** The verbs. Each ends with 0 (yes), 1 (the answer is no), 2 (wrong use) or 3 (could not run). */
-import { Command, CommanderError } from 'commander';
+import { Command, CommanderError, InvalidArgumentError } from 'commander';
 import { EXIT, exitStatusOf, RimeholdError, sentenceOf, systemWords } from './errors.ts';
 import { VERSION } from './verbs/version.ts';
 
@@ -26,6 +26,12 @@ function ending(load: () => Promise<Verb>): (...args: unknown[]) => Promise<void
   };
 }
 
+function wholeNumber(text: string): string {
+  if (!/^\d{1,9}$/.test(text))
+    throw new InvalidArgumentError('Expected a whole number of up to nine digits.');
+  return text;
+}
+
 function program(): Command {
   const cli = new Command('rimehold')
     .description(
@@ -45,7 +51,7 @@ function program(): Command {
     .command('demo')
     .description('a simulated plant, one evening in two minutes, and its night sheet')
     .option('--stay', 'keep running after the night sheet')
-    .option('--seed <n>', 'weather and probes of another draw', '1')
+    .option('--seed <n>', 'weather and probes of another draw', wholeNumber, '1')
     .action(ending(async () => (await import('./verbs/demo.ts')).demo));
   cli
     .command('check')

@@ -61,6 +61,11 @@ describe('wrong words', () => {
     ['a word too many', ['run', 'now'], ['rimehold run', '--help']],
     ['a missing argument', ['import'], ['file', 'rimehold import --help']],
     ['a missing option', ['estimate', '--out', 'a.csv'], ['--readings', 'rimehold estimate --help']],
+    [
+      'a seed that is none',
+      ['demo', '--seed', 'lucky'],
+      ['--seed', 'lucky', 'whole number', 'rimehold demo --help'],
+    ],
     ['an option without its value', ['run', '--lapse'], ['--lapse', 'rimehold run --help']],
   ])('%s', async (_name, args, facts) => {
     const folder = ownFolder();
