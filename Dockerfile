@@ -30,6 +30,5 @@ EXPOSE 8377
 STOPSIGNAL SIGTERM
 HEALTHCHECK --interval=60s --timeout=5s --start-period=20s \
   CMD ["node", "-e", "fetch('http://127.0.0.1:8377/health').then((r) => process.exit(r.ok ? 0 : 1), () => process.exit(1))"]
-# A small young generation: the daemon makes little garbage, and memory is dear on small boards.
-ENTRYPOINT ["node", "--max-semi-space-size=2", "/app/dist/cli.js"]
+ENTRYPOINT ["node", "/app/dist/cli.js"]
 CMD ["run", "--config", "/site/site.yaml"]
