@@ -116,7 +116,7 @@ function drawScenarios(
   const leads = ahead.outdoorC.length;
   const outdoorC = ahead.outdoorC.map((own, i) => blended(past.blends, i + 1, own, hubC?.[i] ?? null));
   const expected = { ...ahead, outdoorC, disturbanceW: past.disturbanceW };
-  const random = createRandom(seed).fork(`forecast ${lastHour}`);
+  const random = createRandom(seed).fork('forecast');
   const issues = past.comparable(hubC !== null);
   const errors = drawTrajectories(issues, past.happened, lastHour, leads, config.planning.scenarios, random);
   return errors.map((error) => runScenario(frame, expected, error, 1 / errors.length));

@@ -34,10 +34,17 @@ export type Observed = Pick<
 const FULL_BATTERY_PCT = 97;
 /** The least part of an hour that must have been heard for its mean to stand. */
 const LEAST_HEARD = 0.5;
+/** Moisture is known to be none while nothing is delivered, so an hour with a gap is one with unknown delivery. */
+const LATENT_HEARD = 0.9;
 
 class Mean {
   private sum = 0;
   private weightMs = 0;
+  private readonly least: number;
+
+  constructor(least = LEAST_HEARD) {
+    this.least = least;
+  }
 
   add(value: number | null, spanMs: number): void {
     if (value === null || !Number.isFinite(value)) return;
@@ -46,7 +53,7 @@ class Mean {
   }
 
   get value(): number | null {
-    return this.weightMs >= LEAST_HEARD * HOUR_MS ? this.sum / this.weightMs : null;
+    return this.weightMs >= this.least * HOUR_MS ? this.sum / this.weightMs : null;
   }
 
   get valueOrZero(): number {
@@ -92,7 +99,8 @@ export class HourGatherer {
       means.roomW.add(humidityRatio(record.roomC, record.roomHumidityPct, this.pressurePa), spanMs);
     }
     const sensibleW = sensibleOf(record);
-    means.latent.add(record.latentW, spanMs);
+    // A coil that rests takes nothing: without its rests the mean of an hour would be that of its runs.
+    means.latent.add(record.latentW ?? (sensibleW > 0 ? null : 0), spanMs);
     means.sensible.add(sensibleW, spanMs);
     means.machine.add(this.machineHeatOf(record, sensibleW), spanMs);
   }
@@ -140,7 +148,7 @@ function newMeans() {
     panel: new Mean(),
     machine: new Mean(),
     sensible: new Mean(),
-    latent: new Mean(),
+    latent: new Mean(LATENT_HEARD),
     home: new Mean(),
   };
 }

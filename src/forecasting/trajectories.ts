@@ -54,7 +54,7 @@ export function drawTrajectories(
     { length: fromPast },
     (_, i) => past[Math.floor(((i + 0.5) * past.length) / fromPast)],
   );
-  const drawn = Array.from({ length: count - fromPast }, () => draw(leads, random));
+  const drawn = Array.from({ length: count - fromPast }, (_, k) => drawOne(k, nowHour, leads, random));
   return [...picked, ...drawn];
 }
 
@@ -97,16 +97,37 @@ function errors(
   return known >= least * leads ? values : null;
 }
 
-function draw(leads: number, random: Random): Trajectory {
-  const series = ({ sd, keep }: { sd: number; keep: number }): Float64Array => {
+/**
+ * Drawn in pairs of opposite sign, so that few draws have no mean of their own (antithetic variates, Hammersley & Morton
+ * 1956). The shock of an hour is drawn for that hour and not for the moment of asking: an hour later the same draws go
+ * on, and a plan is not thrown about by fresh ones.
+ */
+function drawOne(k: number, nowHour: number, leads: number, random: Random): Trajectory {
+  const sign = k % 2 === 0 ? 1 : -1;
+  const series = (kind: keyof typeof DRAWN): Float64Array => {
+    const { sd, keep } = DRAWN[kind];
+    const fresh = sign * sd * Math.sqrt(1 - keep * keep);
+    const shocks = shocksOf(random.fork(`${kind} ${Math.floor(k / 2)}`), nowHour + 1, leads);
     let value = 0;
-    const fresh = sd * Math.sqrt(1 - keep * keep);
-    return Float64Array.from({ length: leads }, () => (value = keep * value + fresh * random.normal()));
+    return shocks.map((shock) => (value = keep * value + fresh * shock));
   };
   return {
-    outdoorC: series(DRAWN.outdoorC),
-    dewC: series(DRAWN.dewC),
-    clearness: series(DRAWN.clearness),
-    disturbanceW: series(DRAWN.disturbanceW),
+    outdoorC: series('outdoorC'),
+    dewC: series('dewC'),
+    clearness: series('clearness'),
+    disturbanceW: series('disturbanceW'),
   };
+}
+
+/** One standard normal for each hour since the epoch, from an hour on; the same for an hour whenever it is asked for. */
+function shocksOf(random: Random, fromHour: number, count: number): Float64Array {
+  const firstDay = Math.floor(fromHour / 24);
+  const days = Math.ceil((fromHour + count) / 24) - firstDay;
+  const values = new Float64Array(days * 24);
+  for (let day = 0; day < days; day += 1) {
+    const ofDay = random.fork(`day ${firstDay + day}`);
+    for (let hour = 0; hour < 24; hour += 1) values[day * 24 + hour] = ofDay.normal();
+  }
+  const skip = fromHour - firstDay * 24;
+  return values.slice(skip, skip + count);
 }

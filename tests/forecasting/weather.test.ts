@@ -201,6 +201,23 @@ describe('error trajectories', () => {
     expect(draw(5)[3].outdoorC).not.toEqual(draw(6)[3].outdoorC);
   });
 
+  it('are drawn in opposite pairs, so that few of them have no mean of their own', () => {
+    const drawn = drawTrajectories([], happened(0), FIRST, 36, 8, createRandom(5));
+    for (let lead = 0; lead < 36; lead += 1) {
+      expect(drawn.reduce((sum, t) => sum + t.outdoorC[lead], 0)).toBeCloseTo(0, 9);
+      expect(drawn.reduce((sum, t) => sum + t.disturbanceW[lead], 0)).toBeCloseTo(0, 9);
+    }
+  });
+
+  it('go on an hour later where they stood, but for the hour that has come', () => {
+    const at = (hour: number) => drawTrajectories([], happened(0), hour, 36, 8, createRandom(5))[0].outdoorC;
+    const [then, later] = [at(FIRST + 20), at(FIRST + 21)];
+    // What is left of the first hour's shock fades by the draw's own persistence, 0.94 an hour.
+    for (const lead of [2, 10, 30]) {
+      expect(then[lead - 1] - later[lead - 2]).toBeCloseTo(then[0] * 0.94 ** (lead - 1), 9);
+    }
+  });
+
   it('are kept one every three hours for 30 days', () => {
     let kept: Issue[] = [];
     for (let hour = 0; hour < 60 * 24; hour += 1) kept = keepIssue(kept, issue(hour));
@@ -287,6 +304,15 @@ describe('hours gathered from records', () => {
   it('count delivery as sensible and latent, and fans as heat', () => {
     const line = gathered(config, four({ roomC: 25, deliveredW: 1000, latentW: 200, fanPowerW: 40 }));
     expect(line).toMatchObject({ sensibleW: 800, latentW: 200, machineHeatW: -760 });
+  });
+
+  it('count the rests of a coil as no moisture taken, and an hour without a hygrometer as unknown', () => {
+    const run = { roomC: 25, deliveredW: 1000, latentW: 200 };
+    const rest = { roomC: 25, deliveredW: null, latentW: null };
+    expect(gathered(config, [run, rest, run, rest])).toMatchObject({ sensibleW: 400, latentW: 100 });
+    expect(gathered(config, [run, rest, rest, rest])).toMatchObject({ sensibleW: 200, latentW: 50 });
+    const blind = { roomC: 25, deliveredW: 1000, latentW: null };
+    expect(gathered(config, [blind, rest, blind, rest])).toMatchObject({ sensibleW: 500, latentW: null });
   });
 
   it('count a condenser in the cooled room as heat', () => {
