@@ -9,6 +9,7 @@ import { newWorkspace, type Belief, type Workspace } from './filter.ts';
 import { Folder } from './fold.ts';
 import { PROBE_POINTS, priorsFor, STATES, type Priors, type ProbePoint } from './layout.ts';
 import type { Moments } from './mixture.ts';
+import { newPlateauWatch, type PlateauWatch } from './plateau-end.ts';
 import { sensesOf, type Senses } from './observe.ts';
 import { newFlows, type Flows, type PlantModels } from './process.ts';
 import type { Nominal } from './report.ts';
@@ -41,7 +42,11 @@ export interface Core {
   restingS: number;
   /** Probability of flow where only the leaving water tells. */
   flowChance: number;
+  plateau: PlateauWatch;
+  plateauEnded: boolean;
   leavingBeforeC: number | null;
+  /** Entering and leaving contradict each other: probably swapped, not yet sure. */
+  contrary: boolean;
   /** Measured over nominal flow, once a meter was heard. */
   meterRatio: number | null;
   electrode: boolean | null;
@@ -99,7 +104,10 @@ export function newCore(config: SiteConfig, startMs: number, stepMs: number): Co
     flowingS: 0,
     restingS: 0,
     flowChance: 0.1,
+    plateau: newPlateauWatch(),
+    plateauEnded: false,
     leavingBeforeC: null,
+    contrary: false,
     meterRatio: null,
     electrode: null,
     fullSaid: false,

@@ -83,7 +83,9 @@ const HOURS_S = 3 * 3600;
 /**
  * [mean, standard deviation, forgetting time]. Spreads are what a nameplate is worth (common practice, no source):
  * COP ±15 %, leak ±40 %, flow ±20 %, probes ±0.5 K at their limits; conductances known to a third.
- * The ice and the two temperatures are no parameters: their rows are unused here.
+ * An internal-melt bank gives its cold more freely near full than a power law says (published conductance polynomial of
+ * Henze & Krarti 2002, and the measured tank): its bend starts above nothing.
+ * The ice and the water's temperatures are no parameters: their rows are unused here.
  */
 function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [number, number, number]>> {
   const level = bank.config.emptyLevelMm;
@@ -98,7 +100,7 @@ function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [n
     copIce: [0, 0.1, SLOW_S],
     melt: [0, 0.35, SLOW_S],
     meltExponent: [bank.guess.meltExponent, 0.25, SLOW_S],
-    meltBend: [0, 0.3, SLOW_S],
+    meltBend: [bank.config.form === 'ice-on-coil-internal' ? 0.4 : 0, 0.35, SLOW_S],
     meltNow: [0, 0.1, HOURS_S],
     freeze: [0, 0.3, SLOW_S],
     thickening: [Math.log(bank.guess.freezeThickening), 0.6, SLOW_S],

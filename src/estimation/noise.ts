@@ -43,6 +43,8 @@ const HEAT_PART = 0.05;
 const HEAT_LASTS_S = 5400;
 /** Wandering of the ice for reasons not modelled, part of a full bank in a square-root hour. */
 const ICE_WANDER = 0.002;
+/** The last ice goes unevenly: below this inventory, while it melts, it wanders this much instead. */
+const LAST_ICE = { below: 0.08, wander: 0.04 };
 /**
  * Wandering of the water, K in a square-root minute. At rest beside ice it stands some tenths above 0 °C by ways of its
  * own, which must not be taken for news of the leak.
@@ -54,7 +56,7 @@ export function processNoise(
   models: PlantModels,
   flows: Flows,
   flowing: number,
-  iced: boolean,
+  ice: number,
   unknownW: number,
   dtS: number,
   into: Float64Array,
@@ -62,10 +64,11 @@ export function processNoise(
   const fullJ = latentKwh(models) * 3.6e6;
   const uncertainW = HEAT_PART * (Math.abs(flows.chargingW) + Math.abs(flows.loopW)) + 0.5 * unknownW;
   const part = (uncertainW * dtS) / fullJ;
-  const still = iced ? WATER_WANDER_K.onIce : WATER_WANDER_K.resting;
+  const still = ice > 0.01 ? WATER_WANDER_K.onIce : WATER_WANDER_K.resting;
   const wander = flowing > 0 ? WATER_WANDER_K.flowing : still;
   into.fill(0, 0, STATES);
-  into[X.ice] = part * part * Math.max(1, HEAT_LASTS_S / dtS) + (ICE_WANDER ** 2 * dtS) / 3600;
+  const iceWander = flows.loopW > 0 && ice < LAST_ICE.below ? LAST_ICE.wander : ICE_WANDER;
+  into[X.ice] = part * part * Math.max(1, HEAT_LASTS_S / dtS) + (iceWander ** 2 * dtS) / 3600;
   for (const layer of LAYERS) into[layer] = (wander ** 2 * dtS) / 60;
 }
 

@@ -20,6 +20,8 @@ export function openBeliefs(priors: Priors, slow: Belief | null): Belief[] {
 
 /** Logarithm of the weight that an idea gets which nobody has asked for. */
 const IDEA = -5;
+/** And of one that the end of the plateau speaks for. */
+const SEEN = 5;
 /** Inventories below and above which the other state of affairs is worth an idea. */
 const NEARLY_EMPTY = 0.02;
 
@@ -32,10 +34,11 @@ export function withIdea(
   best: Belief,
   leavingC: number,
   internal: boolean,
+  plateauEnded: boolean,
 ): Belief[] {
-  if (beliefs.length > 1) return [...beliefs];
+  if (beliefs.length > 1 && !plateauEnded) return [...beliefs];
   const idea: Belief = {
-    logWeight: best.logWeight + IDEA,
+    logWeight: best.logWeight + (plateauEnded ? SEEN : IDEA),
     mean: Float64Array.from(best.mean),
     cov: Float64Array.from(best.cov),
   };

@@ -8,7 +8,8 @@ import { forget, predict, type Belief } from './filter.ts';
 import { LAYERS, METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
 import { tidy, weightsOf } from './mixture.ts';
 import { addDoubt, processNoise } from './noise.ts';
-import { advance, newFlows, type Drive } from './process.ts';
+import { newPlateauWatch, watchPlateau } from './plateau-end.ts';
+import { advance, loopWPerKOf, newFlows, type Drive } from './process.ts';
 import { anchorsOf } from './anchors.ts';
 import { flowProbability, runningOf, type LeavingStory, type Running } from './running.ts';
 import { bound, restate, withIdea } from './start.ts';
@@ -29,6 +30,10 @@ const FLUSHED_S = 180;
 const IDEAS_AFTER_S = 1500;
 /** Heat of a loop that nobody tells of, as part of the nameplate's ice making. No source. */
 const UNTOLD_FLOW_PART = 0.7;
+/** Water that comes back colder than it left by this much is no water's doing, K: nothing is learned from it. */
+const CONTRARY_K = 0.6;
+/** The coil and its surroundings are in a steady state after this long under flow, s. */
+const PLATEAU_AFTER_S = 1800;
 /** Start surges and meter glitches above this multiple of the nameplate are cut. */
 const MOST_POWER_FACTOR = 1.8;
 
@@ -137,7 +142,8 @@ function driveOf(core: Core, running: Running, nowMs: number): Drive {
   const roomC = held('room-temperature');
   const outdoorC = held('outdoor-temperature') ?? config.chiller.ratedOutdoorC;
   const aside = core.health.get('entering-water')?.setAside != null;
-  const enteringC = core.flowingS >= FLUSHED_S && !aside ? held(loopPoints(core).entering) : null;
+  const heardC = core.flowingS >= FLUSHED_S && !aside ? held(loopPoints(core).entering) : null;
+  const enteringC = core.contrary ? null : heardC;
   const air = roomC ?? ROOM_C;
   const needsCoil = running.flowing > 0 && enteringC === null;
   const leavingC = Math.max(0, bestOf(core.beliefs).mean[X.out]);
@@ -169,15 +175,14 @@ function surroundOf(core: Core, roomC: number | null, outdoorC: number): number 
 }
 
 function heardOf(core: Core, drive: Drive, nowMs: number): Heard {
-  const { folder, swap } = core;
+  const { folder } = core;
   const points = loopPoints(core);
   const leavingC = folder.fresh(points.leaving);
   const enteringC = folder.fresh(points.entering);
-  if (leavingC !== null && enteringC !== null && loadWarms(core, drive)) {
-    if (watchSwap(swap, enteringC, leavingC, drive.dtS)) changeOver(core);
-  }
+  seeRoles(core, drive, enteringC, leavingC);
+  seePlateau(core, drive, enteringC, leavingC);
   const waterC: Partial<Record<WetPoint, number>> = {};
-  if (leavingC !== null) waterC['leaving-water'] = leavingC;
+  if (leavingC !== null && !core.contrary) waterC['leaving-water'] = leavingC;
   for (const point of ['bank-top', 'bank-middle', 'bank-bottom'] as const) {
     const value = folder.fresh(point);
     if (value !== null) waterC[point] = value;
@@ -190,6 +195,35 @@ function heardOf(core: Core, drive: Drive, nowMs: number): Heard {
     anchors: anchorsOf(core, drive, nowMs),
     flowErrorLog: null,
   };
+}
+
+/** Beyond this a probe has fallen out rather than changed places, K. */
+const MOST_SWAP_K = 8;
+
+/** Whether entering and leaving contradict each other, and whether they have changed places for good. */
+function seeRoles(core: Core, drive: Drive, enteringC: number | null, leavingC: number | null): void {
+  core.contrary = false;
+  if (enteringC === null || leavingC === null || !loadWarms(core, drive)) return;
+  if (core.health.get('leaving-water')?.setAside != null || leavingC - enteringC > MOST_SWAP_K) return;
+  core.contrary = enteringC < leavingC - CONTRARY_K;
+  if (watchSwap(core.swap, enteringC, leavingC, drive.dtS)) changeOver(core);
+}
+
+/** Only a coil that melts from within shows the end of its ice at once; elsewhere the water's own warming shows it. */
+function seePlateau(core: Core, drive: Drive, enteringC: number | null, leavingC: number | null): void {
+  if (core.flowingS < PLATEAU_AFTER_S) {
+    core.plateau = newPlateauWatch();
+    core.plateauEnded = false;
+  }
+  const { models } = core;
+  if (!models.internal || core.flowingS < PLATEAU_AFTER_S || drive.charging > 0) return;
+  if (enteringC === null || leavingC === null) return;
+  const { mean } = bestOf(core.beliefs);
+  const entering = enteringC - mean[X.enteringOffset];
+  const leaving = leavingC - mean[X.leavingOffset];
+  const loopWPerK = loopWPerKOf(models, mean, drive);
+  const ended = watchPlateau(core.plateau, entering, leaving, loopWPerK, drive.dtS);
+  core.plateauEnded = ended && mean[X.ice] > NEAR;
 }
 
 /** Whether the loop can only have been warmed by the load; a brine loop may also carry the machine's cold. */
@@ -237,8 +271,7 @@ function move(core: Core, drive: Drive, running: Running, dtS: number): void {
   for (const belief of core.beliefs) {
     predict(belief, (x) => advance(core.models, x, drive, flows), ZERO, core.work);
     // The last evaluation of a prediction is at the belief's centre: its flows are the belief's.
-    const iced = belief.mean[X.ice] > 0.01;
-    processNoise(core.models, flows, running.flowing, iced, unknownW, dtS, core.noise);
+    processNoise(core.models, flows, running.flowing, belief.mean[X.ice], unknownW, dtS, core.noise);
     if (doubted) addDoubt(core.noise, dtS);
     for (let i = 0; i < STATES; i++) belief.cov[i * STATES + i] += core.noise[i];
     if (belief === best) core.flows = { ...flows };
@@ -261,10 +294,17 @@ function housekeep(core: Core): void {
   const leavingC = core.folder.fresh(loopPoints(core).leaving);
   if (
     core.flowingS > IDEAS_AFTER_S &&
+    core.flows.loopW > 0 &&
     leavingC !== null &&
     core.health.get('leaving-water')?.setAside == null
   ) {
-    core.beliefs = withIdea(core.beliefs, bestOf(core.beliefs), leavingC, core.models.internal);
+    core.beliefs = withIdea(
+      core.beliefs,
+      bestOf(core.beliefs),
+      leavingC,
+      core.models.internal,
+      core.plateauEnded,
+    );
   }
   core.sinceTidyS = 0;
 }

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { createEstimator, type Estimator } from '../../src/estimation/estimator.ts';
 import type { PointId, Reading } from '../../src/points.ts';
-import { DAY_MS, HOUR_MS, MINUTE_MS } from '../../src/time.ts';
+import { DAY_MS, HOUR_MS } from '../../src/time.ts';
 import { siteOf } from '../plant/site.ts';
 import { T0, Twin, type TwinOptions } from './twin.ts';
 
@@ -18,6 +18,12 @@ const CAPACITY_KWH = 16.7;
 
 function start(options: TwinOptions, memory?: unknown): { twin: Twin; estimator: Estimator } {
   return { twin: new Twin(options), estimator: createEstimator(site, { seed: 1, startMs: T0, memory }) };
+}
+
+/** Runs the plant on and lets the estimator hear it. */
+function play(twin: Twin, estimator: Estimator, minutes: number): void {
+  const readings = twin.run(minutes);
+  estimator.advance(twin.atMs, readings, null);
 }
 
 /** Two days and nights of making ice and melting part of it. */
@@ -82,7 +88,7 @@ describe('estimate', () => {
     cycle(twin, estimator);
     twin.pump = false;
     twin.chiller = true;
-    estimator.advance(twin.atMs, twin.run(300), null);
+    play(twin, estimator, 300);
     const before = estimator.estimate();
     estimator.advance(twin.atMs + 12 * HOUR_MS, [], null);
     const after = estimator.estimate();
@@ -181,7 +187,7 @@ describe('bad data', () => {
     cycle(twin, estimator);
     twin.pump = false;
     twin.chiller = false;
-    estimator.advance(twin.atMs, twin.run(360), null);
+    play(twin, estimator, 360);
     const probe = estimator.estimate().probes.find(({ point }) => point === 'bank-middle');
     // Water at rest beside ice stands up to 0.3 K above 0 °C in this plant, which the probe cannot tell from its error.
     expect(Math.abs((probe?.errorAtIcePointK ?? 9) - 0.4)).toBeLessThan(0.35);
@@ -207,7 +213,7 @@ describe('bad data', () => {
     const { twin, estimator } = start({ iceKg: 90 });
     cycle(twin, estimator);
     twin.pump = true;
-    estimator.advance(twin.atMs, twin.run(30), null);
+    play(twin, estimator, 30);
     const unharmed = createEstimator(site, { seed: 1, startMs: T0, memory: estimator.memory() });
     const readings = twin.run(40);
     unharmed.advance(twin.atMs, readings, null);
@@ -218,7 +224,7 @@ describe('bad data', () => {
     expect(asideOf()).not.toBeNull();
     // Forty minutes of water at 23 °C would be half of the capacity if they were believed.
     expect(Math.abs(errorPct(twin, estimator) - errorPct(twin, unharmed))).toBeLessThan(3);
-    estimator.advance(twin.atMs, twin.run(90), null);
+    play(twin, estimator, 90);
     expect(asideOf()).toBeNull();
   });
 
@@ -253,7 +259,7 @@ describe('bad data', () => {
     twin.chiller = false;
     let before = estimator.estimate();
     for (let minute = 0; minute < 300; minute++) {
-      estimator.advance(twin.atMs + MINUTE_MS, twin.run(1), null);
+      play(twin, estimator, 1);
       const now = estimator.estimate();
       expect(Math.abs(now.iceOnHandKwh - before.iceOnHandKwh)).toBeLessThan(before.highKwh - before.lowKwh);
       before = now;
