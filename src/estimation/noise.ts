@@ -20,7 +20,7 @@ export const NOISE = {
   coilFlowing: { fresh: 0.05, alike: 0.12, lastsS: 400 },
   waterResting: { fresh: 0.05, alike: 0.25, lastsS: 3600 },
   /** Water without ice, above and below the density maximum, and a warm reading where ice is believed. */
-  waterWarm: { fresh: 0.06, alike: 0.25, lastsS: 1800 },
+  waterWarm: { fresh: 0.06, alike: 0.2, lastsS: 1800 },
   waterLayered: { fresh: 0.1, alike: 0.7, lastsS: 1800 },
   waterOdd: { fresh: 0.3, alike: 1.5, lastsS: 1800 },
   coolant: { fresh: 0.15, alike: 0.6, lastsS: 7200 },
@@ -49,7 +49,7 @@ const LAST_ICE = { below: 0.08, wander: 0.04 };
  * Wandering of the water, K in a square-root minute. At rest beside ice it stands some tenths above 0 °C by ways of its
  * own, which must not be taken for news of the leak.
  */
-const WATER_WANDER_K = { flowing: 0.06, onIce: 0.05, resting: 0.012 };
+const WATER_WANDER_K = { flowing: 0.06, onIce: 0.05, resting: 0.006 };
 
 /** Fills the noise variances of a step. `unknown` is power that may or may not have been at work, W. */
 export function processNoise(

@@ -69,7 +69,8 @@ describe('filter against batch', () => {
     // The twin's leak is 2.2 W/K; thirty hours of clean readings leave the batch next to nothing to err by.
     expect(Math.abs(batch - 2.2)).toBeLessThan(0.05);
     const { heatLeakWPerK, heatLeakSd } = estimator.estimate();
-    expect(heatLeakSd).toBeLessThan(0.7 * prior.heatLeakSd);
+    // A leak is known as a factor: its relative deviation is what narrows.
+    expect(heatLeakSd / heatLeakWPerK).toBeLessThan((0.8 * prior.heatLeakSd) / prior.heatLeakWPerK);
     expect(Math.abs(heatLeakWPerK - batch)).toBeLessThan(2 * heatLeakSd);
     expect(Math.abs(heatLeakWPerK - batch)).toBeLessThan(0.75 * Math.abs(prior.heatLeakWPerK - batch));
   });
