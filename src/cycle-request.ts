@@ -87,7 +87,7 @@ function roomReason({ config }: Stages, { nowMs, live }: Moment, command: Comman
   const roomC = meanOverRooms(live, 'room-temperature');
   const limitC = limitAt(config.comfort, config.site.zone, nowMs);
   const room = `The rooms are at ${shownC(config, roomC ?? limitC)}, under their limit of ${shownC(config, limitC)}`;
-  return charges(command) ? `${room}: making ice, and none is spent.` : `${room}: the ice is kept.`;
+  return charges(command) ? `${room}: making ice, and none is melted.` : `${room}: the ice is kept.`;
 }
 
 function shownC(config: SiteConfig, c: number): string {
@@ -108,5 +108,6 @@ function planReason(
   const limitC = limitAt(config.comfort, config.site.zone, nowMs);
   const roomC = meanOverRooms(live, 'room-temperature') ?? limitC;
   const making = charges(command) ? ', while making more' : '';
-  return `The rooms are at ${shownC(config, roomC)}, close to their limit of ${shownC(config, limitC)}: cooling with ice that is there${making}.`;
+  const where = roomC > limitC ? 'over' : 'close to';
+  return `The rooms are at ${shownC(config, roomC)}, ${where} their limit of ${shownC(config, limitC)}: cooling with ice that is there${making}.`;
 }

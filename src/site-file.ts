@@ -4,7 +4,7 @@
  */
 import { closest, distance } from 'fastest-levenshtein';
 import type * as z from 'zod';
-import { LineCounter, parseDocument } from 'yaml';
+import { LineCounter, parseDocument, type Document } from 'yaml';
 import { siteSchema, type SiteConfig } from './config.ts';
 import { POINTS, pointSpec } from './points.ts';
 import { sectionOf, type Section } from './schema.ts';
@@ -27,11 +27,27 @@ export function parseSiteFile(text: string): SiteFile {
     const sentence = `not readable as YAML: ${broken.message.split('\n')[0].replace(/:$/, '')}`;
     return { ok: false, faults: [{ path: '', sentence }] };
   }
-  const written: unknown = document.toJS();
+  const written = plainValue(document);
+  if (written === TOO_MUCH)
+    return {
+      ok: false,
+      faults: [{ path: '', sentence: 'expected a plain file, found aliases that unfold without end' }],
+    };
   const parsed = siteSchema.safeParse(written ?? {});
   if (!parsed.success) return { ok: false, faults: parsed.error.issues.flatMap((issue) => faultsOf(issue)) };
   const faults = crossFaults(parsed.data);
   return faults.length > 0 ? { ok: false, faults } : { ok: true, config: parsed.data };
+}
+
+const TOO_MUCH = Symbol('too much');
+
+/** What the file says, or `TOO_MUCH` when its aliases would unfold to more than a file can mean. */
+function plainValue(document: Document): unknown {
+  try {
+    return document.toJS();
+  } catch {
+    return TOO_MUCH;
+  }
 }
 
 function faultsOf(issue: z.core.$ZodIssue): Fault[] {

@@ -2,7 +2,7 @@
 import type { SiteConfig } from '../config.ts';
 import type { Ticked } from '../cycle.ts';
 import type { Moment } from '../cycle-values.ts';
-import { alertsOf } from '../dispatch/alerts.ts';
+import { alertsOf, type AlertSigns } from '../dispatch/alerts.ts';
 import type { DaemonParts } from './ports.ts';
 
 export class AlertBoard {
@@ -13,7 +13,7 @@ export class AlertBoard {
     config: SiteConfig,
     moment: Moment,
     ticked: Ticked,
-    expectedWarmKh: number | null,
+    beside: Pick<AlertSigns, 'expectedWarmKh' | 'listeningMs'>,
   ): void {
     const { store, actuators, device, log } = parts;
     const faults = actuators.faults(moment.live, moment.nowMs);
@@ -27,7 +27,7 @@ export class AlertBoard {
         setAside === null ? [] : [{ point, why: setAside }],
       ),
       spoken: ticked.spoken,
-      expectedWarmKh,
+      ...beside,
     });
     for (const [id, sentence] of alerts) {
       if (!this.#standing.has(id)) log.warn({ alert: id }, sentence);

@@ -9,6 +9,7 @@ import { planRecordOf } from '../cycle-plan.ts';
 import type { CycleState, Moment, Stages } from '../cycle-values.ts';
 import { forecastSite, replan, replanDue, stagesOf, startState, tick, type Ticked } from '../cycle.ts';
 import { judgeClock, type ClockVerdict } from '../dispatch/clock.ts';
+import type { DispatchMemory } from '../dispatch/types.ts';
 import { RimeholdError, sentenceOf } from '../errors.ts';
 import { createEstimator } from '../estimation/estimator.ts';
 import type { IceEstimate } from '../estimation/types.ts';
@@ -23,17 +24,15 @@ import { nightsToClose, writeSheet, type NightEnd } from './nights.ts';
 import { OutlookSource } from './outlook.ts';
 import { Owner } from './owner.ts';
 import type { DaemonEvents, DaemonParts } from './ports.ts';
-import {
-  checkpointBefore,
-  CHECKPOINT_MS,
-  keepCheckpoint,
-  LATE_MS,
-  replay,
-  type Checkpoint,
-} from './rewind.ts';
+import { HighWater } from './high-water.ts';
+import { LATE_MS, Past, replay, type Checkpoint } from './rewind.ts';
 
-const MEMORY_EVERY_MS = HOUR_MS;
+const MEMORY_EVERY_MS = HOUR_MS / 2;
 const HOUSEKEEPING_MS = 5 * MINUTE_MS;
+/** A first memory soon after the start, so that an early crash does not lose all of it. */
+const FIRST_MEMORY_MS = 5 * MINUTE_MS;
+/** Settings that come in a burst make one plan together. */
+const SOON_REAL_MS = 300;
 /** On a lapse clock a flush of each half minute would be one each few milliseconds. */
 const LEAST_FLUSH_REAL_MS = 1000;
 /** Points whose word stops a machine are acted upon at once, at most this often. */
@@ -59,8 +58,10 @@ export class Daemon {
   #firstRecordMs: number | null = null;
   #clock: ClockVerdict = { state: 'set', why: '' };
   #pending: Reading[] = [];
-  #rewindToMs = Number.POSITIVE_INFINITY;
-  #checkpoints: Checkpoint[] = [];
+  readonly #highWater = new HighWater();
+  readonly #past = new Past();
+  #startedMs = 0;
+  #soon: (() => void) | null = null;
   #last: Ticked | null = null;
   #lastPlan: PlanRecord | null = null;
   #lastUrgentMs = 0;
@@ -94,6 +95,9 @@ export class Daemon {
       clock.every(Math.max(HOUSEKEEPING_MS, LEAST_FLUSH_REAL_MS * clockRate), () =>
         this.#guarded('thinning old records', () => this.#parts.store.compact(clock.nowMs())),
       ),
+    );
+    this.#stops.push(
+      clock.after(FIRST_MEMORY_MS, () => this.#guarded('keeping what was learned', () => this.#saveMemory())),
     );
     this.cycle();
   }
@@ -135,7 +139,7 @@ export class Daemon {
     const horizonMs = (this.#state.lastMs ?? Number.NEGATIVE_INFINITY) - LATE_MS;
     for (const reading of readings) {
       if (reading.atMs > horizonMs) this.#pending.push(reading);
-      else this.#rewindToMs = Math.min(this.#rewindToMs, reading.atMs);
+      else this.#past.late(reading.atMs);
     }
     if (readings.some(({ point, value }) => URGENT_POINTS.has(point) && value === 1)) this.#urgent();
   }
@@ -169,14 +173,14 @@ export class Daemon {
     this.#clock = judgeClock({
       nowMs,
       notBeforeMs,
-      lastRecordMs: this.#state.lastMs,
-      sensorsAheadMs: intake.ahead()?.medianMs ?? null,
+      lastRecordMs: this.#highWater.at(nowMs),
+      sensorsAheadMs: intake.ahead(nowMs)?.medianMs ?? null,
     });
     return { nowMs, live: intake.live(nowMs), clock: this.#clock, brokerConnected: this.#connected };
   }
 
   #replan(moment: Moment): void {
-    const wanted = this.#wanted(moment.nowMs);
+    const wanted = this.owner.wanted(moment.nowMs);
     const planned = replan(this.#stages, this.#state, moment, wanted, this.#outlook.at(moment.nowMs));
     this.#state = { ...this.#state, planned };
     if (planned.plan.note !== '') this.#parts.log.warn({ outcome: planned.plan.outcome }, planned.plan.note);
@@ -187,8 +191,10 @@ export class Daemon {
 
   #tick(moment: Moment, readings: readonly Reading[]): void {
     const { store, device, actuators, publisher } = this.#parts;
-    const ticked = tick(this.#stages, this.#state, moment, this.#wanted(moment.nowMs), readings);
+    const ticked = tick(this.#stages, this.#state, moment, this.owner.wanted(moment.nowMs), readings);
+    const latched = latchesOf(this.#state.dispatch) !== latchesOf(ticked.state.dispatch);
     this.#state = ticked.state;
+    if (latched) this.#memory.save('dispatch', this.#state.dispatch);
     for (const publication of actuators.order(ticked.order, moment.nowMs))
       void publisher.publish(publication);
     device.publishOrder(ticked.order);
@@ -200,20 +206,13 @@ export class Daemon {
     const pointsHeard = Object.values(moment.live).filter((point) => point?.value != null).length;
     device.publishCycle(record, { pointsHeard, warmTonightKh: this.#tonight.warmKh });
     device.publishSettings(this.#settings(moment.nowMs));
-    this.#alerts.show(
-      this.#parts,
-      this.#config,
-      moment,
-      ticked,
-      this.#state.planned?.plan.expectedWarmKh ?? null,
-    );
-    this.#checkpoint(moment.nowMs);
+    this.#alerts.show(this.#parts, this.#config, moment, ticked, {
+      expectedWarmKh: this.#state.planned?.plan.expectedWarmKh ?? null,
+      listeningMs: moment.nowMs - this.#startedMs,
+    });
+    this.#past.keep(moment.nowMs, () => this.#stages.estimator.memory());
+    this.#highWater.seen(moment.nowMs);
     this.#tell((events) => events.record?.(record));
-  }
-
-  #wanted(nowMs: number) {
-    const { wish, strategy } = this.owner.settings(nowMs);
-    return { wish: wish.name === 'none' ? null : wish, strategy };
   }
 
   #settings(nowMs: number) {
@@ -277,46 +276,54 @@ export class Daemon {
     this.planAfresh();
   }
 
-  /** Drops the plan, so that the next cycle makes a new one. */
+  /** Does something a moment later; of several the last one is done. */
+  soon(work: () => void): void {
+    const { clock, clockRate } = this.#parts;
+    if (this.#soon === null) this.#stops.push(clock.after(SOON_REAL_MS * clockRate, () => this.#doSoon()));
+    this.#soon = work;
+  }
+
+  #doSoon(): void {
+    const work = this.#soon;
+    this.#soon = null;
+    if (work !== null) this.#guarded('taking over a setting', work);
+  }
+
+  /** Makes a new plan at once. */
   planAfresh(): void {
     this.#guarded('planning', () => this.#replan(this.#moment()));
     this.cycle();
   }
 
   #takeUp(): void {
-    const { store, config, clock, seed } = this.#parts;
+    const { store, clock } = this.#parts;
+    const nowMs = clock.nowMs();
+    this.#startedMs = nowMs;
     this.#firstRecordMs = store.firstRecordMs();
-    const from = this.#memory.checkpoint(clock.nowMs());
-    if (from === null) return;
-    this.#checkpoints = [from];
-    this.#stages = { ...this.#stages, estimator: replay(config, store, from, clock.nowMs(), seed) };
     const last = store.latestRecord();
-    if (last !== null) this.#state = { ...this.#state, lastMs: last.atMs };
+    if (last !== null) this.#highWater.seen(last.atMs);
+    const from = this.#memory.checkpoint(nowMs);
+    if (from === null) return;
+    this.#liveAgain(from, nowMs);
+    if (last !== null && last.atMs <= nowMs) this.#state = { ...this.#state, lastMs: last.atMs };
+  }
+
+  #liveAgain(from: Checkpoint, nowMs: number): void {
+    const { config, store, seed } = this.#parts;
+    const { estimator, checkpoints } = replay(config, store, from, nowMs, seed);
+    this.#stages = { ...this.#stages, estimator };
+    this.#past.relived(from, checkpoints);
   }
 
   #rewind(nowMs: number): void {
-    const lateMs = this.#rewindToMs;
-    this.#rewindToMs = Number.POSITIVE_INFINITY;
-    if (!Number.isFinite(lateMs)) return;
-    const from = checkpointBefore(this.#checkpoints, lateMs);
+    const from = this.#past.due(nowMs);
     if (from === null) return;
-    const { config, store, seed, log } = this.#parts;
-    this.#stages = { ...this.#stages, estimator: replay(config, store, from, nowMs, seed) };
+    this.#liveAgain(from, nowMs);
     this.#pending = [];
-    this.#checkpoints = this.#checkpoints.filter((one) => one.atMs <= from.atMs);
-    log.info(
+    this.#parts.log.info(
       { fromMs: from.atMs },
       'Late readings came in; the estimate was worked out again from before them.',
     );
-  }
-
-  #checkpoint(nowMs: number): void {
-    const last = this.#checkpoints.at(-1);
-    if (last && nowMs - last.atMs < CHECKPOINT_MS) return;
-    this.#checkpoints = keepCheckpoint(this.#checkpoints, {
-      atMs: nowMs,
-      memory: this.#stages.estimator.memory(),
-    });
   }
 
   #saveMemory(): void {
@@ -358,16 +365,6 @@ export class Daemon {
     }
   }
 
-  /** Since when the plant does what it does; null before the first cycle. */
-  modeSinceMs(): number | null {
-    return this.#mode?.sinceMs ?? null;
-  }
-
-  /** Time of the first record there is; null before it. */
-  firstRecordMs(): number | null {
-    return this.#firstRecordMs;
-  }
-
   /** For the page: what is known now. */
   view() {
     return {
@@ -378,10 +375,17 @@ export class Daemon {
       connected: this.#connected,
       connectedSinceMs: this.#connectedSinceMs,
       linkSentence: this.#linkSentence,
+      modeSinceMs: this.#mode?.sinceMs ?? null,
+      firstRecordMs: this.#firstRecordMs,
       last: this.#last,
       plan: this.#lastPlan,
     };
   }
+}
+
+/** What of the memory a crash must not lose: rests after a trip or a dry run. */
+function latchesOf({ trippedUntilMs, dryUntilMs }: DispatchMemory): string {
+  return `${trippedUntilMs} ${dryUntilMs}`;
 }
 
 function withLimit(config: SiteConfig, limitC: number): SiteConfig {

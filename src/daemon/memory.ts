@@ -29,10 +29,19 @@ export class Memory {
     this.#store.saveMemory(name, JSON.stringify(value));
   }
 
-  /** Latches outlive a restart; the compressor counts as just stopped, whatever it did before. */
+  /** Latches outlive a restart; of the compressor nothing is known until its power is heard. */
   dispatch(nowMs: number): DispatchMemory {
     const stored = this.load('dispatch') as Partial<DispatchMemory> | null;
-    return { ...freshMemory(nowMs), ...stored, chillerOn: false, chillerSinceMs: nowMs, pumpOnSinceMs: null };
+    const { chillerOn, chillerSinceMs, chillerSeenMs, chillerKnown, pumpOnSinceMs } = freshMemory(nowMs);
+    return {
+      ...freshMemory(nowMs),
+      ...stored,
+      chillerOn,
+      chillerSinceMs,
+      chillerSeenMs,
+      chillerKnown,
+      pumpOnSinceMs,
+    };
   }
 
   /** The estimator's last checkpoint, or null when there is none before `nowMs`. */

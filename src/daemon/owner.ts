@@ -35,6 +35,12 @@ export class Owner {
     return this.#settings;
   }
 
+  /** What a cycle is to know of it. */
+  wanted(nowMs: number): { wish: Wish | null; strategy: Strategy } {
+    const { wish, strategy } = this.settings(nowMs);
+    return { wish: wish.name === 'none' ? null : wish, strategy };
+  }
+
   /** Takes a wish for a time; `none` gives back. Throws `usage` outside five minutes to a day. */
   wish(name: WishName, durationMs: number, nowMs: number): Wish {
     if (name !== 'none' && !(durationMs >= LEAST_WISH_MS && durationMs <= MOST_WISH_MS)) {

@@ -14,20 +14,56 @@ export interface Checkpoint {
 }
 
 /** Time between checkpoints, and how far back they reach: a sensor may keep a day of readings to itself. */
-export const CHECKPOINT_MS = HOUR_MS / 2;
-export const REACH_MS = DAY_MS;
+const CHECKPOINT_MS = HOUR_MS / 2;
+const REACH_MS = DAY_MS;
 /** Readings later than this no longer fit into the estimator's own step. */
 export const LATE_MS = 10 * MINUTE_MS;
 /** How much is replayed in one go; bounds the memory it takes. */
 const REPLAY_STEP_MS = HOUR_MS;
 
-export function keepCheckpoint(checkpoints: readonly Checkpoint[], next: Checkpoint): Checkpoint[] {
-  return [...checkpoints.filter((one) => one.atMs < next.atMs && next.atMs - one.atMs <= REACH_MS), next];
+/** Late readings wait for each other: living through hours again for every one of them would be all there is time for. */
+const REWIND_EVERY_MS = 5 * MINUTE_MS;
+
+/** Checkpoints of the last day, and how far back late readings ask to go. */
+export class Past {
+  #checkpoints: Checkpoint[] = [];
+  #lateMs = Number.POSITIVE_INFINITY;
+  #relivedMs = Number.NEGATIVE_INFINITY;
+
+  /** Notes a late reading; one from before every checkpoint is kept in the store and asks for nothing. */
+  late(atMs: number): void {
+    if (this.#before(atMs) !== null) this.#lateMs = Math.min(this.#lateMs, atMs);
+  }
+
+  /** The checkpoint to live on from again, or null when there is no need, or it was done only just now. */
+  due(nowMs: number): Checkpoint | null {
+    if (!Number.isFinite(this.#lateMs) || Math.abs(nowMs - this.#relivedMs) < REWIND_EVERY_MS) return null;
+    const from = this.#before(this.#lateMs);
+    this.#lateMs = Number.POSITIVE_INFINITY;
+    this.#relivedMs = nowMs;
+    return from;
+  }
+
+  keep(nowMs: number, memory: () => unknown): void {
+    const last = this.#checkpoints.at(-1);
+    if (last && nowMs >= last.atMs && nowMs - last.atMs < CHECKPOINT_MS) return;
+    const recent = this.#checkpoints.filter((one) => one.atMs < nowMs && nowMs - one.atMs <= REACH_MS);
+    this.#checkpoints = [...recent, { atMs: nowMs, memory: memory() }];
+  }
+
+  relived(from: Checkpoint, since: readonly Checkpoint[]): void {
+    this.#checkpoints = [...this.#checkpoints.filter((one) => one.atMs < from.atMs), from, ...since];
+  }
+
+  #before(atMs: number): Checkpoint | null {
+    return this.#checkpoints.findLast((one) => one.atMs < atMs) ?? null;
+  }
 }
 
-/** The last checkpoint before an instant, or null when none reaches back so far. */
-export function checkpointBefore(checkpoints: readonly Checkpoint[], atMs: number): Checkpoint | null {
-  return checkpoints.findLast((one) => one.atMs < atMs) ?? null;
+export interface Replayed {
+  readonly estimator: Estimator;
+  /** Made on the way, so that the next late reading need not go back as far. */
+  readonly checkpoints: readonly Checkpoint[];
 }
 
 /** An estimator that stands at `toMs`, from a checkpoint and what the store holds since then. */
@@ -37,25 +73,31 @@ export function replay(
   from: Checkpoint,
   toMs: number,
   seed: number,
-): Estimator {
+): Replayed {
   const estimator = createEstimator(config, { seed, startMs: from.atMs, memory: from.memory });
   const records = store.recordsBetween(from.atMs, toMs);
+  const checkpoints: Checkpoint[] = [];
+  let keptMs = from.atMs;
   let next = 0;
   let ordered: Command | null = null;
   for (let startMs = from.atMs; startMs < toMs;) {
     // in steps of one order: what was ordered tells whether water flowed where no power point does
-    const record = records[next];
+    const recordMs = records[next]?.atMs ?? Number.POSITIVE_INFINITY;
     const endMs = Math.min(
       toMs,
       startMs + REPLAY_STEP_MS,
-      record && record.atMs > startMs ? record.atMs : Number.POSITIVE_INFINITY,
+      recordMs > startMs ? recordMs : Number.POSITIVE_INFINITY,
     );
     estimator.advance(endMs, store.readingsBetween(startMs, endMs), ordered);
     while (next < records.length && records[next].atMs <= endMs) {
       ordered = records[next].command;
       next += 1;
     }
+    if (endMs - keptMs >= CHECKPOINT_MS && endMs < toMs) {
+      checkpoints.push({ atMs: endMs, memory: estimator.memory() });
+      keptMs = endMs;
+    }
     startMs = endMs;
   }
-  return estimator;
+  return { estimator, checkpoints };
 }

@@ -5,7 +5,7 @@ import type { SettablePath } from '../mqtt/homie.ts';
 import type { Clock } from '../time.ts';
 import type { Daemon } from './daemon.ts';
 
-/** Takes a setting; null when it is accepted, else why not. The effect comes after the answer, so that it is told first. */
+/** Takes a setting; null when it is accepted, else why not. The effect comes a moment later: a burst of settings makes one plan. */
 export function setByOwner(
   daemon: Daemon,
   clock: Clock,
@@ -15,7 +15,7 @@ export function setByOwner(
   try {
     const after = take(daemon, clock, path, value);
     daemon.saveOwner();
-    queueMicrotask(after);
+    daemon.soon(after);
     return null;
   } catch (error) {
     return sentenceOf(error);

@@ -16,6 +16,8 @@ export interface AlertSigns {
   /** Probes that the estimate sets aside, with why. */
   readonly setAside: readonly { readonly point: PointId; readonly why: string }[];
   readonly spoken: readonly Spoken[];
+  /** How long it has listened: a point may take its time before its silence is told. */
+  readonly listeningMs: number;
   /** Expected degree-hours above the limit until the end of the night; null without a plan. */
   readonly expectedWarmKh: number | null;
 }
@@ -53,11 +55,12 @@ export function alertsOf(signs: AlertSigns): ReadonlyMap<string, string> {
   return alerts;
 }
 
-function staleAlerts({ config, live }: AlertSigns): [string, string][] {
+function staleAlerts({ config, live, listeningMs }: AlertSigns): [string, string][] {
   return Object.keys(config.points).flatMap((id): [string, string][] => {
     const point = live[id as PointId];
     const name = id.split('/')[0] as PointName;
     if (!('required' in POINTS[name]) || !point || point.value !== null) return [];
+    if (point.reason === 'never-heard' && listeningMs < config.points[id].maxAgeMs) return [];
     const what = point.reason === 'never-heard' ? 'has not been heard yet' : 'is no longer heard';
     return [
       [

@@ -148,13 +148,12 @@ const silent = (what: string, so: string): string =>
   `${what} is not heard, so ${so}; if it speaks only when it changes, give it a longer max-age.`;
 
 /** What this cycle's points change in the memory, before anything is decided. Rows with a latch have it here. */
-export function observe(memory: DispatchMemory, view: PlantView, limits: Limits): DispatchMemory {
-  const seenOn = chillerSeenOn(memory, view, limits);
+export function observe(remembered: DispatchMemory, view: PlantView, limits: Limits): DispatchMemory {
+  const memory = withoutFuture(remembered, view.nowMs);
   const tripped = isTrue(view, 'high-pressure-trip');
   return {
     ...memory,
-    chillerOn: seenOn,
-    chillerSinceMs: seenOn === memory.chillerOn ? memory.chillerSinceMs : view.nowMs,
+    ...chillerSeen(memory, view, limits),
     overFrozen: overFrozen(memory.overFrozen, view, limits),
     coilCold: latch(memory.coilCold, below(valueOf(view.live, 'leaving-water'), limits.coilFreezeC), 1.5),
     hotOutdoors: latch(
@@ -168,6 +167,30 @@ export function observe(memory: DispatchMemory, view: PlantView, limits: Limits)
   };
 }
 
+/** A clock that was set back must not lengthen any time: what lies in the future counts from now. */
+function withoutFuture(memory: DispatchMemory, nowMs: number): DispatchMemory {
+  const past = (atMs: number | null): number | null => (atMs === null ? null : Math.min(atMs, nowMs));
+  const rest = (untilMs: number | null, longestMs: number): number | null =>
+    untilMs === null ? null : Math.min(untilMs, nowMs + longestMs);
+  return {
+    ...memory,
+    chillerSinceMs: Math.min(memory.chillerSinceMs, nowMs),
+    chillerSeenMs: past(memory.chillerSeenMs),
+    pumpOnSinceMs: past(memory.pumpOnSinceMs),
+    dryUntilMs: rest(memory.dryUntilMs, DRY_REST_MS),
+    trippedUntilMs: rest(memory.trippedUntilMs, TRIP_REST_MS),
+  };
+}
+
+function chillerSeen(memory: DispatchMemory, view: PlantView, limits: Limits): Partial<DispatchMemory> {
+  const power = valueOf(view.live, 'chiller-power');
+  if (power === null) return {};
+  const runs = power > limits.chillerRunningAboveW;
+  const seen = { chillerKnown: true, chillerSeenMs: runs ? view.nowMs : memory.chillerSeenMs };
+  const takenOver = !memory.chillerKnown && runs && !memory.chillerOn;
+  return takenOver ? { ...seen, chillerOn: true, chillerSinceMs: view.nowMs } : seen;
+}
+
 /** How far a value is past its limit (positive = past), or null when it is not known. */
 const below = (value: number | null, limit: number): number | null => (value === null ? null : limit - value);
 const above = (value: number | null, limit: number): number | null => (value === null ? null : value - limit);
@@ -176,15 +199,6 @@ const above = (value: number | null, limit: number): number | null => (value ===
 function latch(was: boolean, past: number | null, band: number): boolean {
   if (past === null) return was;
   return was ? past > -band : past > 0;
-}
-
-/** A plug meter may take a minute to show a switch; until then the order counts as obeyed. */
-const NOTICE_MS = MINUTE_MS;
-
-function chillerSeenOn(memory: DispatchMemory, view: PlantView, limits: Limits): boolean {
-  const power = view.live['chiller-power'];
-  if (power?.value == null || power.atMs < memory.chillerSinceMs + NOTICE_MS) return memory.chillerOn;
-  return power.value > limits.chillerRunningAboveW;
 }
 
 /** Full by inventory, coolant temperature, level or electrode: whichever speaks first. */
@@ -286,27 +300,22 @@ function clearChiller(
   words: readonly Spoken[],
 ): { on: boolean; word?: Pick<Spoken, 'id' | 'sentence'> } {
   const stop = words.find((word) => word.stops.includes('chiller'));
-  const restedMs = view.nowMs - memory.chillerSinceMs;
+  const orderedMs = view.nowMs - memory.chillerSinceMs;
   if (stop !== undefined) return asked || memory.chillerOn ? { on: false, word: stop } : { on: false };
-  if (memory.chillerOn && !asked && restedMs < limits.minOnMs) {
-    return {
-      on: true,
-      word: {
-        id: 'minimum on time',
-        sentence: minutesLeft('The ice machine has just started and runs on', limits.minOnMs - restedMs),
-      },
-    };
+  if (memory.chillerOn) {
+    if (asked || orderedMs >= limits.minOnMs) return { on: asked };
+    const sentence = minutesLeft('The ice machine has just started and runs on', limits.minOnMs - orderedMs);
+    return { on: true, word: { id: 'minimum on time', sentence } };
   }
-  if (!memory.chillerOn && asked && restedMs < limits.minOffMs) {
-    return {
-      on: false,
-      word: {
-        id: 'minimum off time',
-        sentence: minutesLeft('The ice machine has just stopped and rests', limits.minOffMs - restedMs),
-      },
-    };
-  }
-  return { on: asked };
+  // a machine that still runs although it is ordered off has not begun to rest
+  const restedMs = Math.min(orderedMs, view.nowMs - (memory.chillerSeenMs ?? Number.NEGATIVE_INFINITY));
+  if (!asked || restedMs >= limits.minOffMs) return { on: asked };
+  const what =
+    memory.chillerSeenMs === null
+      ? 'When the ice machine last ran is not known, so it rests'
+      : 'The ice machine has just stopped and rests';
+  const sentence = minutesLeft(what, limits.minOffMs - restedMs);
+  return { on: false, word: { id: 'minimum off time', sentence } };
 }
 
 function minutesLeft(what: string, leftMs: number): string {
@@ -314,7 +323,7 @@ function minutesLeft(what: string, leftMs: number): string {
   return `${what} for ${minutes} more ${minutes === 1 ? 'minute' : 'minutes'}, to spare the compressor.`;
 }
 
-/** What the order itself changes: it counts as obeyed until a power point says otherwise. */
+/** What the order itself changes. */
 function ordered(memory: DispatchMemory, view: PlantView, order: ClearedCommand): Partial<DispatchMemory> {
   const chillerOn = order.switches.chiller;
   return {

@@ -29,6 +29,8 @@ export function freshMemory(nowMs: number): DispatchMemory {
   return {
     chillerOn: false,
     chillerSinceMs: nowMs,
+    chillerSeenMs: null,
+    chillerKnown: false,
     pumpOnSinceMs: null,
     overFrozen: false,
     coilCold: false,

@@ -22,9 +22,13 @@ export interface PlantView {
 
 /** What has to be remembered from one cycle to the next; plain data, so that it outlives a restart. */
 export interface DispatchMemory {
+  /** Whether the chiller is ordered on, and since when. What its power shows never changes this, but at the very start. */
   readonly chillerOn: boolean;
-  /** Since when the chiller is in that state, as seen by its power or, failing that, as ordered. */
   readonly chillerSinceMs: number;
+  /** When its power last showed it running; null before that. */
+  readonly chillerSeenMs: number | null;
+  /** False until its power was first heard: a chiller found running at the start is taken over, not cut off. */
+  readonly chillerKnown: boolean;
   /** Since when the pump is ordered on; null while off. */
   readonly pumpOnSinceMs: number | null;
   readonly overFrozen: boolean;

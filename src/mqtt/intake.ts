@@ -90,7 +90,8 @@ interface PointState {
   lastFault: string | null;
   saidMs: number | null;
   unsaid: number;
-  aheadMs: number;
+  /** How far its own clock was ahead of ours at the last reading; null when it tells no time. */
+  aheadMs: number | null;
   readonly seen: Map<number, number>;
 }
 
@@ -203,14 +204,19 @@ export class Intake {
   }
 
   /**
-   * How far sensors that tell their own time are ahead of our clock: the median over those whose last reading was
-   * more than a minute ahead, with their names; null when none is.
+   * How far the sensors that tell their own time are ahead of our clock, the median over those heard of late; null when
+   * that is not more than a minute. One sensor with a wrong clock among several right ones raises no doubt in ours.
    */
-  ahead(): { readonly medianMs: number; readonly points: readonly PointId[] } | null {
-    const ahead = [...this.#states.values()].filter((state) => state.aheadMs > FUTURE_MS);
-    if (ahead.length === 0) return null;
-    const sorted = ahead.map((state) => state.aheadMs).toSorted((a, b) => a - b);
-    return { medianMs: sorted[Math.floor(sorted.length / 2)], points: ahead.map((state) => state.point.id) };
+  ahead(nowMs: number): { readonly medianMs: number; readonly points: readonly PointId[] } | null {
+    const heard = [...this.#states.values()].flatMap((state) => {
+      const late = state.lastHeardMs === null || Math.abs(nowMs - state.lastHeardMs) > maxAgeMs(state);
+      return state.aheadMs === null || late ? [] : [{ id: state.point.id, aheadMs: state.aheadMs }];
+    });
+    if (heard.length === 0) return null;
+    const sorted = heard.map(({ aheadMs }) => aheadMs).toSorted((a, b) => a - b);
+    const medianMs = sorted[Math.floor((sorted.length - 1) / 2)];
+    const points = heard.filter(({ aheadMs }) => aheadMs > FUTURE_MS).map(({ id }) => id);
+    return medianMs > FUTURE_MS ? { medianMs, points } : null;
   }
 }
 
@@ -228,7 +234,7 @@ function newState(point: KnownPoint): PointState {
     lastFault: null,
     saidMs: null,
     unsaid: 0,
-    aheadMs: 0,
+    aheadMs: null,
     seen: new Map(),
   };
 }

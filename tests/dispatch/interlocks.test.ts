@@ -72,7 +72,7 @@ function run(asked: Command, c: Case) {
   return clear({ command: asked, reason: 'asked', numbers: {} }, view, { ...limits, ...c.limits }, rested);
 }
 
-const running = { chillerOn: true, chillerSinceMs: NOW - 60 * MINUTE };
+const running = { chillerOn: true, chillerKnown: true, chillerSinceMs: NOW - 60 * MINUTE };
 const drawing = { 'chiller-power': 540 };
 
 /** Every row: asked → command and who spoke. The same states are asked all four commands. */
@@ -309,33 +309,51 @@ describe('memory', () => {
     expect(order.heldBackBy).toBe('minimum off time');
   });
 
-  it('counts an order as obeyed until the plug had time to notice', () => {
-    const first = run('charge-now', {});
-    expect(first.memory.chillerOn).toBe(true);
-    const soon: PlantView = {
-      nowMs: NOW + 30_000,
-      live: live(),
-      inventoryPct: 50,
-      clock: 'set',
-      brokerConnected: true,
-    };
-    const second = clear({ command: 'hold', reason: 'asked', numbers: {} }, soon, limits, first.memory);
-    expect(second.order.heldBackBy).toBe('minimum on time');
+  const at = (nowMs: number, powerW: number, asked: Command, memory: DispatchMemory) => {
+    const points = { ...live(), 'chiller-power': { value: powerW, atMs: nowMs } };
+    const view: PlantView = { nowMs, live: points, inventoryPct: 50, clock: 'set', brokerConnected: true };
+    return clear({ command: asked, reason: 'asked', numbers: {} }, view, limits, memory);
+  };
+
+  it('keeps a machine on for its time even when its power does not show it', () => {
+    let { memory } = run('charge-now', {});
+    for (let minute = 1; minute < 20; minute += 1) {
+      const next = at(NOW + minute * MINUTE, 1, 'hold', memory);
+      expect(next.order.heldBackBy).toBe('minimum on time');
+      memory = next.memory;
+    }
+    expect(at(NOW + 20 * MINUTE, 1, 'hold', memory).order.command).toBe('hold');
   });
 
-  it('believes the plug after that', () => {
-    const first = run('charge-now', {});
-    const later = NOW + 5 * MINUTE;
-    const points = { ...live(), 'chiller-power': { value: 0, atMs: later } };
-    const view: PlantView = {
-      nowMs: later,
-      live: points,
-      inventoryPct: 50,
-      clock: 'set',
-      brokerConnected: true,
+  it('never orders on what nobody asked for, whatever the meter shows', () => {
+    let memory: DispatchMemory = { ...freshMemory(NOW - 60 * MINUTE), chillerKnown: true };
+    for (let minute = 0; minute < 30; minute += 1) {
+      const next = at(NOW + minute * MINUTE, 550, 'hold', memory);
+      expect(next.order.switches.chiller).toBe(false);
+      memory = next.memory;
+    }
+    // it still draws power although it is off: it has not begun to rest
+    expect(at(NOW + 30 * MINUTE, 550, 'charge-now', memory).order.heldBackBy).toBe('minimum off time');
+  });
+
+  it('takes over a machine that runs when it starts', () => {
+    const first = at(NOW, 540, 'charge-now', freshMemory(NOW));
+    expect(first.order.command).toBe('charge-now');
+    expect(at(NOW + MINUTE, 540, 'hold', first.memory).order.heldBackBy).toBe('minimum on time');
+  });
+
+  it('is not fooled by a clock that was set back', () => {
+    const far = NOW + 365 * 24 * 60 * MINUTE;
+    const memory: DispatchMemory = {
+      ...freshMemory(far),
+      chillerKnown: true,
+      trippedUntilMs: far,
+      dryUntilMs: far,
+      pumpOnSinceMs: far,
     };
-    const second = clear({ command: 'hold', reason: 'asked', numbers: {} }, view, limits, first.memory);
-    expect(second.order.command).toBe('hold');
-    expect(second.memory.chillerOn).toBe(false);
+    const first = at(NOW, 0, 'charge-and-discharge', memory);
+    expect(first.order.heldBackBy).toBe('high-pressure trip, dry pump');
+    const later = at(NOW + 31 * MINUTE, 0, 'charge-and-discharge', first.memory);
+    expect(later.order.command).toBe('charge-and-discharge');
   });
 });

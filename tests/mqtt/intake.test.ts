@@ -129,11 +129,26 @@ describe('age', () => {
 describe('clocks', () => {
   test('a reading from the future counts as of arrival and raises doubt', () => {
     const into = intake({ 'leaving-water': dated });
-    expect(into.ahead()).toBeNull();
+    expect(into.ahead(T0)).toBeNull();
     expect(hear(into, at(61, 4), T0).readings).toEqual([{ point: 'leaving-water', atMs: T0, value: 4 }]);
-    expect(into.ahead()).toEqual({ medianMs: 61 * S, points: ['leaving-water'] });
+    expect(into.ahead(T0)).toEqual({ medianMs: 61 * S, points: ['leaving-water'] });
     hear(into, at(2, 4.1), T0 + 2 * S);
-    expect(into.ahead()).toBeNull();
+    expect(into.ahead(T0 + 2 * S)).toBeNull();
+  });
+
+  test('one sensor with a wrong clock among several raises no doubt, and a silent one is forgotten', () => {
+    const own = (topic: string) => pointConfig({ topic, read: '/v', timePointer: '/t' });
+    const into = intake({ 'leaving-water': own('a'), 'entering-water': own('b'), 'bank-bottom': own('c') });
+    const say = (topic: string, aheadS: number): Heard =>
+      hear(into, JSON.stringify({ v: 4, t: new Date(T0 + aheadS * S).toISOString() }), T0, false, topic);
+    say('a', 1e9);
+    expect(into.ahead(T0)?.points).toEqual(['leaving-water']);
+    say('b', 0);
+    say('c', 0);
+    expect(into.ahead(T0)).toBeNull();
+    const alone = intake({ 'leaving-water': own('a') });
+    hear(alone, JSON.stringify({ v: 4, t: new Date(T0 + 1e9).toISOString() }), T0, false, 'a');
+    expect(alone.ahead(T0 + 3_600 * S)).toBeNull();
   });
 
   test('a minute ahead is still taken at its word', () => {
