@@ -111,8 +111,10 @@ async function startPlant(
 
 function greeting(running: Running): string {
   return [
-    'rimehold demo: a simulated Juniper hut. The night before passes quickly; from noon',
-    'on one evening takes two minutes, on a clock 720 times as fast.',
+    'rimehold demo: a simulated Juniper hut. The night before passes quickly; from',
+    'noon on one evening takes two minutes, on a clock 720 times as fast (longer on',
+    'a slow machine: nothing is skipped). The first figures know nothing of the',
+    'bank yet: the interval tells.',
     `Page: ${running.pageUrl ?? 'not served'}   Broker: ${running.brokerUrl}`,
     '',
     'time   leaving   ice on hand (90 % sure)   command and reason',
