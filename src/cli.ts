@@ -1,5 +1,6 @@
 #!/usr/bin/env node
 /** The verbs. Each ends with 0 (yes), 1 (the answer is no), 2 (wrong use) or 3 (could not run). */
+import './verbs/small-heap.ts';
 import { Command, CommanderError, InvalidArgumentError } from 'commander';
 import { EXIT, exitStatusOf, RimeholdError, sentenceOf, systemWords } from './errors.ts';
 import { VERSION } from './verbs/version.ts';
