@@ -3,7 +3,7 @@ import type { Command } from '../commands.ts';
 import { coilWetFactor } from '../plant/delivery.ts';
 import type { PointName } from '../points.ts';
 import type { Core } from './core.ts';
-import { DOUBTED_ABOVE, watchSwap } from './consistency.ts';
+import { DOUBTED_ABOVE, newHealth, watchSwap } from './consistency.ts';
 import { forget, predict, type Belief } from './filter.ts';
 import { LAYERS, METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
 import { tidy, weightsOf } from './mixture.ts';
@@ -204,7 +204,7 @@ const MOST_SWAP_K = 8;
 function seeRoles(core: Core, drive: Drive, enteringC: number | null, leavingC: number | null): void {
   core.contrary = false;
   if (enteringC === null || leavingC === null || !loadWarms(core, drive)) return;
-  if (core.health.get('leaving-water')?.setAside != null || leavingC - enteringC > MOST_SWAP_K) return;
+  if (leavingC - enteringC > MOST_SWAP_K) return;
   core.contrary = enteringC < leavingC - CONTRARY_K;
   if (watchSwap(core.swap, enteringC, leavingC, drive.dtS)) changeOver(core);
 }
@@ -234,6 +234,8 @@ function loadWarms(core: Core, drive: Drive): boolean {
 
 /** The two probes changed places: what their offsets were learned from was the other's water. */
 function changeOver(core: Core): void {
+  core.health.set('leaving-water', newHealth());
+  core.health.set('entering-water', newHealth());
   for (const belief of core.beliefs) {
     for (const i of [X.leavingOffset, X.enteringOffset]) {
       restate(belief, i, core.priors.mean[i], core.priors.sd[i]);
