@@ -16,7 +16,8 @@ export interface EmbeddedBroker {
 /** Starts it; port 0 takes any free one. Rejects with `port-in-use` or `broker-unreachable`. */
 export async function startEmbeddedBroker(where: { host: string; port: number }): Promise<EmbeddedBroker> {
   const broker = await Aedes.createBroker();
-  const server = createServer((socket) => broker.handle(socket));
+  // small packets go out at once: a command must not wait for the next one
+  const server = createServer({ noDelay: true }, (socket) => broker.handle(socket));
   try {
     await listen(server, where);
   } catch (error) {

@@ -11,7 +11,7 @@ import type { CycleRecord } from '../record.ts';
 import { seededWeather } from '../simulator/seeded-weather.ts';
 import { createSimulator } from '../simulator/simulator.ts';
 import { createSteppedClock, type SteppedClock } from '../simulator/stepped-clock.ts';
-import { HOUR_MS, localClock, noonOf } from '../time.ts';
+import { HOUR_MS, localClock, MINUTE_MS, noonOf } from '../time.ts';
 import { lockstep } from './lockstep.ts';
 import { stopSignal } from './run.ts';
 import { loadSite } from './site.ts';
@@ -21,7 +21,8 @@ const FACTOR = 720;
 /** A hot day in the demo's July. It begins with an empty bank at midnight; from noon on it goes at the demo's pace. */
 const EVENING = '2026-07-14';
 const MIDNIGHT_BEFORE_NOON_MS = 12 * HOUR_MS;
-const STEP_MS = 10_000;
+/** A look a minute instead of two, so that a small machine keeps the pace. */
+const STEP_MS = MINUTE_MS;
 /** A hot day that Juniper's machine is made for. */
 const HOT_DAY_C = 31;
 
@@ -72,6 +73,7 @@ function demoSite(folder: string): SiteConfig {
   return {
     ...config,
     broker: { ...config.broker, embedded: true, listenHost: '127.0.0.1', listenPort: 0 },
+    planning: { ...config.planning, cycleMs: STEP_MS },
     store: { ...config.store, file: join(folder, 'juniper.db') },
     web: { ...config.web, host: '127.0.0.1', passphraseFile: null, passphraseEnv: null },
     log: { level: 'error', form: 'people' },
