@@ -7,6 +7,10 @@ import { parseInstant } from './time.ts';
 
 export const LOG_HEADER = 'time,point,value';
 
+/** A logger that has lost its clock writes 1970, a broken one writes anything. */
+const EARLIEST_MS = Date.UTC(2000, 0, 1);
+const LATEST_MS = Date.UTC(2100, 0, 1);
+
 export type LogLine =
   | { readonly kind: 'reading'; readonly reading: Reading }
   | { readonly kind: 'empty' }
@@ -30,6 +34,8 @@ export function parseLogLine(line: string): LogLine {
   const [time, id, written] = fields;
   const atMs = parseInstant(time);
   if (atMs === null) return fault(`expected a time as 2026-07-14T18:00:00Z, found "${time}"`);
+  if (!(atMs >= EARLIEST_MS && atMs < LATEST_MS))
+    return fault(`expected a time between 2000 and 2100, found "${time}"`);
   const spec = pointSpec(id);
   if (spec === null) return fault(`expected a known point, found "${id}"`);
   if (spec.kind === 'series') return fault(`expected a point with single values, found "${id}"`);

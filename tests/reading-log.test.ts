@@ -35,6 +35,10 @@ describe('reading log', () => {
   it.each([
     ['2026-07-14T18:00:00Z,leaving-water', 'expected 3 fields as time,point,value, found 2'],
     ['yesterday,leaving-water,2', 'expected a time as 2026-07-14T18:00:00Z, found "yesterday"'],
+    [
+      '1970-01-01T00:10:00Z,leaving-water,2',
+      'expected a time between 2000 and 2100, found "1970-01-01T00:10:00Z"',
+    ],
     ['2026-07-14T18:00:00Z,leavingwater,2', 'expected a known point, found "leavingwater"'],
     ['2026-07-14T18:00:00Z,leaving-water,cold', 'expected a number, found "cold"'],
     ['2026-07-14T18:00:00Z,leaving-water,', 'expected a number, found ""'],

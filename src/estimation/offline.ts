@@ -1,7 +1,7 @@
 /** The same estimator over a reading log, for a log that was recorded without rimehold. */
 import type { SiteConfig } from '../config.ts';
 import type { Reading } from '../points.ts';
-import { MINUTE_MS } from '../time.ts';
+import { DAY_MS, MINUTE_MS } from '../time.ts';
 import { createEstimator, type IceEstimate } from './estimator.ts';
 
 export interface LogRow {
@@ -21,6 +21,12 @@ export interface LogOptions {
   readonly seed?: number;
 }
 
+/** A longer silence is passed over without rows: nothing is known of the ice after it (and one date may be absurd). */
+const LONGEST_SILENCE_MS = 3 * DAY_MS;
+
+/** End of the step that holds an instant; a step's own end belongs to it. */
+const stepEndMs = (atMs: number, stepMs: number): number => Math.floor(atMs / stepMs) * stepMs - 1 + stepMs;
+
 /** Runs over readings sorted by time and gives a row for each step. Nothing was ordered: powers and temperatures tell. */
 export function estimateLog(
   config: SiteConfig,
@@ -38,13 +44,13 @@ export function estimateLog(
   };
   for (const reading of readings) {
     if (!estimator) {
-      const startMs = Math.floor(reading.atMs / stepMs) * stepMs - 1;
-      estimator = createEstimator(config, { seed, startMs });
-      toMs = startMs + stepMs;
+      toMs = stepEndMs(reading.atMs, stepMs);
+      estimator = createEstimator(config, { seed, startMs: toMs - stepMs });
     }
     while (reading.atMs > toMs) {
       close();
-      toMs += stepMs;
+      const silent = reading.atMs - toMs > LONGEST_SILENCE_MS;
+      toMs = silent ? stepEndMs(reading.atMs, stepMs) : toMs + stepMs;
     }
     batch.push(reading);
   }
