@@ -162,7 +162,7 @@ describe.skipIf(!hasMosquitto)('an evening through mosquitto and SQLite', () => 
     expect(kept(records, (record) => record.reason === '')).toBe(0);
   });
 
-  it('tells the truth about its ice, within what it claims, most of the time', () => {
+  it('is not lost about its ice: within a fifth of a full bank of the truth at the end', () => {
     const last = records[records.length - 1];
     const { iceOnHandKwh } = simulator.truth();
     console.info(
