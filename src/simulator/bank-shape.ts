@@ -3,6 +3,7 @@
  * lengths follow from these: coil area from the bare coil's conductance, film coefficients from the melt conductance.
  */
 import type { BankForm, SiteConfig } from '../config.ts';
+import { findRoot } from '../numerics/root.ts';
 import { ICE_DENSITY } from '../physics/water.ts';
 import type { WallGeometry } from './shells.ts';
 
@@ -13,6 +14,8 @@ const COIL_W_PER_M2_K = 250;
 const TUBE_RADIUS_M = 0.008;
 /** A 4 L container is taken as an upright cylinder of this radius. */
 const CONTAINER_RADIUS_M = 0.075;
+/** Floating pieces of about 0.05 m: melting face for each kg, m²/kg (a sphere's 6/(917 · 0.05)). */
+export const FLOAT_M2_PER_KG = 0.13;
 /** Natural convection at ice or tube in still water near 0 °C as a part of that under the pump; no source. */
 const STILL_PART = 0.35;
 const WATER_CONDUCTIVITY = 0.556;
@@ -56,20 +59,23 @@ export function bankShape(site: SiteConfig, meltFactor: number, freezeFactor: nu
   };
   return common.sealed
     ? { ...common, ...containers(site, melt, freeze) }
-    : { ...common, ...coil(site, melt, freeze, common.throughTube) };
+    : { ...common, ...coil(site, melt, freeze) };
 }
 
-function coil(site: SiteConfig, melt: number, freeze: number, throughTube: boolean) {
-  const bareAreaM2 = site.bank.freezeWPerK / LAYERS / COIL_W_PER_M2_K;
-  const lengthM = bareAreaM2 / (2 * Math.PI * TUBE_RADIUS_M);
+function coil(site: SiteConfig, melt: number, freeze: number) {
+  const { form } = site.bank;
+  const throughTube = form === 'ice-on-coil-internal';
   const halfKg = site.bank.mostIceKg / LAYERS / 2;
-  const halfRadiusM = Math.sqrt(TUBE_RADIUS_M ** 2 + halfKg / (ICE_DENSITY * Math.PI * lengthM));
-  const film = melt / (2 * Math.PI * halfRadiusM * lengthM);
-  const annulusWPerK = (2 * Math.PI * WATER_CONDUCTIVITY * lengthM) / Math.log(halfRadiusM / TUBE_RADIUS_M);
+  const bareM = site.bank.freezeWPerK / LAYERS / COIL_W_PER_M2_K / (2 * Math.PI * TUBE_RADIUS_M);
+  const lengthM = throughTube ? Math.max(bareM, leastLengthM(2 * melt, halfKg)) : bareM;
+  const faceM2 =
+    form === 'open-tub' ? FLOAT_M2_PER_KG * halfKg : 2 * Math.PI * halfRadiusM(halfKg, lengthM) * lengthM;
+  const film = melt / faceM2;
+  const annulusWPerK = shellWPerK(halfKg, lengthM);
   return {
     freeKg: site.bank.waterL,
     shutKg: 0,
-    bareAreaM2,
+    bareAreaM2: 2 * Math.PI * TUBE_RADIUS_M * lengthM,
     wall: {
       inward: false,
       wallRadiusM: TUBE_RADIUS_M,
@@ -103,10 +109,26 @@ function containers(site: SiteConfig, melt: number, freeze: number) {
   };
 }
 
+const halfRadiusM = (halfKg: number, lengthM: number): number =>
+  Math.sqrt(TUBE_RADIUS_M ** 2 + halfKg / (ICE_DENSITY * Math.PI * lengthM));
+
+/** Conduction through water from the tube to where the ice of half a bank would end, W/K. */
+const shellWPerK = (halfKg: number, lengthM: number): number =>
+  (2 * Math.PI * WATER_CONDUCTIVITY * lengthM) / Math.log(halfRadiusM(halfKg, lengthM) / TUBE_RADIUS_M);
+
+/** Tube without which a water shell could not carry `wantedWPerK`, however well it convects. */
+function leastLengthM(wantedWPerK: number, halfKg: number): number {
+  const lacking = (lengthM: number): number => MOST_GAIN * shellWPerK(halfKg, lengthM) - wantedWPerK;
+  return findRoot(lacking, 0.01, 1e4, { tolerance: 1e-4 }) ?? 0;
+}
+
+/** Far above what a narrow annulus reaches by convection; no source. */
+const MOST_GAIN = 12;
+
 /**
  * Convection gain of a water shell such that loop side (twice the melt conductance) and shell in series give the melt
- * conductance at half inventory. Between 1, bare conduction, and 12, far above what a narrow annulus reaches.
+ * conductance at half inventory. At least 1, bare conduction.
  */
-function gain(melt: number, shellWPerK: number): number {
-  return Math.max(1, Math.min(12, (2 * melt) / shellWPerK));
+function gain(melt: number, bareWPerK: number): number {
+  return Math.max(1, Math.min(MOST_GAIN, (2 * melt) / bareWPerK));
 }

@@ -4,7 +4,7 @@
  */
 import type { SiteConfig } from '../config.ts';
 import { FUSION_J_PER_KG, ICE_DENSITY, WATER_CP_J_PER_KG_K } from '../physics/water.ts';
-import { bankShape, LAYERS, type BankShape } from './bank-shape.ts';
+import { bankShape, FLOAT_M2_PER_KG, LAYERS, type BankShape } from './bank-shape.ts';
 import { boundedWPerK, CoilIce } from './coil-ice.ts';
 import { Layers } from './layers.ts';
 import { Shells } from './shells.ts';
@@ -19,8 +19,7 @@ export const VAPOUR_J_PER_KG = 2.501e6;
 /** Still air over the open water of a tub, W/(m² K), and Lewis' relation for the vapour: h/cp. Common practice. */
 const SURFACE_W_PER_M2_K = 4;
 const AIR_CP = 1006;
-/** Floating pieces of about 0.05 m: melting face for each kg, m²/kg, and the part of a layer that they may fill. */
-const FLOAT_M2_PER_KG = 0.13;
+/** Part of a layer that floating pieces may fill. */
 const FLOAT_PART = 0.6;
 /** Ice on a resting coil lets go of it within this time constant, s. No source. */
 const LETTING_GO_S = 2400;
