@@ -94,6 +94,14 @@ function program(): Command {
     .option(...JSON_OUT)
     .action(ending(async () => (await import('./verbs/nights.ts')).nights));
   cli
+    .command('bill')
+    .description("a month's electricity bill, recomputed from stored energy")
+    .option(...CONFIG)
+    .option('--month <month>', 'month as YYYY-MM, the last whole one unless named')
+    .option('--csv', 'print it as CSV')
+    .option(...JSON_OUT)
+    .action(ending(async () => (await import('./verbs/bill.ts')).bill));
+  cli
     .command('backup')
     .description('a consistent copy of the database, also while the daemon runs')
     .argument('<file>')

@@ -1,7 +1,14 @@
 /** What goes into a plan and what is kept of it. */
 import type { SiteConfig } from './config.ts';
 import type { Strategy } from './commands.ts';
-import { isHome, type Stages, type Moment, type Planned, type CycleState } from './cycle-values.ts';
+import {
+  isHome,
+  type CycleState,
+  type Moment,
+  type Outlook,
+  type Planned,
+  type Stages,
+} from './cycle-values.ts';
 import type { IceEstimate } from './estimation/types.ts';
 import type { Forecast } from './forecasting/forecaster.ts';
 import type { PlanInputs } from './planning/build.ts';
@@ -11,7 +18,6 @@ import type { PlanProblem } from './planning/problem.ts';
 import { simpleCommand } from './planning/strategies.ts';
 import { meanOverRooms, valueOf } from './points.ts';
 import type { PlanRecord } from './record.ts';
-import type { DemandState } from './tariff/demand.ts';
 import { islandSlots } from './tariff/island.ts';
 import type { PriceSlot } from './tariff/prices.ts';
 import { slotStart } from './time.ts';
@@ -34,8 +40,9 @@ export function planInputs(
   ice: IceEstimate,
   forecast: Forecast,
   prices: readonly PriceSlot[],
-  demand: DemandState | null,
+  { demand, houseW }: Pick<Outlook, 'demand' | 'houseW'>,
 ): PlanInputs {
+  const usual = houseW && prices.map((slot) => houseW(slot.startMs + config.planning.slotMs / 2));
   return {
     nowMs,
     iceOnHandKwh: ice.iceOnHandKwh,
@@ -48,7 +55,7 @@ export function planInputs(
     chillerOn: state.dispatch.chillerOn,
     chillerSinceMs: state.dispatch.chillerSinceMs,
     surroundC: valueOf(live, 'bank-surround'),
-    houseW: valueOf(live, 'house-power'),
+    houseW: usual ?? valueOf(live, 'house-power'),
     batteryPct: valueOf(live, 'battery-charge'),
     demand,
     learned: { heatLeakWPerK: ice.heatLeakWPerK },

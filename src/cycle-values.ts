@@ -12,7 +12,7 @@ import type { PlanProblem } from './planning/problem.ts';
 import { valueOf, type LivePoints } from './points.ts';
 import type { DatedPrice } from './tariff/dated.ts';
 import type { DemandState } from './tariff/demand.ts';
-import type { PriceSlot } from './tariff/prices.ts';
+import type { MonthSoFar, PriceSlot } from './tariff/prices.ts';
 
 /** What is built once and keeps learning. */
 export interface Stages {
@@ -41,6 +41,10 @@ export interface Outlook {
   readonly outdoorForecast: readonly { readonly atMs: number; readonly temperatureC: number }[] | null;
   readonly datedPrices: readonly DatedPrice[];
   readonly demand: DemandState | null;
+  /** The month's energy so far; null on an island. */
+  readonly month: MonthSoFar | null;
+  /** What the house usually draws at an instant, the cooling plant left out, W; null until it is learned. */
+  readonly houseW: ((atMs: number) => number) | null;
   /** Milliseconds from any fixed instant, to end a solve that takes too long. */
   readonly stopwatch?: () => number;
 }

@@ -68,8 +68,9 @@ export function replan(
   const slots = Math.round(planning.horizonMs / planning.slotMs);
   const ice = estimator.estimate();
   const forecast = forecaster.forecast(nowMs, outlook.outdoorForecast);
-  const grid = priceSlots(config, startMs, planning.slotMs, slots, outlook.datedPrices);
-  const inputs = planInputs(stages, state, moment, ice, forecast, grid, outlook.demand);
+  const { datedPrices, month } = outlook;
+  const grid = priceSlots(config, startMs, planning.slotMs, slots, datedPrices, month);
+  const inputs = planInputs(stages, state, moment, ice, forecast, grid, outlook);
   const problem = planProblem(config, inputs);
   const plan = solvePlan(problem, {
     ...(outlook.stopwatch ? { stopwatch: outlook.stopwatch, limitMs: SOLVE_LIMIT_MS } : {}),

@@ -6,6 +6,7 @@ import { closest, distance } from 'fastest-levenshtein';
 import type * as z from 'zod';
 import { LineCounter, parseDocument, type Document } from 'yaml';
 import { siteSchema, type SiteConfig } from './config.ts';
+import { cronFault } from './cron-line.ts';
 import { POINTS, pointSpec } from './points.ts';
 import { sectionOf, type Section } from './schema.ts';
 import { toInside, unitNames, type Dimension } from './units.ts';
@@ -33,6 +34,8 @@ export function parseSiteFile(text: string): SiteFile {
       ok: false,
       faults: [{ path: '', sentence: 'expected a plain file, found aliases that unfold without end' }],
     };
+  const hidden = hiddenKeys(written, []);
+  if (hidden.length > 0) return { ok: false, faults: hidden };
   const parsed = siteSchema.safeParse(written ?? {});
   if (!parsed.success) return { ok: false, faults: parsed.error.issues.flatMap((issue) => faultsOf(issue)) };
   const faults = crossFaults(parsed.data);
@@ -48,6 +51,16 @@ function plainValue(document: Document): unknown {
   } catch {
     return TOO_MUCH;
   }
+}
+
+/** Keys that a record would swallow without a word: they name what every object has of itself. */
+function hiddenKeys(value: unknown, path: readonly string[]): Fault[] {
+  if (typeof value !== 'object' || value === null) return [];
+  return Object.entries(value).flatMap(([name, inner]) => {
+    const at = [...path, name];
+    const own = name === '__proto__' ? [{ path: at.join('/'), sentence: 'unknown key' }] : [];
+    return [...own, ...hiddenKeys(inner, at)];
+  });
 }
 
 function faultsOf(issue: z.core.$ZodIssue): Fault[] {
@@ -89,6 +102,8 @@ function crossFaults(config: SiteConfig): Fault[] {
     ...pointFaults(config),
     ...bankFaults(config),
     ...powerFaults(config),
+    ...seasonFaults(config),
+    ...timetableFaults(config),
     ...actuatorFaults(config),
     ...brokerFaults(config),
     ...secretFaults(config),
@@ -153,6 +168,26 @@ function powerFaults({ power }: SiteConfig): Fault[] {
         },
       ]
     : [];
+}
+
+function seasonFaults({ power }: SiteConfig): Fault[] {
+  return (power.tariff?.periods ?? []).flatMap(({ season }, i) =>
+    season === null || season.length === 2
+      ? []
+      : [
+          {
+            path: `power/tariff/periods/${i}/season`,
+            sentence: `expected two days, the first and the last of the season, such as ["06-01", "09-30"], found ${JSON.stringify(season)}`,
+          },
+        ],
+  );
+}
+
+function timetableFaults({ planning }: SiteConfig): Fault[] {
+  return planning.timetable.flatMap(({ at }, i) => {
+    const sentence = cronFault(at);
+    return sentence === null ? [] : [{ path: `planning/timetable/${i}/at`, sentence }];
+  });
 }
 
 function actuatorFaults({ actuators, points }: SiteConfig): Fault[] {

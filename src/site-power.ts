@@ -45,6 +45,15 @@ export const demandSection = section('A charge on the highest mean power of a mo
   to: key('to', clockTime, '00:00', 'Local time until which it is measured.'),
 });
 
+export const blockSection = section("An addition to every price for the month's energy above a threshold.", {
+  aboveKwh: requiredKey(
+    'above',
+    quantity('energy', '0 kWh', '1000000 kWh'),
+    "Energy of the month, on the meter's clock, from which it is added.",
+  ),
+  adds: requiredKey('adds', plainNumber(-100, 100), 'Money per kWh that it adds.'),
+});
+
 export const tariffSection = section('Prices of grid electricity by local time.', {
   zone: optionalKey('zone', zone(), "Zone of the meter's clock; the site's when left out."),
   default: requiredKey('default', plainNumber(-100, 100), 'Money per kWh where no period holds.'),
@@ -52,6 +61,9 @@ export const tariffSection = section('Prices of grid electricity by local time.'
   holidays: key('holidays', listOf(date), [], 'Dates that the tariff treats as holidays.'),
   feedIn: key('feed-in', plainNumber(-100, 100), 0, 'Money paid per kWh fed into the grid.'),
   demand: optionalKey('demand', demandSection, 'Demand charge, where the contract has one.'),
+  blocks: key('blocks', listOf(blockSection), [], "Additions by the month's energy, where there are any."),
+  fixedPerMonth: key('fixed-per-month', plainNumber(0, 10_000), 0, 'Money of the bill for each month.'),
+  fixedPerDay: key('fixed-per-day', plainNumber(0, 1000), 0, 'Money of the bill for each day.'),
 });
 
 export const batterySection = section('The site battery.', {

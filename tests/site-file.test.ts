@@ -122,6 +122,18 @@ describe('faults', () => {
       /not under points/,
     ],
     [
+      'a season of one day',
+      ['{ name: middle, price: 0.16 }', "{ name: middle, price: 0.16, season: ['06-01'] }"],
+      'power/tariff/periods/4/season',
+      /two days/,
+    ],
+    [
+      'a point that every object has',
+      ['points:', 'points:\n  __proto__: { topic: a/b }'],
+      'points/__proto__',
+      /unknown/,
+    ],
+    [
       'two passwords',
       ['  # user: rimehold', '  password-env: SECRET\n  password-file: secret'],
       'broker/password-env',
@@ -129,6 +141,21 @@ describe('faults', () => {
     ],
   ] as [string, [string, string], string, RegExp][])('see %s', (_name, change, path, sentence) => {
     expect(faultsOf(changed(change))[path]).toMatch(sentence);
+  });
+
+  it.each([
+    ['0 25 * * *', /hour as 0 to 23.*found "25"/],
+    ['0 3 * * SATURDAYS', /weekday as 0 to 7 or SUN to SAT.*"SATURDAYS"/],
+    ['0 3 31 2 *', /never comes/],
+    ['0 3 * *', /five fields.*found "0 3 \* \*"/],
+    ['5/15 3 * * *', /minute/],
+    ['0 9-5 * * *', /hour/],
+  ])('see the timetable line %s', (line, sentence) => {
+    const text = changed([
+      'strategy: planned',
+      `strategy: planned\n  timetable: [{at: '${line}', command: hold}]`,
+    ]);
+    expect(faultsOf(text)['planning/timetable/0/at']).toMatch(sentence);
   });
 
   it('read as lines for a terminal', () => {

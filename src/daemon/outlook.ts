@@ -1,15 +1,13 @@
-/** What a plan takes from outside: a forecast, dated prices, the month's peak so far. */
-import type { SiteConfig } from '../config.ts';
+/** What a plan takes from outside: a forecast, dated prices, what the meter has counted so far. */
 import type { Outlook } from '../cycle-values.ts';
 import { sentenceOf } from '../errors.ts';
 import { parseDatedPrices, type DatedPrice } from '../tariff/dated.ts';
-import { demandSoFar, monthAt } from '../tariff/demand.ts';
-import { energyBySlot } from '../tariff/energy.ts';
-import { meterZone } from '../tariff/terms.ts';
+import { Meter } from './meter.ts';
 import type { DaemonParts } from './ports.ts';
 
 export class OutlookSource {
   readonly #parts: DaemonParts;
+  readonly #meter: Meter;
   #heard: { readonly atMs: number; readonly prices: readonly DatedPrice[] } = {
     atMs: Number.NaN,
     prices: [],
@@ -17,6 +15,7 @@ export class OutlookSource {
 
   constructor(parts: DaemonParts) {
     this.#parts = parts;
+    this.#meter = new Meter(parts.config, parts.store);
   }
 
   at(nowMs: number): Outlook {
@@ -24,7 +23,7 @@ export class OutlookSource {
     return {
       outdoorForecast: intake.forecast()?.value ?? null,
       datedPrices: this.#prices(config.site.currency),
-      demand: this.#demand(config, nowMs),
+      ...this.#meter.at(nowMs),
       stopwatch,
     };
   }
@@ -41,13 +40,5 @@ export class OutlookSource {
     }
     this.#heard = { atMs: heard.heardMs, prices };
     return prices;
-  }
-
-  #demand(config: SiteConfig, nowMs: number): Outlook['demand'] {
-    const { tariff } = config.power;
-    if (!tariff?.demand) return null;
-    const month = monthAt(meterZone(config), nowMs);
-    const records = this.#parts.store.recordsBetween(month.startMs, nowMs);
-    return demandSoFar(config, energyBySlot(records, tariff.demand.overMs), nowMs);
   }
 }

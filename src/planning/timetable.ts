@@ -34,7 +34,7 @@ export function lastFired(lines: readonly TimetableLine[], zone: string, nowMs: 
   return last;
 }
 
-/** A pattern that croner cannot read never fires: a plan must not fail for it. `isCronLine` finds it beforehand. */
+/** A pattern that croner cannot read never fires: a plan must not fail for it. The site file's check finds it beforehand. */
 function cronOf(pattern: string): Cron | null {
   try {
     return new Cron(pattern, { timezone: 'UTC' });
@@ -42,8 +42,6 @@ function cronOf(pattern: string): Cron | null {
     return null;
   }
 }
-
-export const isCronLine = (pattern: string): boolean => cronOf(pattern) !== null;
 
 function lastMatchMs(pattern: string, zone: string, nowMs: number): number | null {
   const cron = cronOf(pattern);

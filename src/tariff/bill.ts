@@ -3,7 +3,7 @@
  * zero), and the total is the sum of the rounded lines, as printed bills do it. Energy of a slot that a change of
  * price cuts is shared by time.
  */
-import type { SiteConfig } from '../config.ts';
+import type { SiteConfig, TariffConfig } from '../config.ts';
 import { RimeholdError } from '../errors.ts';
 import { DAY_MS, fromWall } from '../time.ts';
 import type { DatedPrice } from './dated.ts';
@@ -11,7 +11,7 @@ import { demandSoFar } from './demand.ts';
 import type { EnergySlot } from './energy.ts';
 import type { Stretch } from './periods.ts';
 import { priceParts, type PricePart } from './prices.ts';
-import { meterZone, type Block, type TariffTerms } from './terms.ts';
+import { meterZone, type Block } from './terms.ts';
 
 export interface BillLine {
   readonly what: string;
@@ -44,9 +44,12 @@ export function monthBill(
   energy: readonly EnergySlot[],
   dated: readonly DatedPrice[] = [],
 ): Bill {
-  const terms: TariffTerms | null = config.power.tariff;
+  const terms = config.power.tariff;
   if (!terms)
-    throw new RimeholdError('usage', 'Expected a site with power.tariff for a bill, found an island.');
+    throw new RimeholdError(
+      'usage',
+      'Expected a site with power.tariff for a bill, found an island, which has no meter to be billed by.',
+    );
   const { startMs, endMs } = monthStretch(meterZone(config), month);
   const inside = energy.filter((slot) => slot.startMs >= startMs && slot.startMs < endMs);
   const parts = priceParts(config, startMs, endMs, dated);
@@ -54,7 +57,7 @@ export function monthBill(
   const lines = [
     ...fixedLines(terms, startMs, endMs),
     ...energyLines(parts, inside),
-    ...blockLines(terms.blocks ?? [], drawnKwh),
+    ...blockLines(terms.blocks, drawnKwh),
     ...demandLines(config, inside, endMs),
     ...feedInLines(parts, inside),
   ];
@@ -63,7 +66,8 @@ export function monthBill(
   return { month, startMs, endMs, lines, totalMoney, heard: heardMs / (endMs - startMs) };
 }
 
-function monthStretch(zone: string, month: string): Stretch {
+/** The calendar month `YYYY-MM` on a zone's clock. Throws `usage` when it is none. */
+export function monthStretch(zone: string, month: string): Stretch {
   const match = MONTH.exec(month);
   if (!match) throw new RimeholdError('usage', `Expected a month as YYYY-MM, found "${month}".`, { month });
   const [year, number] = [Number(match[1]), Number(match[2])];
@@ -84,7 +88,7 @@ function line(what: string, quantity: number, unit: BillLine['unit'], price: num
   return { what, quantity, unit, price, amountMoney: roundMoney(quantity * price) };
 }
 
-function fixedLines(terms: TariffTerms, startMs: number, endMs: number): BillLine[] {
+function fixedLines(terms: TariffConfig, startMs: number, endMs: number): BillLine[] {
   const days = Math.round((endMs - startMs) / DAY_MS);
   return [
     ...(terms.fixedPerMonth ? [line('fixed charge', 1, 'month', terms.fixedPerMonth)] : []),
@@ -149,11 +153,6 @@ function blockLines(blocks: readonly Block[], drawnKwh: number): BillLine[] {
   return blocks
     .filter((block) => drawnKwh > block.aboveKwh)
     .map((block) => line(`above ${block.aboveKwh} kWh`, drawnKwh - block.aboveKwh, 'kWh', block.adds));
-}
-
-/** What the month's blocks add to the price of the next kWh. */
-export function blockAdds(blocks: readonly Block[], monthKwhSoFar: number): number {
-  return blocks.reduce((sum, block) => sum + (monthKwhSoFar >= block.aboveKwh ? block.adds : 0), 0);
 }
 
 function demandLines(config: SiteConfig, energy: readonly EnergySlot[], endMs: number): BillLine[] {

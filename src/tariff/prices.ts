@@ -7,7 +7,7 @@
 import type { IslandConfig, SiteConfig } from '../config.ts';
 import type { DatedPrice } from './dated.ts';
 import { cutsOf, pricedStretches, type PricedStretch } from './periods.ts';
-import { meterZone } from './terms.ts';
+import { blockAdds, meterZone } from './terms.ts';
 
 export type PriceSource = 'dated' | 'period' | 'default' | 'island';
 
@@ -32,21 +32,34 @@ export interface PricePart {
   readonly source: PriceSource;
 }
 
-/** The price of every slot from `startMs`. Throws `config` on a malformed season. */
+/** Energy drawn in the month so far, and when the month ends. */
+export interface MonthSoFar {
+  readonly kwh: number;
+  readonly untilMs: number;
+}
+
+/**
+ * The price of every slot from `startMs`: of the next kWh, what the month's blocks add by now included. A slot of the
+ * next month carries what the blocks add from its first kWh. Throws `config` on a malformed season.
+ */
 export function priceSlots(
   config: SiteConfig,
   startMs: number,
   slotMs: number,
   count: number,
   dated: readonly DatedPrice[] = [],
+  month: MonthSoFar | null = null,
 ): PriceSlot[] {
   const parts = priceParts(config, startMs, startMs + slotMs * count, dated);
+  const blocks = config.power.tariff?.blocks ?? [];
   const slots: PriceSlot[] = [];
   let first = 0;
   for (let i = 0; i < count; i += 1) {
     const from = startMs + i * slotMs;
     while (parts[first].endMs <= from) first += 1;
-    slots.push(slotOf(parts, first, from, from + slotMs));
+    const slot = slotOf(parts, first, from, from + slotMs);
+    const adds = blockAdds(blocks, month !== null && from < month.untilMs ? month.kwh : 0);
+    slots.push(adds === 0 ? slot : { ...slot, buy: slot.buy + adds });
   }
   return slots;
 }

@@ -2,21 +2,14 @@
 import type { SiteConfig, TariffConfig } from '../config.ts';
 
 /** An addition to every price for the month's energy above a threshold. Sorted or not; each holds above its own. */
-export interface Block {
-  readonly aboveKwh: number;
-  readonly adds: number;
-}
-
-/** What a bill may carry beside energy and demand; nothing of it moves a marginal price but the blocks. */
-export interface BillTerms {
-  readonly fixedPerMonth?: number;
-  readonly fixedPerDay?: number;
-  readonly blocks?: readonly Block[];
-}
-
-export type TariffTerms = TariffConfig & BillTerms;
+export type Block = TariffConfig['blocks'][number];
 
 /** The zone of the meter's clock. */
 export function meterZone(config: SiteConfig): string {
   return config.power.tariff?.zone ?? config.site.zone;
+}
+
+/** What the month's blocks add to the price of the next kWh. */
+export function blockAdds(blocks: readonly Block[], monthKwhSoFar: number): number {
+  return blocks.reduce((sum, block) => sum + (monthKwhSoFar >= block.aboveKwh ? block.adds : 0), 0);
 }

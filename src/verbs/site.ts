@@ -3,7 +3,9 @@ import { readFileSync, writeFileSync } from 'node:fs';
 import { isAbsolute } from 'node:path';
 import type { SiteConfig } from '../config.ts';
 import { RimeholdError, systemWords } from '../errors.ts';
-import { faultLines, parseSiteFile } from '../site-file.ts';
+import { templateFaults } from '../mqtt/announce.ts';
+import { pointFaults } from '../mqtt/intake.ts';
+import { faultLines, parseSiteFile, type Fault } from '../site-file.ts';
 import { openStore, type Store } from '../store/store.ts';
 
 /** Reads a file or throws `file-unreadable` with what the file was for and what a person can do. */
@@ -48,8 +50,17 @@ export function loadSite(file: string): SiteConfig {
       { file },
     );
   const parsed = parseSiteFile(text);
-  if (!parsed.ok) throw new RimeholdError('config', faultLines(file, parsed.faults), { file });
+  const faults = parsed.ok ? messageFaults(parsed.config) : parsed.faults;
+  if (!parsed.ok || faults.length > 0) throw new RimeholdError('config', faultLines(file, faults), { file });
   return parsed.config;
+}
+
+/** What points and templates say that no message could meet: better found before anything is opened. */
+function messageFaults(config: SiteConfig): Fault[] {
+  return [...pointFaults(config.points), ...templateFaults(config)].map((line) => {
+    const [, where, sentence] = /^(\S+): (.*?)\.?$/s.exec(line) ?? ['', '', line];
+    return { path: where.replaceAll('.', '/'), sentence };
+  });
 }
 
 /**

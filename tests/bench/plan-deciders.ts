@@ -183,9 +183,10 @@ function problemOf(
   const { slotMs } = config.planning;
   const slots = forecast.scenarios[0].loadW.length;
   const prices = priceSlots(config, slotStart(nowMs, slotMs), slotMs, slots, on.dated(nowMs));
-  const inputs = planInputs(stages, state, moment, ice, forecast, prices, demand);
-  const house = houseW && prices.map((slot) => houseW(slot.startMs + slotMs / 2));
-  return planProblem(config, { ...inputs, houseW: house ?? inputs.houseW });
+  return planProblem(
+    config,
+    planInputs(stages, state, moment, ice, forecast, prices, { demand, houseW }),
+  );
 }
 
 function latest(means: MeanForecasts, nowMs: number): Forecast {

@@ -1,6 +1,7 @@
 /** Cron lines on the wall clock, through both changes of a year. Instants computed by hand from the zones' offsets. */
 import { describe, expect, it } from 'vitest';
-import { firedBetween, isCronLine, lastFired, type TimetableLine } from '../../src/planning/timetable.ts';
+import { cronFault } from '../../src/cron-line.ts';
+import { firedBetween, lastFired, type TimetableLine } from '../../src/planning/timetable.ts';
 
 const at = (text: string): number => Date.parse(text);
 const lines: readonly TimetableLine[] = [
@@ -36,10 +37,24 @@ describe('timetable', () => {
     expect(lastFired(weekly, MADRID, at('2026-07-09T20:00:00Z'))?.atMs).toBe(at('2026-07-04T04:30:00Z'));
   });
 
+  it.each(['*/15 8-20 * * MON-FRI', '0,30 3 1,15 JUN-SEP *', '0 3 * * 7', '7 0-23/2 * 6 sun'])(
+    'fires on %s, which the check of the site file lets pass',
+    (line) => {
+      expect(cronFault(line)).toBeNull();
+      const fired = firedBetween(
+        [{ at: line, command: 'hold' }],
+        MADRID,
+        at('2026-06-01T00:00Z'),
+        at('2026-07-01T00:00Z'),
+      );
+      expect(fired.length).toBeGreaterThan(0);
+    },
+  );
+
   it('passes over a line that is no cron line', () => {
     const bad: TimetableLine[] = [{ at: '0 12 * * SATURDAYS', command: 'discharge' }, ...lines];
-    expect(isCronLine(bad[0].at)).toBe(false);
-    expect(isCronLine(bad[1].at)).toBe(true);
+    expect(cronFault(bad[0].at)).toContain('SATURDAYS');
+    expect(cronFault(bad[1].at)).toBeNull();
     expect(lastFired(bad, MADRID, at('2026-07-01T15:00:00Z'))?.command).toBe('discharge');
     expect(firedBetween([bad[0]], MADRID, 0, at('2026-07-01T15:00:00Z'))).toEqual([]);
   });

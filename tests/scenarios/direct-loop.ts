@@ -96,6 +96,8 @@ export class DirectLoop {
       outdoorForecast: null,
       datedPrices: [],
       demand: null,
+      month: null,
+      houseW: null,
     });
     this.state = { ...this.state, planned };
     this.#options.onPlan?.(planRecordOf(planned), performance.now() - begunMs);

@@ -10,16 +10,16 @@
  *      weekends and holidays, mid-peak 9.4 ct 7:00-11:00 and 17:00-19:00, on-peak 13.2 ct 11:00-17:00, 1 May to 31 October.
  */
 import { describe, expect, it } from 'vitest';
-import type { SiteConfig } from '../../src/config.ts';
+import type { SiteConfig, TariffConfig } from '../../src/config.ts';
 import { HOUR_MS, toWall } from '../../src/time.ts';
-import { blockAdds, monthBill, roundMoney } from '../../src/tariff/bill.ts';
+import { monthBill, roundMoney } from '../../src/tariff/bill.ts';
 import { energyBySlot, type EnergySlot } from '../../src/tariff/energy.ts';
-import type { BillTerms } from '../../src/tariff/terms.ts';
+import { blockAdds } from '../../src/tariff/terms.ts';
 import { siteWith, utc } from './site.ts';
 
 const WEEKDAYS = ['MO', 'TU', 'WE', 'TH', 'FR'];
 
-function withTerms(config: SiteConfig, terms: BillTerms): SiteConfig {
+function withTerms(config: SiteConfig, terms: Partial<TariffConfig>): SiteConfig {
   const tariff = config.power.tariff;
   if (!tariff) throw new Error('the site has no tariff');
   return { ...config, power: { ...config.power, tariff: { ...tariff, ...terms } } };

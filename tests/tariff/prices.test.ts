@@ -197,3 +197,29 @@ it('covers 48 hours without a gap, every part longer than nothing', () => {
     if (i > 0) expect(part.startMs).toBe(parts[i - 1].endMs);
   }
 });
+
+describe('blocks by monthly energy', () => {
+  const blocks = [
+    { above: '100 kWh', adds: 0.05 },
+    { above: '200 kWh', adds: 0.02 },
+  ];
+  const config = siteWith({ tariff: { default: 0.2, blocks } });
+  // 31 July, 23:00 in Madrid; the month ends at 22:00Z.
+  const start = utc('2026-07-31T21:00Z');
+  const buys = (kwh: number | null): number[] =>
+    priceSlots(
+      config,
+      start,
+      HOUR_MS,
+      2,
+      [],
+      kwh === null ? null : { kwh, untilMs: utc('2026-07-31T22:00Z') },
+    ).map(({ buy }) => buy);
+
+  it('add to the next kWh once the month has come so far, and not to that of the next month', () => {
+    expect(buys(99.9)).toEqual([0.2, 0.2]);
+    expect(buys(100)).toEqual([0.25, 0.2]);
+    expect(buys(250)[0]).toBeCloseTo(0.27, 12);
+    expect(buys(null)).toEqual([0.2, 0.2]);
+  });
+});
