@@ -25,6 +25,10 @@ export interface Wish {
   readonly untilMs: number;
 }
 
+/** What only the owner's eyes can know of the bank; the estimate takes it as a fact. */
+export const TOLD = ['empty', 'full', 'tank-refilled', 'probe-moved'] as const;
+export type Told = (typeof TOLD)[number];
+
 export const PHASES = ['all-water', 'mixed', 'full'] as const;
 export type Phase = (typeof PHASES)[number];
 

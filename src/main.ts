@@ -30,6 +30,8 @@ export interface BuildOptions {
   readonly clockRate?: number;
   readonly log?: Log;
   readonly seed?: number;
+  /** Folder of the compiled page, where it is not that of the build. */
+  readonly pageDir?: string;
 }
 
 export interface Running {
@@ -86,7 +88,7 @@ async function start(
   const embedded = config.broker.embedded ? await startBroker(config) : null;
   if (embedded) stops.push(() => embedded.stop());
   const { client, daemon, parts, givenUp } = build(config, options, store, embedded);
-  const web = await startPage(daemon, parts, passphrase);
+  const web = await startPage(daemon, parts, passphrase, options.pageDir ?? BUILT_PAGE);
   if (web) stops.push(() => web.server.stop());
   await client.start();
   stops.push(() => client.stop());
@@ -144,6 +146,7 @@ function build(
       wish: 'none' as const,
       wishForMs: 7_200_000,
       limitC: config.comfort.limitC,
+      told: null,
     },
     nowMs: () => clock.nowMs(),
     onSet: (path, value) => setByOwner(daemon, clock, path, value),
@@ -188,17 +191,20 @@ function noonJob(daemon: Daemon, clockRate: number): () => void {
   return () => void task.stop();
 }
 
+const BUILT_PAGE = fileURLToPath(new URL('../dist/web/page', import.meta.url));
+
 async function startPage(
   daemon: Daemon,
   parts: DaemonParts,
   passphrase: string | null,
+  pageDir: string,
 ): Promise<{ server: WebServer; url: string } | null> {
   const { web } = parts.config;
   if (!web.enabled) return null;
   const server = createWebServer({
     host: web.host,
     port: web.port,
-    pageDir: fileURLToPath(new URL('../dist/web/page', import.meta.url)),
+    pageDir,
     passphrase,
     source: pageSource({ daemon, parts, version: VERSION }),
     log: parts.log,

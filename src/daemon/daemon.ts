@@ -3,29 +3,30 @@
  * logic of its own: what is decided stands in `cycle.ts`. A part that fails is named, logged and passed over; the
  * loop goes on.
  */
-import type { Mode } from '../commands.ts';
+import type { Mode, Told } from '../commands.ts';
 import type { SiteConfig } from '../config.ts';
 import { planRecordOf } from '../cycle-plan.ts';
 import type { CycleState, Moment, Stages } from '../cycle-values.ts';
 import { forecastSite, replan, replanDue, stagesOf, startState, tick, type Ticked } from '../cycle.ts';
 import { judgeClock, type ClockVerdict } from '../dispatch/clock.ts';
-import type { DispatchMemory } from '../dispatch/types.ts';
 import { RimeholdError, sentenceOf } from '../errors.ts';
 import { createEstimator } from '../estimation/estimator.ts';
-import type { IceEstimate } from '../estimation/types.ts';
 import { createForecaster } from '../forecasting/forecaster.ts';
 import type { Message } from '../mqtt/intake.ts';
-import type { Reading } from '../points.ts';
-import type { CycleRecord, PlanRecord } from '../record.ts';
+import type { PointId, Reading } from '../points.ts';
+import type { PlanRecord } from '../record.ts';
 import { HOUR_MS, MINUTE_MS, nightAt, type Night } from '../time.ts';
 import { AlertBoard } from './alert-board.ts';
-import { Memory } from './memory.ts';
-import { nightsToClose, writeSheet, type NightEnd } from './nights.ts';
+import { latchesOf, Memory } from './memory.ts';
+import { nightsToClose, writeSheet } from './nights.ts';
 import { OutlookSource } from './outlook.ts';
-import { Owner } from './owner.ts';
+import { Owner, withLimit } from './owner.ts';
 import type { DaemonEvents, DaemonParts } from './ports.ts';
+import { flush } from './flush.ts';
 import { HighWater } from './high-water.ts';
 import { LATE_MS, Past, replay, type Checkpoint } from './rewind.ts';
+import { Tellings } from './telling.ts';
+import { WarmTonight } from './warm-tonight.ts';
 
 const MEMORY_EVERY_MS = HOUR_MS / 2;
 const HOUSEKEEPING_MS = 5 * MINUTE_MS;
@@ -41,6 +42,7 @@ const URGENT_POINTS = new Set(['drip-tray-wet', 'high-pressure-trip', 'ice-at-el
 
 export class Daemon {
   readonly owner: Owner;
+  readonly tellings: Tellings;
   readonly #parts: DaemonParts;
   readonly #events = new Set<DaemonEvents>();
   readonly #stops: (() => void)[] = [];
@@ -66,7 +68,7 @@ export class Daemon {
   #lastPlan: PlanRecord | null = null;
   #lastUrgentMs = 0;
   #closedBefore = '';
-  #tonight: { date: string; warmKh: number } = { date: '', warmKh: 0 };
+  readonly #warm: WarmTonight;
 
   constructor(parts: DaemonParts) {
     const { config, store, clock, seed } = parts;
@@ -75,6 +77,8 @@ export class Daemon {
     this.#memory = new Memory(store, parts.log);
     this.#outlook = new OutlookSource(parts);
     this.owner = new Owner(config, store.loadMemory('owner'));
+    this.#warm = new WarmTonight(store, config.site.zone);
+    this.tellings = new Tellings(store.loadMemory('told'));
     this.#config = withLimit(config, this.owner.settings(nowMs).limitC);
     this.#stages = stagesOf(
       this.#config,
@@ -90,7 +94,7 @@ export class Daemon {
     this.#guarded('taking up the estimate', () => this.#takeUp());
     this.#stops.push(
       clock.every(config.planning.cycleMs, () => this.cycle()),
-      clock.every(Math.max(config.store.flushMs, LEAST_FLUSH_REAL_MS * clockRate), () => this.#flush()),
+      clock.every(Math.max(config.store.flushMs, LEAST_FLUSH_REAL_MS * clockRate), () => flush(this.#parts)),
       clock.every(MEMORY_EVERY_MS, () => this.#guarded('keeping what was learned', () => this.#saveMemory())),
       clock.every(Math.max(HOUSEKEEPING_MS, LEAST_FLUSH_REAL_MS * clockRate), () =>
         this.#guarded('thinning old records', () => this.#parts.store.compact(clock.nowMs())),
@@ -156,8 +160,7 @@ export class Daemon {
     this.#guarded('a cycle', () => {
       const moment = this.#moment();
       this.#rewind(moment.nowMs);
-      const readings = this.#pending.toSorted((a, b) => a.atMs - b.atMs);
-      this.#pending = [];
+      const readings = this.#takePending();
       if (this.#state.planned === null)
         this.#stages.estimator.advance(moment.nowMs, readings.splice(0), null);
       if (replanDue(this.#state, this.#config, moment.nowMs))
@@ -165,6 +168,10 @@ export class Daemon {
       this.#tick(moment, readings);
     });
     this.closeNights();
+  }
+
+  #takePending(): Reading[] {
+    return this.#pending.splice(0).toSorted((a, b) => a.atMs - b.atMs);
   }
 
   #moment(): Moment {
@@ -186,7 +193,7 @@ export class Daemon {
     if (planned.plan.note !== '') this.#parts.log.warn({ outcome: planned.plan.outcome }, planned.plan.note);
     this.#lastPlan = this.#parts.store.addPlan(planRecordOf(planned));
     this.#parts.device.publishPlan(this.#lastPlan);
-    this.#tell((events) => events.plan?.());
+    this.#inform((events) => events.plan?.());
   }
 
   #tick(moment: Moment, readings: readonly Reading[]): void {
@@ -200,11 +207,11 @@ export class Daemon {
     device.publishOrder(ticked.order);
     const record = store.addRecord(ticked.record);
     this.#last = { ...ticked, record };
-    this.#countWarmth(record);
+    this.#warm.count(record);
     this.#firstRecordMs ??= record.atMs;
     if (this.#mode?.mode !== record.mode) this.#mode = { mode: record.mode, sinceMs: record.atMs };
     const pointsHeard = Object.values(moment.live).filter((point) => point?.value != null).length;
-    device.publishCycle(record, { pointsHeard, warmTonightKh: this.#tonight.warmKh });
+    device.publishCycle(record, { pointsHeard, warmTonightKh: this.#warm.warmKh });
     device.publishSettings(this.#settings(moment.nowMs));
     this.#alerts.show(this.#parts, this.#config, moment, ticked, {
       expectedWarmKh: this.#state.planned?.plan.expectedWarmKh ?? null,
@@ -212,21 +219,12 @@ export class Daemon {
     });
     this.#past.keep(moment.nowMs, () => this.#stages.estimator.memory());
     this.#highWater.seen(moment.nowMs);
-    this.#tell((events) => events.record?.(record));
+    this.#inform((events) => events.record?.(record));
   }
 
   #settings(nowMs: number) {
     const { wish, wishForMs, strategy, limitC } = this.owner.settings(nowMs);
-    return { wish: wish.name, wishForMs, strategy, limitC };
-  }
-
-  #countWarmth(record: CycleRecord): void {
-    const { date, startMs } = nightAt(this.#config.site.zone, record.atMs);
-    if (this.#tonight.date !== date) {
-      const before = this.#parts.store.recordsBetween(startMs, record.atMs - 1);
-      this.#tonight = { date, warmKh: before.reduce((sum, one) => sum + one.warmKh, 0) };
-    }
-    this.#tonight = { date, warmKh: this.#tonight.warmKh + record.warmKh };
+    return { wish: wish.name, wishForMs, strategy, limitC, told: this.tellings.open(nowMs)?.what ?? null };
   }
 
   /** Writes the sheet of every night that is over; called by each cycle and, on real time, by the noon job. */
@@ -249,7 +247,8 @@ export class Daemon {
       this.#parts.store,
       night,
       nowMs,
-      estimate === null ? null : nightEnd(estimate),
+      estimate,
+      this.tellings.all(night.startMs, night.endMs),
     );
     if (sheet === null) return;
     const noStorage = sheet.comparisons.find((one) => one.strategy === 'no-storage');
@@ -263,7 +262,7 @@ export class Daemon {
       { night: night.date },
       `The night of ${night.date} is closed. ${sheet.balance.sentence}`,
     );
-    this.#tell((events) => events.night?.(sheet));
+    this.#inform((events) => events.night?.(sheet));
   }
 
   /** Takes over a changed comfort limit; the forecaster goes on with what it has learned. */
@@ -273,6 +272,31 @@ export class Daemon {
     this.#config = withLimit(this.#parts.config, limitC);
     const forecaster = createForecaster(forecastSite(this.#config), { seed: this.#parts.seed, memory });
     this.#stages = stagesOf(this.#config, this.#stages.estimator, forecaster);
+    this.planAfresh();
+  }
+
+  /** The owner says what the bank is; the estimate takes it at once. Throws `usage`. */
+  tell(what: Told, point: PointId | null): void {
+    const nowMs = this.#parts.clock.nowMs();
+    this.#rewind(nowMs);
+    this.#stages.estimator.advance(nowMs, this.#takePending(), this.#state.order?.command ?? null);
+    this.tellings.tell(this.#stages.estimator, what, point, nowMs);
+    this.#told(`The owner told of the bank: ${what}${point === null ? '' : `, ${point}`}.`);
+  }
+
+  /** Takes back what was told last: the estimate is as if it had never been told. Throws `usage` after an hour. */
+  takeBack(): void {
+    const nowMs = this.#parts.clock.nowMs();
+    const before = this.tellings.takeBack(nowMs);
+    this.#liveAgain(before, nowMs);
+    this.#pending = [];
+    this.#told('The owner took back what was told of the bank.');
+  }
+
+  #told(sentence: string): void {
+    this.#parts.store.saveMemory('told', this.tellings.memory());
+    flush(this.#parts);
+    this.#parts.log.info({}, sentence);
     this.planAfresh();
   }
 
@@ -310,7 +334,8 @@ export class Daemon {
 
   #liveAgain(from: Checkpoint, nowMs: number): void {
     const { config, store, seed } = this.#parts;
-    const { estimator, checkpoints } = replay(config, store, from, nowMs, seed);
+    const told = this.tellings.between(from.atMs, nowMs);
+    const { estimator, checkpoints } = replay(config, store, from, nowMs, seed, told);
     this.#stages = { ...this.#stages, estimator };
     this.#past.relived(from, checkpoints);
   }
@@ -339,16 +364,7 @@ export class Daemon {
     this.#parts.store.saveMemory('owner', this.owner.memory());
   }
 
-  #flush(): void {
-    const { store, log } = this.#parts;
-    const before = store.health().fault;
-    const { fault } = store.flush();
-    if (fault !== null && before?.code !== fault.code) log.error({ code: fault.code }, fault.message);
-    if (fault === null && before !== null)
-      log.info({}, 'The database takes data again; what waited in memory is written.');
-  }
-
-  #tell(call: (events: DaemonEvents) => void): void {
+  #inform(call: (events: DaemonEvents) => void): void {
     for (const events of this.#events) this.#guarded('telling an observer', () => call(events));
   }
 
@@ -381,17 +397,4 @@ export class Daemon {
       plan: this.#lastPlan,
     };
   }
-}
-
-/** What of the memory a crash must not lose: rests after a trip or a dry run. */
-function latchesOf({ trippedUntilMs, dryUntilMs }: DispatchMemory): string {
-  return `${trippedUntilMs} ${dryUntilMs}`;
-}
-
-function withLimit(config: SiteConfig, limitC: number): SiteConfig {
-  return { ...config, comfort: { ...config.comfort, limitC } };
-}
-
-function nightEnd({ probes, learned }: IceEstimate): NightEnd {
-  return { probes, learned };
 }

@@ -51,3 +51,8 @@ export class Memory {
     return { atMs: stored.atMs, memory: stored.memory };
   }
 }
+
+/** What of the memory a crash must not lose: rests after a trip or a dry run. */
+export function latchesOf({ trippedUntilMs, dryUntilMs }: DispatchMemory): string {
+  return `${trippedUntilMs} ${dryUntilMs}`;
+}

@@ -7,6 +7,7 @@ import { readSheet, type NightSheet } from '../reports/night-schema.ts';
 import { nextRevision, nightSheet } from '../reports/night.ts';
 import type { Store } from '../store/store.ts';
 import { DAY_MS, nightAt, nightOf, type Night } from '../time.ts';
+import { Tellings, type Telling } from './telling.ts';
 
 /** What the estimator knows at the end of a night. */
 export interface NightEnd {
@@ -41,7 +42,7 @@ export function sheetOf(
   night: Night,
   nowMs: number,
   end: NightEnd | null,
-  revision = 1,
+  told: readonly Telling[] = [],
 ): NightSheet | null {
   const records = store.recordsBetween(night.startMs - DAY_MS, night.endMs);
   if (!records.some((record) => record.atMs > night.startMs)) return null;
@@ -54,8 +55,9 @@ export function sheetOf(
     records,
     plans: store.plansBetween(night.startMs - DAY_MS, night.endMs),
     ways: simpleWays({ site: config, night, records, timetableAt }),
-    ...end,
-    revision,
+    ...(end === null ? {} : { probes: end.probes, learned: end.learned }),
+    told,
+    revision: 1,
     issuedMs: nowMs,
   });
 }
@@ -67,8 +69,9 @@ export function writeSheet(
   night: Night,
   nowMs: number,
   end: NightEnd | null,
+  told: readonly Telling[],
 ): NightSheet | null {
-  const fresh = sheetOf(config, store, night, nowMs, end);
+  const fresh = sheetOf(config, store, night, nowMs, end, told);
   if (fresh === null) return null;
   const before = store.sheet(night.date);
   const written = before === null ? null : readSheet(before.body);
@@ -85,5 +88,7 @@ export function storedSheet(store: Store, date: string): NightSheet | null {
 
 /** The sheet of a date: as written, else, for a night still going on or never closed, as it stands now. */
 export function sheetFor(config: SiteConfig, store: Store, date: string, nowMs: number): NightSheet | null {
-  return storedSheet(store, date) ?? sheetOf(config, store, nightOf(config.site.zone, date), nowMs, null);
+  const night = nightOf(config.site.zone, date);
+  const told = new Tellings(store.loadMemory('told')).all(night.startMs, night.endMs);
+  return storedSheet(store, date) ?? sheetOf(config, store, night, nowMs, null, told);
 }

@@ -107,3 +107,8 @@ function parsed(text: string): Record<string, unknown> {
     return {};
   }
 }
+
+/** A site with the owner's limit in place of that of its file. */
+export function withLimit(config: SiteConfig, limitC: number): SiteConfig {
+  return { ...config, comfort: { ...config.comfort, limitC } };
+}

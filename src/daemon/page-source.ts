@@ -16,6 +16,7 @@ import { INTERLOCKS } from '../dispatch/interlocks.ts';
 import type { Daemon } from './daemon.ts';
 import { storedSheet } from './nights.ts';
 import type { DaemonParts } from './ports.ts';
+import { TAKE_BACK_MS } from './telling.ts';
 
 export interface PageSourceOptions {
   readonly daemon: Daemon;
@@ -61,6 +62,8 @@ export function pageSource({ daemon, parts, version }: PageSourceOptions): WebSo
       daemon.saveOwner();
       daemon.limitChanged();
     },
+    tell: (what, point) => daemon.tell(what, point),
+    takeBack: () => daemon.takeBack(),
     wishPreview: (name, durationMs) => preview(daemon, config.site.currency, name, durationMs),
     subscribe: (listener) =>
       daemon.observe({
@@ -103,6 +106,7 @@ function nowView({ daemon, parts, version }: PageSourceOptions, clock: Clock): N
     wish: settings.wish,
     strategy: settings.strategy,
     limitC: settings.limitC,
+    told: toldView(daemon, nowMs),
     firstRecordMs: view.firstRecordMs,
     nightsClosed: store.sheets().length,
     helpsMost: estimate?.helpsMost ?? null,
@@ -116,6 +120,13 @@ function nowView({ daemon, parts, version }: PageSourceOptions, clock: Clock): N
     cautions: [CAUTION],
     health: health(daemon, parts),
   };
+}
+
+function toldView({ tellings }: Daemon, nowMs: number): NowView['told'] {
+  const open = tellings.open(nowMs);
+  if (open === null) return null;
+  const { what, point, atMs, beforeKwh, afterKwh } = open;
+  return { what, point, atMs, untilMs: atMs + TAKE_BACK_MS, beforeKwh, afterKwh };
 }
 
 function pointRow(

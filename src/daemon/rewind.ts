@@ -6,6 +6,7 @@ import type { Command } from '../commands.ts';
 import type { SiteConfig } from '../config.ts';
 import { createEstimator, type Estimator } from '../estimation/estimator.ts';
 import type { Store } from '../store/store.ts';
+import type { Telling } from './telling.ts';
 import { DAY_MS, HOUR_MS, MINUTE_MS } from '../time.ts';
 
 export interface Checkpoint {
@@ -66,19 +67,21 @@ export interface Replayed {
   readonly checkpoints: readonly Checkpoint[];
 }
 
-/** An estimator that stands at `toMs`, from a checkpoint and what the store holds since then. */
+/** An estimator that stands at `toMs`, from a checkpoint, what the store holds since then, and what was told since. */
 export function replay(
   config: SiteConfig,
   store: Store,
   from: Checkpoint,
   toMs: number,
   seed: number,
+  told: readonly Telling[],
 ): Replayed {
   const estimator = createEstimator(config, { seed, startMs: from.atMs, memory: from.memory });
   const records = store.recordsBetween(from.atMs, toMs);
   const checkpoints: Checkpoint[] = [];
   let keptMs = from.atMs;
   let next = 0;
+  const untold = told.filter(({ atMs }) => atMs > from.atMs);
   let ordered: Command | null = null;
   for (let startMs = from.atMs; startMs < toMs;) {
     // in steps of one order: what was ordered tells whether water flowed where no power point does
@@ -86,9 +89,11 @@ export function replay(
     const endMs = Math.min(
       toMs,
       startMs + REPLAY_STEP_MS,
+      untold[0]?.atMs ?? Number.POSITIVE_INFINITY,
       recordMs > startMs ? recordMs : Number.POSITIVE_INFINITY,
     );
     estimator.advance(endMs, store.readingsBetween(startMs, endMs), ordered);
+    while (untold.length > 0 && untold[0].atMs <= endMs) retell(estimator, untold.splice(0, 1)[0]);
     while (next < records.length && records[next].atMs <= endMs) {
       ordered = records[next].command;
       next += 1;
@@ -100,4 +105,8 @@ export function replay(
     startMs = endMs;
   }
   return { estimator, checkpoints };
+}
+
+function retell(estimator: Estimator, { what, point }: Telling): void {
+  estimator.anchor(what, point ?? undefined);
 }

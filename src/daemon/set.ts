@@ -1,5 +1,5 @@
 /** Settings that come over MQTT; each is refused with a sentence or taken and kept. */
-import type { Strategy, WishName } from '../commands.ts';
+import type { Strategy, Told, WishName } from '../commands.ts';
 import { sentenceOf } from '../errors.ts';
 import type { SettablePath } from '../mqtt/homie.ts';
 import type { Clock } from '../time.ts';
@@ -15,19 +15,23 @@ export function setByOwner(
   try {
     const after = take(daemon, clock, path, value);
     daemon.saveOwner();
-    daemon.soon(after);
+    if (after !== null) daemon.soon(after);
     return null;
   } catch (error) {
     return sentenceOf(error);
   }
 }
 
-function take(daemon: Daemon, clock: Clock, path: SettablePath, value: number | string): () => void {
+function take(daemon: Daemon, clock: Clock, path: SettablePath, value: number | string): (() => void) | null {
   const nowMs = clock.nowMs();
   switch (path) {
     case 'plan/strategy':
       daemon.owner.strategy(value as Strategy);
       return () => daemon.planAfresh();
+    case 'bank/told':
+      if (value === 'nothing') daemon.takeBack();
+      else daemon.tell(value as Told, null);
+      return null;
     case 'dispatch/wish':
       daemon.owner.wish(value as WishName, daemon.owner.settings(nowMs).wishForMs, nowMs);
       return () => daemon.cycle();

@@ -1,5 +1,5 @@
 /** What the records say, as values of the device's properties. Pure. */
-import type { Strategy, WishName } from '../commands.ts';
+import type { Strategy, Told, WishName } from '../commands.ts';
 import type { ClearedCommand } from '../order.ts';
 import type { CycleRecord, PlanRecord } from '../record.ts';
 import { formatDuration, formatInstant } from '../time.ts';
@@ -15,6 +15,8 @@ export interface Settings {
   /** How long the present or the next wish holds. */
   readonly wishForMs: number;
   readonly limitC: number;
+  /** What was told of the bank while it can be taken back; null when nothing was. */
+  readonly told: Told | null;
 }
 
 /** The last closed night. */
@@ -104,6 +106,7 @@ export function settingValues(settings: Settings): Values {
     'dispatch/wish': settings.wish,
     'dispatch/wish-for': settings.wishForMs,
     'comfort/limit': settings.limitC,
+    'bank/told': settings.told ?? 'nothing',
   };
 }
 

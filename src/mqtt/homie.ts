@@ -2,7 +2,7 @@
  * How rimehold describes itself: Homie convention 5.0.0 (homieiot.github.io), one root device for each site.
  * The table of nodes and properties is a contract with owners and hubs.
  */
-import { COMMANDS, PHASES, STRATEGIES, WISHES } from '../commands.ts';
+import { COMMANDS, PHASES, STRATEGIES, TOLD, WISHES } from '../commands.ts';
 import type { SiteConfig } from '../config.ts';
 
 export type Datatype = 'integer' | 'float' | 'enum' | 'string' | 'datetime' | 'duration' | 'json';
@@ -54,6 +54,7 @@ const NODES = {
       'lasts-until': time('Ice lasts until', LASTS_BAND_MS),
       phase: oneOf('Phase', PHASES),
       'heat-leak': float('Heat leak', 'W/K', 2),
+      told: settable(oneOf('Told by the owner', ['nothing', ...TOLD])),
     },
   },
   plan: {
@@ -117,7 +118,8 @@ export interface Node {
   readonly properties: Readonly<Record<string, Property>>;
 }
 
-export type SettablePath = 'plan/strategy' | 'dispatch/wish' | 'dispatch/wish-for' | 'comfort/limit';
+export type SettablePath =
+  'bank/told' | 'plan/strategy' | 'dispatch/wish' | 'dispatch/wish-for' | 'comfort/limit';
 
 /** The nodes of a site; money in its own currency. */
 export function nodesOf(config: SiteConfig): Record<string, Node> {

@@ -3,12 +3,13 @@
  * Schema. Energies kWh, temperatures °C, money in the site's currency, times RFC 3339 UTC, whatever units the site shows.
  */
 import * as z from 'zod';
-import { COMMANDS, MODES, STRATEGIES, WISHES } from '../commands.ts';
+import { COMMANDS, MODES, STRATEGIES, TOLD, WISHES } from '../commands.ts';
 
 export const NIGHT_SHEET_SCHEMA = 'rimehold/night-sheet/1';
 
 const number = z.number();
 const maybe = z.number().nullable();
+const maybeText = z.string().nullable();
 const instant = z.iso.datetime().describe('RFC 3339, UTC');
 const describe = <T extends z.ZodType>(type: T, what: string): T => type.describe(what);
 
@@ -222,6 +223,12 @@ export const nightSheetSchema = z
     forecast: forecast.nullable(),
     commands: z.array(command),
     wishes: z.array(z.strictObject({ from: instant, to: instant, wish: z.enum(WISHES) })),
+    told: z
+      .array(
+        z.strictObject({ at: instant, what: z.enum(TOLD), point: maybeText, takenBack: instant.nullable() }),
+      )
+      .optional()
+      .describe('what the owner said of the bank; left out when nothing was said'),
     interlocks: z.array(z.strictObject({ what: z.string(), minutes: number, times: number, first: instant })),
     probes: z.array(probe),
     learned: z.array(learned),

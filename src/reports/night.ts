@@ -16,7 +16,7 @@ import { displayFor } from './display.ts';
 import { conditionsOf, figuresOf } from './figures.ts';
 import { forecastOf, noonPlan } from './forecast-check.ts';
 import { NIGHT_SHEET_SCHEMA, type NightSheet } from './night-schema.ts';
-import { commandsOf, interlocksOf, wishesOf } from './orders.ts';
+import { commandsOf, interlocksOf, toldOf, wishesOf, type Told } from './orders.ts';
 import { comfortOf, deliveredOf, weatherOf } from './service.ts';
 import { rounded, roundedOrNull, spansOf, type Span } from './spans.ts';
 import { summaryOf } from './summary.ts';
@@ -35,6 +35,8 @@ export interface NightInput {
   /** Probes as the estimator knows them at the end of the night. */
   readonly probes?: readonly ProbeState[];
   readonly learned?: readonly { name: string; value: number; sd: number | null; unit: string }[];
+  /** What the owner told of the bank in this night. */
+  readonly told?: readonly Told[];
   readonly revision: number;
   readonly issuedMs: number;
 }
@@ -86,6 +88,7 @@ export function nightSheet(input: NightInput): NightSheet {
     forecast: forecastOf(noonPlan(input.plans, night), spans, night, before),
     commands: commandsOf(spans),
     wishes: wishesOf(spans),
+    ...toldOf(input.told ?? []),
     interlocks: interlocksOf(spans),
     probes: probesOf(site, spans, probes),
     learned: (input.learned ?? []).map((one) => ({

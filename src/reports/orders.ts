@@ -1,4 +1,5 @@
 /** What was commanded, wished and held back. */
+import type { Told as ToldWhat } from '../commands.ts';
 import { formatInstant } from '../time.ts';
 import type { NightSheet } from './night-schema.ts';
 import { rounded, runsOf, type Span } from './spans.ts';
@@ -17,6 +18,35 @@ export function wishesOf(spans: readonly Span[]): NightSheet['wishes'] {
   return runsOf(spans, (record) => record.wish)
     .filter((run) => run[0].record.wish !== 'none')
     .map((run) => ({ from: from(run), to: to(run), wish: run[0].record.wish }));
+}
+
+/** What the owner said of the bank, and when it was taken back again. */
+export interface Told {
+  readonly atMs: number;
+  readonly what: ToldWhat;
+  readonly point: string | null;
+  readonly takenBackMs: number | null;
+}
+
+/** Only where something was told, so that sheets from before this could be told stand as they were written. */
+export function toldOf(told: readonly Told[]): Pick<NightSheet, 'told'> {
+  if (told.length === 0) return {};
+  return {
+    told: told.map(({ atMs, what, point, takenBackMs }) => ({
+      at: formatInstant(atMs),
+      what,
+      point,
+      takenBack: takenBackMs === null ? null : formatInstant(takenBackMs),
+    })),
+  };
+}
+
+/** Each as a few words for a sheet. */
+export function toldWords(sheet: NightSheet, clock: (instant: string) => string): string[] {
+  return (sheet.told ?? []).map(({ at, what, point, takenBack }) => {
+    const back = takenBack === null ? '' : `, taken back ${clock(takenBack)}`;
+    return `${clock(at)} ${what}${point === null ? '' : ` (${point})`}${back}`;
+  });
 }
 
 /** Interlocks that spoke; their sentences without the figures in them, so that one interlock is one line. */

@@ -4,6 +4,7 @@
  */
 import { displayFor, fixed, type Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
+import { toldWords } from './orders.ts';
 import { escaped, plotsOf } from './plots.ts';
 import { SHEET_STYLE } from './sheet-style.ts';
 
@@ -230,6 +231,7 @@ function notes(sheet: NightSheet, show: Display): string[] {
   return [
     listed('Held back', held),
     listed('Wishes', wishes),
+    listed('Told', toldWords(sheet, show.clock).slice(-3)),
     listed(
       'Silent',
       silent.map((one) => `${one.point} ${Math.round(one.staleMinutes)} min`),

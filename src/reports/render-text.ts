@@ -1,6 +1,7 @@
 /** The night sheet for a terminal, 80 columns. */
 import { displayFor, fixed, type Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
+import { toldWords } from './orders.ts';
 import { bothEnds, heading, noted, rule, table, wrapped } from './paper.ts';
 import { stripOf } from './strip.ts';
 
@@ -240,6 +241,7 @@ function commandLines(sheet: NightSheet, show: Display): string[] {
     ...sheet.wishes.flatMap((one) =>
       noted('wish', `${one.wish} from ${show.clock(one.from)} to ${show.clock(one.to)}`, MARGIN - 4),
     ),
+    ...toldWords(sheet, show.clock).flatMap((words) => noted('told', words, MARGIN - 4)),
     ...sheet.interlocks.flatMap((one) =>
       noted(
         'spoke',

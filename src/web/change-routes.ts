@@ -3,8 +3,9 @@ import { getConnInfo } from '@hono/node-server/conninfo';
 import type { Context, Hono } from 'hono';
 import { getCookie, setCookie } from 'hono/cookie';
 import * as z from 'zod';
-import { STRATEGIES, WISHES } from '../commands.ts';
+import { STRATEGIES, TOLD, WISHES } from '../commands.ts';
 import { RimeholdError } from '../errors.ts';
+import { isPointId, type PointId } from '../points.ts';
 import { formatInstant, parseDuration, DAY_MS, MINUTE_MS } from '../time.ts';
 import { SESSION_SECONDS, createFailureBrake, createPassphraseCheck, createSessions } from './access.ts';
 import { jsonBody, notUnderstood } from './json-body.ts';
@@ -26,6 +27,14 @@ const wishBody = z.union([
   z.strictObject({ name: z.enum(WISHES), for: wishDuration }),
 ]);
 const previewQuery = z.strictObject({ name: z.enum(WISHES), for: wishDuration });
+const pointName = z.custom<PointId>(
+  (value) => typeof value === 'string' && isPointId(value),
+  'expected the name of a point',
+);
+const toldBody = z.union([
+  z.strictObject({ what: z.literal('nothing') }),
+  z.strictObject({ what: z.enum(TOLD), point: pointName.optional() }),
+]);
 const strategyBody = z.strictObject({ strategy: z.enum(STRATEGIES) });
 /** The range of `comfort.limit` in the site file. */
 const limitBody = z.strictObject({ limitC: z.number().min(18).max(32) });
@@ -56,6 +65,13 @@ export function addChangeRoutes(app: Hono, parts: ChangeParts): (cookieHeader: s
       const wish = source.setWish(body.name, 'for' in body ? body.for : 0);
       log.info({ wish: wish.name, until: formatInstant(wish.untilMs) }, 'The owner set a wish on the page.');
       return wish;
+    }),
+  );
+  app.post('/api/told', (c) =>
+    gate.change(c, toldBody, (body) => {
+      if (body.what === 'nothing') source.takeBack();
+      else source.tell(body.what, body.point ?? null);
+      return { what: body.what };
     }),
   );
   app.post('/api/strategy', (c) =>

@@ -2,7 +2,7 @@
  * What the page is served from. The web room knows no other room: whoever builds the daemon hands in one of these.
  * Every figure here is the figure of the record, the plan or the sheet; nothing is worked out again on the way.
  */
-import type { Strategy, Wish, WishName } from '../commands.ts';
+import type { Strategy, Told, Wish, WishName } from '../commands.ts';
 import type { PointId, PointName } from '../points.ts';
 import type { ClockState, CycleRecord, PlanRecord } from '../record.ts';
 import type { Night } from '../time.ts';
@@ -72,6 +72,19 @@ export interface Health {
   readonly store: { readonly state: StoreState; readonly detail: string };
 }
 
+/** What the owner told of the bank last, while it can still be taken back. */
+export interface ToldView {
+  readonly what: Told;
+  /** The probe that was moved; null: any of them may have been. */
+  readonly point: PointId | null;
+  readonly atMs: number;
+  /** Until when it can be taken back. */
+  readonly untilMs: number;
+  /** Ice on hand before and after it was told. */
+  readonly beforeKwh: number;
+  readonly afterKwh: number;
+}
+
 export interface NowView {
   /** The daemon's own clock; it may be a lapse clock. */
   readonly nowMs: number;
@@ -86,6 +99,8 @@ export interface NowView {
   readonly wish: Wish;
   readonly strategy: Strategy;
   readonly limitC: number;
+  /** Null when nothing was told within the hour. */
+  readonly told: ToldView | null;
   /** First record in the store; null before the first one. */
   readonly firstRecordMs: number | null;
   readonly nightsClosed: number;
@@ -159,6 +174,10 @@ export interface WebSource {
   setStrategy(strategy: Strategy): void;
   setLimit(limitC: number): void;
   wishPreview(name: WishName, durationMs: number): WishPreview;
+  /** Throws `usage` for a point that is no probe. */
+  tell(what: Told, point: PointId | null): void;
+  /** Takes back what was told last. Throws `usage` when it is too late. */
+  takeBack(): void;
   /** Calls back on each record, plan and closed night until the returned function is called. */
   subscribe(listener: (event: WebEvent) => void): () => void;
 }

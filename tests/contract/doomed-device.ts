@@ -21,7 +21,7 @@ const client = new BrokerClient(
 const device = new HomieDevice({
   config,
   publisher: client,
-  settings: { strategy: 'planned', wish: 'none', wishForMs: 7_200_000, limitC: 26 },
+  settings: { strategy: 'planned', wish: 'none', wishForMs: 7_200_000, limitC: 26, told: null },
   nowMs: () => NOW_MS,
   onSet: () => null,
 });

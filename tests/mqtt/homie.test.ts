@@ -44,6 +44,7 @@ describe('the description', () => {
       'lasts-until': ['datetime'],
       phase: ['enum'],
       'heat-leak': ['float', 'W/K'],
+      told: ['enum', undefined, true],
     },
     plan: {
       'evening-load': ['float', 'kWh'],
@@ -94,6 +95,7 @@ describe('the description', () => {
     expect(properties.get('plan/strategy')?.format).toBe(
       'planned,storage-priority,chiller-priority,timetable',
     );
+    expect(properties.get('bank/told')?.format).toBe('nothing,empty,full,tank-refilled,probe-moved');
     expect(properties.get('dispatch/wish')?.format).toBe('none,cool-now,save-ice,make-ice,stand-down');
   });
 
@@ -269,7 +271,7 @@ describe('values of the records', () => {
     ...cycleValues(cycleRecord(), { pointsHeard: 4, warmTonightKh: 0.25 }),
     ...planValues(planRecord()),
     ...orderValues(pretendCleared()),
-    ...settingValues({ strategy: 'planned', wish: 'none', wishForMs: 7_200_000, limitC: 26 }),
+    ...settingValues({ strategy: 'planned', wish: 'none', wishForMs: 7_200_000, limitC: 26, told: null }),
     ...nightValues({
       sheet: { date: '2026-07-13' },
       costMoney: 0.83,

@@ -12,7 +12,13 @@ import { observe, until, type Observer } from './observer.ts';
 import { cycleRecord, NOW_MS, planRecord, pretendCleared, siteConfig } from './site.ts';
 
 export const ROOT = 'homie/5/juniper';
-export const SETTINGS: Settings = { strategy: 'planned', wish: 'none', wishForMs: 7_200_000, limitC: 26 };
+export const SETTINGS: Settings = {
+  strategy: 'planned',
+  wish: 'none',
+  wishForMs: 7_200_000,
+  limitC: 26,
+  told: null,
+};
 export const FAST = { firstPauseMs: 50, mostPauseMs: 200, willDelayS: 1 };
 
 /** A client and everything that it was told. */

@@ -73,6 +73,7 @@ export function createFakeSource(initial: FakeState = 'evening'): FakeSource {
       wish,
       strategy,
       limitC,
+      told: null,
       firstRecordMs: blank() ? null : EVENING.startMs - 40 * DAY_MS,
       nightsClosed: blank() ? 0 : 40,
       helpsMost: blank() ? null : 'entering-water',
@@ -114,6 +115,12 @@ export function createFakeSource(initial: FakeState = 'evening'): FakeSource {
     setLimit: (next) => {
       limitC = next;
       changes.push(`limit ${next}`);
+    },
+    tell: (what, point) => {
+      changes.push(`told ${what} ${point}`);
+    },
+    takeBack: () => {
+      changes.push('told nothing');
     },
     wishPreview: (_name, durationMs) => ({
       sentence: `Ice on hand would end ${Math.round(durationMs / HOUR_MS) * 20} minutes earlier.`,

@@ -4,6 +4,7 @@ import { figure, h, type Child } from './dom.ts';
 import { age, plain, type Format } from './format.ts';
 import { Settings } from './settings.ts';
 import { strings } from './strings.ts';
+import { Telling } from './told.ts';
 import type { Tools, View } from './view.ts';
 
 const words = strings.plant;
@@ -13,10 +14,11 @@ export function createPlant(tools: Tools): View {
   const parts = wide(words.parts);
   const learned = wide(words.learned);
   const interlocks = wide(words.interlocks);
+  const telling = new Telling(tools);
   const settings = new Settings(tools);
   const element = h('div', {}, h('h1', {}, words.heading));
-  for (const part of [points, interlocks, learned, parts]) element.append(part.section);
-  element.append(settings.element);
+  for (const part of [points, learned]) element.append(part.section);
+  element.append(telling.element, interlocks.section, parts.section, settings.element);
   return {
     element,
     title: strings.views.plant,
@@ -26,8 +28,9 @@ export function createPlant(tools: Tools): View {
       points.region.replaceChildren(pointTable(now.points, format));
       interlocks.region.replaceChildren(interlockTable(now.interlocks));
       learned.region.replaceChildren(
-        now.learned.length === 0 ? h('p', {}, words.learnedEmpty) : learnedTable(now.learned),
+        now.learned.length === 0 ? h('p', {}, words.learnedEmpty) : learnedTable(now.learned, format),
       );
+      telling.update(shown);
       parts.region.replaceChildren(partTable(now));
       settings.update(shown);
     },
@@ -114,23 +117,30 @@ function errorText({ errorAtIcePointK, errorSdK, errorDateMs }: PointRow, format
   );
 }
 
-function learnedTable(list: readonly LearnedFigure[]): HTMLTableElement {
+function learnedTable(list: readonly LearnedFigure[], format: Format): HTMLTableElement {
   const rows = list.map(({ name, value, sd, unit }) => {
-    const digits = Math.abs(value) >= 100 ? 0 : Math.abs(value) >= 10 ? 1 : 2;
-    return row(name, figure(value, plain(value, digits)), figure(sd, plain(sd, digits)), unit);
+    const known = words.learnedNames[name];
+    const text = (of: number): string =>
+      known?.asPct ? `${plain(100 * of, 0)} %` : unit === '' ? plain(of, 2) : format.value(of, unit);
+    const what = h('span', {}, known?.what ?? name);
+    return row(what, figure(value, text(value)), figure(sd, text(sd)));
   });
-  return table(words.learned, [words.figure, words.value, words.sd, words.unit], [h('tbody', {}, ...rows)]);
+  return table(words.learned, [words.figure, words.value, words.sd], [h('tbody', {}, ...rows)]);
 }
 
-function interlockTable(list: readonly InterlockRow[]): HTMLTableElement {
-  const rows = list.map(({ name, speaks, sentence }) =>
-    row(
-      name,
-      h('span', { class: speaks ? 'caution' : '' }, speaks ? words.speaks : words.quiet),
-      h('span', { class: 'note' }, sentence),
-    ),
+/** Who holds something back, with its sentence; the quiet ones are only named. */
+function interlockTable(list: readonly InterlockRow[]): HTMLElement {
+  const speaking = list.filter(({ speaks }) => speaks);
+  const quiet = list.filter(({ speaks }) => !speaks).map(({ name }) => name);
+  const rows = speaking.map(({ name, sentence }) => row(name, h('span', { class: 'note' }, sentence)));
+  return h(
+    'div',
+    {},
+    rows.length === 0
+      ? h('p', {}, words.noneSpeaks)
+      : table(words.interlocks, [words.speaks, words.says], [h('tbody', {}, ...rows)]),
+    h('p', { class: 'quiet' }, words.quiet(quiet.join(', '))),
   );
-  return table(words.interlocks, [words.interlock, words.state, words.says], [h('tbody', {}, ...rows)]);
 }
 
 function partTable({ health }: NowAnswer): HTMLTableElement {

@@ -1,5 +1,5 @@
 /** Every English word of the page. Sentences are short, plain, and say what to do. */
-import type { Mode, Strategy, WishName } from '../../commands.ts';
+import type { Mode, Strategy, Told, WishName } from '../../commands.ts';
 
 const plural = (count: number, one: string): string => `${count} ${one}${count === 1 ? '' : 's'}`;
 
@@ -12,10 +12,10 @@ const MODE_WORDS: Readonly<Record<Mode, string>> = {
 };
 
 const STRATEGY_WORDS: Readonly<Record<Strategy, string>> = {
-  planned: 'planned: least cost against the forecast',
-  'storage-priority': 'storage priority: ice first, whatever it costs',
-  'chiller-priority': 'chiller priority: ice only when the machine cannot follow',
-  timetable: 'timetable: the cron lines of the site file',
+  planned: 'planned: least cost',
+  'storage-priority': 'storage priority: ice first',
+  'chiller-priority': 'chiller priority: ice last',
+  timetable: 'timetable: your cron lines',
 };
 
 const WISH_WORDS: Readonly<Record<WishName, string>> = {
@@ -34,24 +34,33 @@ const WISH_MEANING: Readonly<Record<WishName, string>> = {
   'stand-down': 'leaves all machines off',
 };
 
+/** What the learned figures mean. Those in % are shares, or changes of a share. */
+const LEARNED_WORDS: Readonly<Record<string, { readonly what: string; readonly asPct?: true }>> = {
+  'heat-leak': { what: 'Heat leak of the bank' },
+  'charging-factor': { what: 'Ice making, of what the site file says', asPct: true },
+  'charging-by-outdoor': { what: 'Its change for each 10 °C outdoors', asPct: true },
+  'charging-by-inventory': { what: 'Its change from empty to full', asPct: true },
+  'machine-power-factor': { what: 'Power of the ice machine, of what the site file says', asPct: true },
+  'melt-conductance': { what: 'Conductance of melting, half full' },
+  'melt-exponent': { what: 'How it falls as ice is spent, exponent' },
+  'freeze-conductance': { what: 'Conductance of freezing' },
+  'pump-flow': { what: 'Flow of the pump' },
+  'coil-conductance': { what: 'Conductance of the fan coil' },
+  'useful-capacity': { what: 'Ice of a full bank' },
+};
+
+const TOLD_WORDS: Readonly<Record<Told, string>> = {
+  empty: 'The bank is empty',
+  full: 'The bank is full',
+  'tank-refilled': 'The tank was refilled',
+  'probe-moved': 'A probe was moved',
+};
+
 export const strings = {
   unknown: 'not known',
   none: '–',
   weekdays: ['Sun', 'Mon', 'Tue', 'Wed', 'Thu', 'Fri', 'Sat'],
-  months: [
-    'January',
-    'February',
-    'March',
-    'April',
-    'May',
-    'June',
-    'July',
-    'August',
-    'September',
-    'October',
-    'November',
-    'December',
-  ],
+  months: 'January February March April May June July August September October November December'.split(' '),
   day: (weekday: string, day: number, month: string) => `${weekday} ${day} ${month}`,
   minutes: (count: number) => plural(count, 'minute'),
   days: (count: number) => plural(count, 'day'),
@@ -193,6 +202,35 @@ export const strings = {
     refused: (sentence: string) => `Not done: ${sentence}`,
   },
 
+  told: {
+    heading: 'What you saw',
+    intro: 'What you see at the bank counts more than any probe. It can be taken back for an hour.',
+    names: TOLD_WORDS,
+    when: {
+      empty: 'you looked, and there is no ice left',
+      full: 'you looked, and it holds all the ice it may',
+      'tank-refilled': 'fresh water stands in it, without ice',
+      'probe-moved': 'it stands elsewhere, or was changed for another',
+    },
+    effect: {
+      empty: 'The estimate goes to no ice at once, with a narrow interval, and the plan is made anew.',
+      full: 'The estimate goes to a full bank at once, with a narrow interval, and the plan is made anew.',
+      'tank-refilled':
+        'The estimate starts again with water of unknown warmth and no ice, and the level at rest is found anew.',
+      'probe-moved': 'What was learned of the errors of this probe is forgotten and learned anew.',
+    },
+    probe: 'Probe',
+    anyProbe: 'any of them',
+    moved: (point: string) => `${point} was moved`,
+    confirm: 'Confirm',
+    change: (before: string, after: string) =>
+      before === after ? '' : ` Ice on hand went from ${before} to ${after}.`,
+    was: (at: string, what: string, change: string, until: string) =>
+      `Told at ${at}: ${what}.${change} Until ${until} it can be taken back; the estimate is then worked out again as if it had never been told.`,
+    takeBack: 'Take back',
+    takenBack: 'Taken back; the estimate is as if it had never been told.',
+  },
+
   notices: {
     label: 'What needs attention',
     lost: (since: string) => [
@@ -323,14 +361,14 @@ export const strings = {
     learnedEmpty: 'Nothing is learned yet; the figures of the site file hold.',
     figure: 'Figure',
     value: 'Value',
-    sd: '±',
-    unit: 'Unit',
+    sd: '± (one sigma)',
+    learnedNames: LEARNED_WORDS,
     interlocks: 'Interlocks',
-    interlock: 'Interlock',
     state: 'State',
     says: 'What it says',
-    speaks: 'holds back',
-    quiet: 'quiet',
+    speaks: 'Holds back',
+    noneSpeaks: 'None holds anything back.',
+    quiet: (names: string) => `Quiet: ${names}.`,
     settings: 'Settings',
     strategy: 'Who decides',
     strategies: STRATEGY_WORDS,
