@@ -31,7 +31,8 @@ export function requestOf(
   };
   if (wish !== null) {
     const command = withWish(withRoom(stages, state, moment, planCommand), wish);
-    return { command, reason: wishReason(wish, config.site.zone), numbers };
+    const wished = `You wished ${WISH_ENDS[wish.name]} until ${localClock(config.site.zone, wish.untilMs)}.`;
+    return { command, reason: wishReason(wish, config.site.zone), wished, numbers };
   }
   const command = withRoom(stages, state, moment, planCommand);
   const changedByRoom = discharges(planCommand) && !discharges(command);
@@ -77,6 +78,15 @@ const WISH_WORDS: Readonly<Record<Wish['name'], string>> = {
   'save-ice': 'saving the ice',
   'make-ice': 'making ice',
   'stand-down': 'standing down',
+};
+
+/** After "You wished", where something holds the wish back. */
+const WISH_ENDS: Readonly<Record<Wish['name'], string>> = {
+  none: '',
+  'cool-now': 'to cool now',
+  'save-ice': 'to save the ice',
+  'make-ice': 'to make ice',
+  'stand-down': 'everything off',
 };
 
 function wishReason(wish: Wish, zone: string): string {

@@ -69,7 +69,7 @@ export const INTERLOCKS: readonly Interlock[] = [
     stops: ['chiller'],
     speaks: (_view, limits, memory) =>
       memory.hotOutdoors
-        ? `It is too hot outdoors for the ice machine (limit ${limits.mostOutdoorC} °C).`
+        ? `It is too hot outdoors for the ice machine (limit ${shownC(limits, limits.mostOutdoorC)}).`
         : null,
   },
   {
@@ -77,7 +77,7 @@ export const INTERLOCKS: readonly Interlock[] = [
     stops: DELIVERY,
     speaks: (_view, limits, memory) =>
       memory.coilCold
-        ? `Leaving water was below ${limits.coilFreezeC} °C: it would freeze the fan coil.`
+        ? `Leaving water was below ${shownC(limits, limits.coilFreezeC)}: it would freeze the fan coil.`
         : null,
   },
   {
@@ -130,6 +130,10 @@ export const INTERLOCKS: readonly Interlock[] = [
         : null,
   },
 ];
+
+/** A limit as the site shows temperatures. */
+const shownC = ({ units }: Limits, c: number): string =>
+  units === 'IP' ? `${Number((c * 1.8 + 32).toFixed(1))} °F` : `${c} °C`;
 
 function isTrue(
   view: PlantView,
@@ -282,7 +286,7 @@ export function clear(
   const held = [chiller.word, pumpWord].filter((word) => word !== undefined);
   const order = {
     command: commandFor(chiller.on, pump),
-    reason: held.length > 0 ? held.map((word) => word.sentence).join(' ') : request.reason,
+    reason: held.length > 0 ? heldReason(request, held) : request.reason,
     issuedMs: view.nowMs,
     expiresMs: view.nowMs + ORDER_LIFE_MS,
     heldBackBy: [...new Set(held.map((word) => word.id))].join(', '),
@@ -290,6 +294,11 @@ export function clear(
     numbers: request.numbers,
   } as unknown as ClearedCommand;
   return { order, memory: { ...seen, ...ordered(seen, view, order) } };
+}
+
+/** What was wished, if anything was, and then what holds it back. */
+function heldReason({ wished }: Request, held: readonly Pick<Spoken, 'sentence'>[]): string {
+  return [...(wished === undefined ? [] : [wished]), ...held.map((word) => word.sentence)].join(' ');
 }
 
 function clearChiller(

@@ -3,8 +3,9 @@ import type { SiteConfig } from '../config.ts';
 import type { DispatchMemory, Limits } from './types.ts';
 
 export function limitsOf(config: SiteConfig): Limits {
-  const { bank, chiller, delivery, power } = config;
+  const { bank, chiller, delivery, power, site } = config;
   return {
+    units: site.units,
     minOnMs: chiller.minOnMs,
     minOffMs: chiller.minOffMs,
     chillerRunningAboveW: chiller.runningAboveW,

@@ -2,11 +2,14 @@
 import type { Command } from '../commands.ts';
 import type { LivePoints } from '../points.ts';
 import type { ClockState } from '../record.ts';
+import type { DisplayUnits } from '../units.ts';
 
 /** What somebody asks for in this slot, and why, in one sentence. */
 export interface Request {
   readonly command: Command;
   readonly reason: string;
+  /** What the owner wished, one sentence, to be told beside whatever holds it back. */
+  readonly wished?: string;
   readonly numbers: Readonly<Record<string, number | null>>;
 }
 
@@ -43,6 +46,8 @@ export interface DispatchMemory {
 
 /** Limits from the site file, in the units of the points. */
 export interface Limits {
+  /** How sentences show temperatures. */
+  readonly units: DisplayUnits;
   readonly minOnMs: number;
   readonly minOffMs: number;
   readonly chillerRunningAboveW: number;

@@ -23,6 +23,7 @@ const limits: Limits = {
   fullLevelMm: 700,
   electrodeMeansFull: true,
   batteryFloorPct: 30,
+  units: 'SI',
   inverterW: 3000,
   houseW: 150,
 };
@@ -307,6 +308,45 @@ describe('memory', () => {
       freshMemory(NOW),
     );
     expect(order.heldBackBy).toBe('minimum off time');
+  });
+
+  it('tells what was wished beside what holds it back, and nothing of it where nothing does', () => {
+    const view: PlantView = {
+      nowMs: NOW,
+      live: live(),
+      inventoryPct: 50,
+      clock: 'set',
+      brokerConnected: true,
+    };
+    const asked = {
+      command: 'charge-now',
+      reason: 'As you wished.',
+      wished: 'You wished to make ice.',
+      numbers: {},
+    } as const;
+    expect(clear(asked, view, limits, freshMemory(NOW)).order.reason).toMatch(
+      /^You wished to make ice\. .*rests/,
+    );
+    const rested = {
+      ...freshMemory(NOW),
+      chillerSinceMs: NOW - 60 * MINUTE,
+      chillerSeenMs: NOW - 60 * MINUTE,
+    };
+    expect(clear(asked, view, limits, rested).order.reason).toBe('As you wished.');
+  });
+
+  it('shows limits in the units of the site', () => {
+    const view: PlantView = {
+      nowMs: NOW,
+      live: { ...live(), 'outdoor-temperature': { value: 44, atMs: NOW } },
+      inventoryPct: 50,
+      clock: 'set',
+      brokerConnected: true,
+    };
+    const asked = { command: 'charge-now', reason: 'asked', numbers: {} } as const;
+    expect(clear(asked, view, { ...limits, units: 'IP' }, freshMemory(NOW)).order.reason).toContain(
+      '109.4 °F',
+    );
   });
 
   const at = (nowMs: number, powerW: number, asked: Command, memory: DispatchMemory) => {
