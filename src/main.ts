@@ -22,7 +22,7 @@ import type { Clock } from './time.ts';
 import { brokerOptions } from './verbs/broker.ts';
 import { secret, siteStore } from './verbs/site.ts';
 import { VERSION } from './verbs/version.ts';
-import { createWebServer, type WebServer } from './web/server.ts';
+import { createWebServer, hostInUrl, type WebServer } from './web/server.ts';
 
 export interface BuildOptions {
   readonly clock: Clock;
@@ -210,7 +210,7 @@ async function startPage(
     log: parts.log,
   });
   const { port } = await server.start();
-  return { server, url: `http://${web.host}:${port}/` };
+  return { server, url: `http://${hostInUrl(web.host)}:${port}/` };
 }
 
 export function createLog(config: SiteConfig): Log {

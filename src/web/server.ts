@@ -147,12 +147,25 @@ function listen(server: Server, { host, port }: WebServerOptions): Promise<numbe
   });
 }
 
+/** An address as it stands in a URL. */
+export const hostInUrl = (host: string): string => (host.includes(':') ? `[${host}]` : host);
+
+/** Why the system refused to listen, in plain words. */
+const LISTEN_WORDS: Readonly<Record<string, string>> = {
+  EADDRNOTAVAIL: 'that this machine does not have that address',
+  ENOTFOUND: 'that no machine is known by that name',
+  EAI_AGAIN: 'that the name cannot be looked up now',
+  EACCES: 'that this user may not take that port (below 1024 it needs rights)',
+  EINVAL: 'that this is no address to listen at',
+};
+
 function listenError(error: NodeJS.ErrnoException, host: string, port: number): Error {
-  const where = `${host}:${port}`;
+  const where = `${hostInUrl(host)}:${port}`;
   if (error.code === 'EADDRINUSE') {
     const sentence = `Expected port ${port} to be free for the page, found another program at ${where}; set web.port.`;
     return new RimeholdError('port-in-use', sentence, { host, port }, { cause: error });
   }
-  const sentence = `Expected to serve the page at ${where}, found ${error.message}; set web.host and web.port.`;
+  const found = LISTEN_WORDS[error.code ?? ''] ?? `that the system refuses (${error.code ?? error.message})`;
+  const sentence = `Expected to serve the page at ${where}, found ${found}; set web.host to 127.0.0.1 for this machine alone or 0.0.0.0 for the house, and web.port to a free one.`;
   return new RimeholdError('config', sentence, { host, port }, { cause: error });
 }

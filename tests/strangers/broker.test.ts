@@ -75,6 +75,13 @@ it('the port of the page is taken', async () => {
   expectFree(folder);
 });
 
+it('the address of the page is not of this machine', async () => {
+  const folder = ownFolder();
+  writeSite(folder, { broker: 'embedded: true\n  listen-port: 0', web: 'host: 192.0.2.1, port: 0' });
+  expectRefusal(await rimehold(folder, 'run'), 2, '192.0.2.1', 'web.host', 'does not have that address');
+  expectFree(folder);
+});
+
 describe.skipIf(!hasMosquitto)('mosquitto', () => {
   it.each(['run', 'check'])('refuses a wrong password: %s', async (verb) => {
     const { url, port } = await broker({

@@ -18,15 +18,17 @@ let source: FakeSource;
 let server: WebServer;
 let port: number;
 
+const options = () => ({
+  host: '127.0.0.1',
+  port: 0,
+  pageDir: join(dir, 'web/page'),
+  passphrase: null,
+  source,
+  log,
+});
+
 async function start(passphrase: string | null): Promise<void> {
-  server = createWebServer({
-    host: '127.0.0.1',
-    port: 0,
-    pageDir: join(dir, 'web/page'),
-    passphrase,
-    source,
-    log,
-  });
+  server = createWebServer({ ...options(), passphrase });
   ({ port } = await server.start());
 }
 
@@ -189,7 +191,15 @@ describe('changing', () => {
     const authorization = `Basic ${Buffer.from(`owner:${PASSPHRASE}`).toString('base64')}`;
     expect((await post('/api/strategy', { strategy: 'timetable' }, { authorization })).status).toBe(200);
     expect((await post('/api/limit', { limitC: 25.5 }, { authorization })).status).toBe(200);
-    expect(source.changes).toEqual(['strategy timetable', 'limit 25.5']);
+    const moved = { what: 'probe-moved', point: 'leaving-water' };
+    expect((await post('/api/told', moved, { authorization })).status).toBe(200);
+    expect((await post('/api/told', { what: 'nothing' }, { authorization })).status).toBe(200);
+    expect(source.changes).toEqual([
+      'strategy timetable',
+      'limit 25.5',
+      'told probe-moved leaving-water',
+      'told nothing',
+    ]);
   });
 
   it.each([
@@ -198,6 +208,8 @@ describe('changing', () => {
     ['/api/wish', { name: 'cool-now', for: 'PT25H' }],
     ['/api/strategy', { strategy: 'guess' }],
     ['/api/limit', { limitC: 45 }],
+    ['/api/told', { what: 'melted' }],
+    ['/api/told', { what: 'probe-moved', point: 'nose' }],
     ['/api/limit', { limitC: 25, also: 1 }],
   ])('refuses %s with a body that it does not know, and says where', async (path, body) => {
     const cookie = await signIn();
@@ -258,28 +270,24 @@ describe('starting and stopping', () => {
     await new Promise((resolve) => other.once('listening', resolve));
     const address = other.address();
     const taken = address !== null && typeof address === 'object' ? address.port : 0;
-    const second = createWebServer({
-      host: '127.0.0.1',
-      port: taken,
-      pageDir: join(dir, 'web/page'),
-      passphrase: null,
-      source,
-      log,
-    });
+    const second = createWebServer({ ...options(), port: taken });
     await expect(second.start()).rejects.toMatchObject({ name: 'RimeholdError', code: 'port-in-use' });
     await second.stop();
     other.close();
   });
 
-  it('says that the page is not built', async () => {
-    const unbuilt = createWebServer({
-      host: '127.0.0.1',
-      port: 0,
-      pageDir: dir,
-      passphrase: null,
-      source,
-      log,
+  it('says in plain words that an address is not of this machine', async () => {
+    // 192.0.2.1 is in TEST-NET-1 (RFC 5737): no machine has it.
+    const elsewhere = createWebServer({ ...options(), host: '192.0.2.1' });
+    await expect(elsewhere.start()).rejects.toMatchObject({
+      code: 'config',
+      message: expect.stringMatching(/192\.0\.2\.1:0.*does not have that address; set web\.host/),
     });
+    await elsewhere.stop();
+  });
+
+  it('says that the page is not built', async () => {
+    const unbuilt = createWebServer({ ...options(), pageDir: dir });
     await expect(unbuilt.start()).rejects.toThrow(RimeholdError);
   });
 
