@@ -40,9 +40,29 @@ describe('the sentence that the page opens with', () => {
     ['Ice until 22:00, 2 h 30 min short.', { lastsUntilMs: NEEDED_MS - 150 * MINUTE_MS }],
     ['Ice until Wed 17:00, 16 h 30 min to spare.', { lastsUntilMs: EVENING.startMs + 29 * HOUR_MS }],
     ['Ice for the whole night.', { lastsUntilMs: null }],
-    ['No ice on hand.', { iceOnHandKwh: 0.02 }],
+    ['No ice on hand.', { iceOnHandKwh: 0.02, iceOnHandLowKwh: 0, iceOnHandHighKwh: 0.04 }],
+    ['Hardly any ice: 1.1 kWh at most.', { iceOnHandKwh: 0.02, iceOnHandLowKwh: 0, iceOnHandHighKwh: 1.1 }],
+    [
+      'Not sure of any ice: there may be none, there may be 6.4 kWh and last until 01:40.',
+      { iceOnHandLowKwh: 0, iceOnHandHighKwh: 6.4 },
+    ],
+    [
+      'Not sure of any ice: there may be none, there may be 6.4 kWh.',
+      { iceOnHandLowKwh: 0, iceOnHandHighKwh: 6.4, lastsUntilMs: null },
+    ],
   ])('%s', (sentence, record) => {
     expect(headline(nowWith(record))).toBe(sentence);
+  });
+
+  it('is no surer than the low end of the plan', () => {
+    const steps = (base.plan?.steps ?? []).map((step) => ({
+      ...step,
+      iceLowKwh: step.startMs >= NEEDED_MS - HOUR_MS ? 0 : 1,
+    }));
+    expect(headline(nowWith({}, { steps }))).toBe('Ice until 01:40, perhaps only until 23:30.');
+    expect(headline(nowWith({ lastsUntilMs: null }, { steps }))).toBe(
+      'Ice for the whole night, perhaps only until 23:30.',
+    );
   });
 
   it('says so when the plan asks for no ice, and when nothing is measured', () => {

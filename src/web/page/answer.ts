@@ -15,10 +15,10 @@ export interface Answer {
 const PUDDLE_KWH = 0.05;
 
 export function answer(now: NowAnswer, nowMs: number, format: Format): Answer {
-  const { record, plan, modeSinceMs } = now;
+  const { record, modeSinceMs } = now;
   if (!record) return { headline: strings.answer.nothing, why: '', uncertain: '' };
   return {
-    headline: headline(record, neededUntilMs(plan, nowMs, now.night.endMs), nowMs, format),
+    headline: headline(now, record, nowMs, format),
     why: why(record, modeSinceMs === null ? null : format.when(modeSinceMs, nowMs)),
     uncertain: uncertain(now, record, format),
   };
@@ -32,13 +32,31 @@ export function neededUntilMs(plan: PlanRecord | null, nowMs: number, nightEndMs
   return step && plan ? step.startMs + plan.slotMs : null;
 }
 
-function headline(record: CycleRecord, neededMs: number | null, nowMs: number, format: Format): string {
+/** When the low end of what may be there runs out before it is needed no more; null when even that lasts. */
+export function leastUntilMs(now: NowAnswer, record: CycleRecord, nowMs: number): number | null {
+  if (!(record.iceOnHandLowKwh > PUDDLE_KWH)) return nowMs;
+  const neededMs = neededUntilMs(now.plan, nowMs, now.night.endMs) ?? nowMs;
+  const dry = now.plan?.steps.find(
+    ({ startMs, iceLowKwh }) => startMs > nowMs && startMs < neededMs && !(iceLowKwh > PUDDLE_KWH),
+  );
+  return dry?.startMs ?? null;
+}
+
+function headline(now: NowAnswer, record: CycleRecord, nowMs: number, format: Format): string {
   const words = strings.answer;
-  if (!(record.iceOnHandKwh > PUDDLE_KWH)) return words.noIce;
-  if (record.lastsUntilMs === null) return words.whole;
-  const until = format.when(record.lastsUntilMs, nowMs);
+  if (!(record.iceOnHandHighKwh > PUDDLE_KWH)) return words.noIce;
+  const range = format.energy(record.iceOnHandHighKwh);
+  if (!(record.iceOnHandKwh > PUDDLE_KWH)) return words.hardlyAny(range);
+  const untilMs = record.lastsUntilMs;
+  const least = leastUntilMs(now, record, nowMs);
+  const until = untilMs === null ? null : format.when(untilMs, nowMs);
+  if (least === nowMs) return words.perhapsNone(until, range);
+  if (least !== null && (untilMs === null || least < untilMs))
+    return words.perhapsOnly(until, format.when(least, nowMs));
+  if (until === null || untilMs === null) return words.whole;
+  const neededMs = neededUntilMs(now.plan, nowMs, now.night.endMs);
   if (neededMs === null) return words.unneeded(until);
-  const spareMs = record.lastsUntilMs - neededMs;
+  const spareMs = untilMs - neededMs;
   return spareMs >= 0 ? words.spare(until, span(spareMs)) : words.short(until, span(spareMs));
 }
 

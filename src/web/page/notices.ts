@@ -42,9 +42,13 @@ function healthNotices({ health }: NowAnswer, nowMs: number, format: Format): No
 
 function heldNotices({ record, interlocks }: NowAnswer): Notice[] {
   if (!record?.heldBackBy) return [];
-  const [what] = strings.notices.held(record.heldBackBy);
-  const lock = interlocks.find(({ name, speaks }) => speaks && name === record.heldBackBy);
-  return [{ kind: `held ${record.heldBackBy}`, what, todo: lock?.sentence ?? '' }];
+  const [what] = strings.notices.held(record.heldBackBy.split(', '));
+  const held = new Set(record.heldBackBy.split(', '));
+  // The compressor's own times have the record's reason for their sentence, which may be all of it.
+  const sentences = interlocks
+    .filter(({ name, speaks, sentence }) => speaks && held.has(name) && !record.reason.includes(sentence))
+    .map(({ sentence }) => sentence);
+  return [{ kind: `held ${record.heldBackBy}`, what, todo: sentences.join(' ') }];
 }
 
 /** Only points that have something to say: all of them silent is one notice, not ten. */

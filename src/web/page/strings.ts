@@ -100,7 +100,11 @@ export const strings = {
   answer: {
     nothing: 'Nothing is measured yet.',
     noIce: 'No ice on hand.',
-    until: (until: string) => `Ice until ${until}.`,
+    hardlyAny: (most: string) => `Hardly any ice: ${most} at most.`,
+    perhapsNone: (until: string | null, most: string) =>
+      `Not sure of any ice: there may be none, there may be ${most}${until ? ` and last until ${until}` : ''}.`,
+    perhapsOnly: (until: string | null, least: string) =>
+      `Ice ${until ? `until ${until}` : 'for the whole night'}, perhaps only until ${least}.`,
     spare: (until: string, spare: string) => `Ice until ${until}, ${spare} to spare.`,
     short: (until: string, short: string) => `Ice until ${until}, ${short} short.`,
     unneeded: (until: string) => `Ice until ${until}; the plan asks for none before noon.`,
@@ -110,7 +114,6 @@ export const strings = {
     giveOrTake: (energy: string) => `Give or take ${energy}`,
     helps: (point: string) => `one more point, ${point}, would narrow that most`,
     evening: (load: string, high: string) => `The evening may need ${load}, ${high} if it turns out warm.`,
-    limitNear: 'The room is above its limit.',
   },
   doing: (mode: Mode) => MODE_WORDS[mode],
   figures: {
@@ -273,7 +276,7 @@ export const strings = {
       `${point} was last heard ${ago} ago.`,
       'Its value is not used. Check its battery and its radio; the estimate goes on without it, less sure.',
     ],
-    held: (name: string) => [`Held back by ${name}.`, ''],
+    held: (names: readonly string[]) => [`Held back by ${names.join(' and by ')}.`],
   },
 
   nights: {
