@@ -8,6 +8,8 @@ import {
   MARGIN_WIDTH,
   PAPER_HEIGHT,
   hours,
+  pieces,
+  windowOf,
   type Geometry,
   type Lane,
   type Scale,
@@ -18,9 +20,11 @@ const words = strings.strip;
 /** Text needs this much room to be written into a step or a band. */
 const ROOM_FOR_FIGURE = 34;
 const ROOM_FOR_WORD = 48;
+/** A step lower than this has its figure above it. */
+const ROOM_UNDER_STEP = 20;
 /** Width that a name at a line's end takes; it is written clear of all of the line in it. */
 const ROOM_FOR_NAME = 70;
-const ROOM_FOR_LONG_WORD = 124;
+const ROOM_FOR_LONG_WORD = 144;
 
 export interface DrawSettings {
   readonly format: Format;
@@ -92,11 +96,18 @@ function ruling(data: StripData, g: Geometry, format: Format): SVGGElement {
     });
     const hole = svg('circle', { cx: x, cy: 7, r: 2.5, class: 'hole' });
     if (!named) return [rule, hole];
-    const anchor = x < 20 ? 'start' : x > g.width - 20 ? 'end' : 'middle';
+    // At the edge of a window a figure would be cut in two: there it stands on the side that is seen.
+    const [fromLeft, toRight] = [x - windowOf(g, x), g.width - x];
+    const anchor = fromLeft < 20 ? 'start' : toRight < 20 ? 'end' : 'middle';
+    const place = fromLeft < 20 ? x + 3 : x;
     return [
       rule,
       hole,
-      svg('text', { x, y: PAPER_HEIGHT - 10, 'text-anchor': anchor, class: 'tick' }, format.clock(atMs)),
+      svg(
+        'text',
+        { x: place, y: PAPER_HEIGHT - 10, 'text-anchor': anchor, class: 'tick' },
+        format.clock(atMs),
+      ),
     ];
   });
   const frames = Object.values(LANES).map(({ top, height }) =>
@@ -111,9 +122,11 @@ function gapMarks({ fromMs, toMs }: Stretch<null>, g: Geometry): SVGElement[] {
   const lanes: Lane[] = [LANES.temperatures, LANES.ice, LANES.runs];
   const blanks = lanes.map(({ top, height }) => svg('rect', { x, y: top, width, height, class: 'blank' }));
   const middle = LANES.ice.top + LANES.ice.height / 2;
-  return width < ROOM_FOR_WORD
-    ? blanks
-    : [...blanks, label(x + width / 2, middle, words.gap, 'middle', 'quiet')];
+  const names = pieces(g, x, x + width).filter((piece) => piece.width >= ROOM_FOR_WORD);
+  return [
+    ...blanks,
+    ...names.map((piece) => label(piece.x + piece.width / 2, middle, words.gap, 'middle', 'quiet')),
+  ];
 }
 
 function label(
@@ -146,8 +159,15 @@ function priceLane(data: StripData, g: Geometry): SVGGElement {
     const [x, y, width] = [g.x(fromMs), g.price(value), g.x(toMs) - g.x(fromMs)];
     const area = svg('rect', { x, y, width, height: Math.max(0, floor - y), class: 'price-area' });
     const top = svg('line', { x1: x, x2: x + width, y1: y, y2: y, class: `line price ${kind}` });
-    if (width < ROOM_FOR_FIGURE) return [area, top];
-    return [area, top, label(x + width / 2, floor - 6, plain(value, 2), 'middle', 'figure')];
+    const baseline = floor - y < ROOM_UNDER_STEP ? y - 5 : floor - 6;
+    const figures = pieces(g, x, x + width).filter((piece) => piece.width >= ROOM_FOR_FIGURE);
+    return [
+      area,
+      top,
+      ...figures.map((piece) =>
+        label(piece.x + piece.width / 2, baseline, plain(value, 2), 'middle', 'figure'),
+      ),
+    ];
   };
   const steps = [
     ...data.price.past.flatMap((stretch) => step(stretch, 'pen')),
@@ -158,6 +178,8 @@ function priceLane(data: StripData, g: Geometry): SVGGElement {
 
 interface EndLabel {
   readonly x: number;
+  /** Whether there is no room left of the end in what is seen with it. */
+  readonly atLeft: boolean;
   /** Top and bottom of the line beside its name. */
   readonly top: number;
   readonly bottom: number;
@@ -168,9 +190,9 @@ interface EndLabel {
 /** Names at line ends, left of the end where there is room: the upper line's above it, the lower line's below. */
 function endLabels(ends: readonly (EndLabel | null)[], lane: Lane): SVGTextElement[] {
   const list = ends.filter((end) => end !== null).toSorted((a, b) => a.top - b.top);
-  return list.map(({ x, top, bottom, text, kind }, i) => {
+  return list.map(({ x, atLeft, top, bottom, text, kind }, i) => {
     const y = i > 0 ? bottom + 16 : Math.max(lane.top + 12, top - 6);
-    return x < ROOM_FOR_NAME ? label(x + 6, y, text, 'start', kind) : label(x - 6, y, text, 'end', kind);
+    return atLeft ? label(x + 6, y, text, 'start', kind) : label(x - 6, y, text, 'end', kind);
   });
 }
 
@@ -185,18 +207,37 @@ function endOf(
   if (!samples || !last) return null;
   const x = g.x(last.atMs);
   const beside = samples.filter(({ atMs }) => x - g.x(atMs) < ROOM_FOR_NAME).map(({ value }) => y(value));
-  return { x, top: Math.min(...beside), bottom: Math.max(...beside), text, kind };
+  const atLeft = x - windowOf(g, x) < ROOM_FOR_NAME;
+  return { x, atLeft, top: Math.min(...beside), bottom: Math.max(...beside), text, kind };
+}
+
+/** Names of a pencilled line in each window that shows enough of it. */
+function pencilLabels(
+  samples: readonly Sample[],
+  g: Geometry,
+  y: Scale,
+  text: string,
+  kind: string,
+  lane: Lane,
+): SVGTextElement[] {
+  const first = samples[0];
+  const last = samples.at(-1);
+  if (!first || !last) return [];
+  return pieces(g, g.x(first.atMs), g.x(last.atMs))
+    .filter(({ width }) => width > ROOM_FOR_NAME)
+    .flatMap(({ x, width }) => {
+      const seen = samples.filter(({ atMs }) => g.x(atMs) >= x && g.x(atMs) <= x + width);
+      return endLabels([endOf(seen, g, y, text, kind)], lane);
+    });
 }
 
 function temperatureLane(data: StripData, g: Geometry, format: Format): SVGGElement {
   const y = g.temperature;
   const limit = data.limit.at(-1);
-  const limitText = limit ? `${words.limit} ${format.temperatureFigure(limit[limit.length - 1].value)}` : '';
   const past = [
     endOf(data.outdoor.at(-1), g, y, words.outdoor, 'ink'),
     endOf(data.room.at(-1), g, y, words.room, 'heat'),
   ];
-  const start = limit?.[0];
   return svg(
     'g',
     {},
@@ -206,17 +247,32 @@ function temperatureLane(data: StripData, g: Geometry, format: Format): SVGGElem
     line(data.outdoorAhead, g.x, y, 'ink pencil'),
     ...data.room.map((run) => line(run, g.x, y, 'heat pen')),
     ...endLabels(past, LANES.temperatures),
-    ...endLabels([endOf(data.outdoorAhead, g, y, words.forecast, 'ink')], LANES.temperatures),
-    start ? label(g.x(start.atMs) + 6, y(start.value) - 5, limitText, 'start', 'heat') : null,
+    ...pencilLabels(data.outdoorAhead, g, y, words.forecast, 'ink', LANES.temperatures),
+    ...limitNames(limit ?? [], g, format),
   );
+}
+
+/** The limit's name and figure, once in each window. */
+function limitNames(limit: readonly Sample[], g: Geometry, format: Format): SVGTextElement[] {
+  const first = limit[0];
+  const last = limit.at(-1);
+  if (!first || !last) return [];
+  return pieces(g, g.x(first.atMs), g.x(last.atMs))
+    .filter(({ width }) => width > ROOM_FOR_NAME)
+    .map(({ x, width }) => {
+      const value = limit.find(({ atMs }) => g.x(atMs) >= x)?.value ?? last.value;
+      const text = `${words.limit} ${format.temperatureFigure(value)}`;
+      // Where the line ends early in the window its name goes on from it, clear of the names of the other lines.
+      const goesOn = width < ROOM_FOR_LONG_WORD && g.window - width > ROOM_FOR_LONG_WORD;
+      return goesOn
+        ? label(x + width + 6, g.temperature(last.value) + 5, text, 'start', 'heat')
+        : label(x + 6, g.temperature(value) - 5, text, 'start', 'heat');
+    });
 }
 
 function iceLane(data: StripData, g: Geometry, reserveKwh: number, format: Format): SVGGElement {
   const { thought } = data;
-  const ahead = [
-    endOf(data.iceAhead, g, g.ice, words.planned, 'ice'),
-    thought && endOf(thought.ice, g, g.ice, words.thoughtAt(format.clock(thought.madeMs)), 'caution'),
-  ];
+  const thoughtText = thought ? words.thoughtAt(format.clock(thought.madeMs)) : '';
   const reserve = g.ice(reserveKwh);
   return svg(
     'g',
@@ -227,7 +283,8 @@ function iceLane(data: StripData, g: Geometry, reserveKwh: number, format: Forma
     ...data.ice.map((run) => line(run, g.x, g.ice, 'ice pen')),
     line(data.iceAhead, g.x, g.ice, 'ice pencil'),
     ...endLabels([endOf(data.ice.at(-1), g, g.ice, words.ice, 'ice')], LANES.ice),
-    ...endLabels(ahead, LANES.ice),
+    ...pencilLabels(data.iceAhead, g, g.ice, words.planned, 'ice', LANES.ice),
+    ...pencilLabels(thought?.ice ?? [], g, g.ice, thoughtText, 'caution', LANES.ice),
   );
 }
 
@@ -256,9 +313,13 @@ function runBand(
   const [x, width] = [g.x(fromMs), g.x(toMs) - g.x(fromMs)];
   const fill = `url(#runs-${value})`;
   const area = svg('rect', { x, y: top + 3, width, height: height - 6, fill, class: `band ${kind}` });
-  if (!named || width < ROOM_FOR_WORD) return [area];
-  const word = width < ROOM_FOR_LONG_WORD ? words.band[value] : strings.doing(value);
-  return [area, label(x + width / 2, top + height / 2 + 5, word, 'middle', 'ice')];
+  if (!named) return [area];
+  const wide = pieces(g, x, x + width).filter((piece) => piece.width >= ROOM_FOR_WORD);
+  const names = wide.map((piece) => {
+    const word = piece.width < ROOM_FOR_LONG_WORD ? words.band[value] : strings.doing(value);
+    return label(piece.x + piece.width / 2, top + height / 2 + 5, word, 'middle', 'ice');
+  });
+  return [area, ...names];
 }
 
 function thoughtMarks({ thought }: StripData, g: Geometry): SVGElement[] {
@@ -270,11 +331,12 @@ function thoughtMarks({ thought }: StripData, g: Geometry): SVGElement[] {
 function nowLine(data: StripData, g: Geometry): SVGGElement | null {
   if (data.nowMs < data.startMs || data.nowMs > data.endMs) return null;
   const x = g.x(data.nowMs);
+  const atRight = x - windowOf(g, x) > g.window - ROOM_FOR_WORD;
   return svg(
     'g',
     { class: 'now' },
     svg('line', { x1: x, x2: x, y1: 22, y2: PAPER_HEIGHT - 28 }),
     svg('path', { d: `M${x - 6} 14h12l-6 10z` }),
-    label(x > g.width - 50 ? x - 10 : x + 10, 24, words.now, x > g.width - 50 ? 'end' : 'start', 'heat'),
+    label(atRight ? x - 10 : x + 10, 24, words.now, atRight ? 'end' : 'start', 'heat'),
   );
 }

@@ -26,6 +26,8 @@ export type Scale = (value: number) => number;
 
 export interface Geometry {
   readonly width: number;
+  /** Width of what is seen at once: six hours of long paper, else all of it. */
+  readonly window: number;
   readonly x: Scale;
   readonly atMs: (x: number) => number;
   readonly price: Scale;
@@ -56,11 +58,12 @@ function extent(values: readonly number[], fallback: readonly [number, number]):
 /** `capacityKwh` null: the scale follows the data. Temperatures and energies are scaled in the viewer's units. */
 export function geometry(
   data: StripData,
-  width: number,
+  window: number,
   capacityKwh: number | null,
   format: Format,
 ): Geometry {
   const length = data.endMs - data.startMs;
+  const width = window < NARROW ? window * WINDOWS_WHEN_NARROW : window;
   const celsius = [...data.outdoor, ...data.room, ...data.limit, data.outdoorAhead]
     .flat()
     .map(({ value }) => value);
@@ -79,6 +82,7 @@ export function geometry(
   const ice = laneScale(LANES.ice, 0, iceHigh);
   return {
     width,
+    window,
     x: (atMs) => ((atMs - data.startMs) / length) * width,
     atMs: (x) => data.startMs + (x / width) * length,
     price: laneScale(LANES.price, Math.min(0, cheap), dear > 0 ? dear * 1.05 : 1),
@@ -87,6 +91,25 @@ export function geometry(
     temperatureTicks: ticks(low, high, 5),
     iceTicks: ticks(0, iceHigh, 5),
   };
+}
+
+/** Left edge of the window that a place on the paper is seen in; the end of the paper belongs to the last one. */
+export function windowOf(g: Geometry, x: number): number {
+  return Math.floor(Math.min(x, g.width - 1) / g.window) * g.window;
+}
+
+/** A stretch of the paper in the pieces that are seen at once. */
+export function pieces(
+  g: Geometry,
+  from: number,
+  to: number,
+): { readonly x: number; readonly width: number }[] {
+  const list: { x: number; width: number }[] = [];
+  for (let left = windowOf(g, from); left < to; left += g.window) {
+    const x = Math.max(from, left);
+    list.push({ x, width: Math.min(to, left + g.window) - x });
+  }
+  return list;
 }
 
 /** Full hours inside a night, by the site's clock. */

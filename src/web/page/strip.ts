@@ -5,7 +5,7 @@ import { read } from './api.ts';
 import { button, h, setText } from './dom.ts';
 import { calendarDay, instant } from './format.ts';
 import { drawMargin, drawPaper } from './strip-draw.ts';
-import { NARROW, WINDOWS_WHEN_NARROW, geometry, type Geometry } from './strip-geometry.ts';
+import { WINDOWS_WHEN_NARROW, geometry, type Geometry } from './strip-geometry.ts';
 import {
   STRIP_FIELDS,
   stripData,
@@ -134,12 +134,7 @@ export class Strip {
     setText(this.#note, this.#records.length === 0 && nowMs >= edges.startMs ? words.empty : this.#message);
     if (!this.#table.hidden) this.#table.replaceChildren(stripTable(data, format, calendarDay(this.#date)));
     if (width === 0) return;
-    const g = geometry(
-      data,
-      width < NARROW ? width * WINDOWS_WHEN_NARROW : width,
-      now.site.capacityKwh,
-      format,
-    );
+    const g = geometry(data, width, now.site.capacityKwh, format);
     this.#drawn = { data, g };
     this.#margin.replaceChildren(drawMargin(g, format));
     const stops = Array.from({ length: WINDOWS_WHEN_NARROW }, (_, i) =>
