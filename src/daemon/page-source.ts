@@ -1,5 +1,4 @@
 /** What the page shows, read from the daemon and its store. No figure is worked out a second time. */
-import type { WishName } from '../commands.ts';
 import type { ActuatorFault } from '../mqtt/actuators.ts';
 import type { PointStatus } from '../mqtt/intake.ts';
 import { bankLimits } from '../plant/bank.ts';
@@ -10,13 +9,14 @@ import { readSheet, type NightSheet } from '../reports/night-schema.ts';
 import { renderCsv } from '../reports/render-csv.ts';
 import { renderHtml } from '../reports/render-html.ts';
 import type { CycleRecord } from '../record.ts';
-import { HOUR_MS, nightAt, type Clock } from '../time.ts';
-import type { InterlockRow, NightRow, NowView, PointRow, WebSource, WishPreview } from '../web/source.ts';
+import { nightAt, type Clock } from '../time.ts';
+import type { InterlockRow, NightRow, NowView, PointRow, WebSource } from '../web/source.ts';
 import { INTERLOCKS } from '../dispatch/interlocks.ts';
 import type { Daemon } from './daemon.ts';
 import { storedSheet } from './nights.ts';
 import type { DaemonParts } from './ports.ts';
 import { TAKE_BACK_MS } from './telling.ts';
+import { wishCost } from './wish-cost.ts';
 
 export interface PageSourceOptions {
   readonly daemon: Daemon;
@@ -25,7 +25,7 @@ export interface PageSourceOptions {
 }
 
 export function pageSource({ daemon, parts, version }: PageSourceOptions): WebSource {
-  const { store, clock, config } = parts;
+  const { store, clock } = parts;
   const sheets = (from: string, to: string): NightSheet[] =>
     store.sheets(from, to).flatMap(({ body }) => readSheet(body) ?? []);
   return {
@@ -64,7 +64,7 @@ export function pageSource({ daemon, parts, version }: PageSourceOptions): WebSo
     },
     tell: (what, point) => daemon.tell(what, point),
     takeBack: () => daemon.takeBack(),
-    wishPreview: (name, durationMs) => preview(daemon, config.site.currency, name, durationMs),
+    wishPreview: (name, durationMs) => wishCost(daemon.view(), name, durationMs),
     subscribe: (listener) =>
       daemon.observe({
         record: (record) => listener({ kind: 'record', record }),
@@ -212,70 +212,6 @@ function health(daemon: Daemon, { store }: DaemonParts): NowView['health'] {
       detail: fault?.message ?? '',
     },
   };
-}
-
-/** What a wish would probably cost, by the worth that the plan gives to ice. */
-function preview(daemon: Daemon, currency: string, name: WishName, durationMs: number): WishPreview {
-  const { last, state } = daemon.view();
-  const hours = durationMs / HOUR_MS;
-  const plan = state.planned?.plan ?? null;
-  const worth = plan?.worthOfIceMoneyPerKwh ?? null;
-  if (name === 'none' || last === null || plan === null || worth === null)
-    return { sentence: 'What it would cost cannot be told yet.', costMoney: null };
-  const price = last.record.priceMoneyPerKwh ?? 0;
-  const { iceKwh, powerKwh, sentence } = wishDraws(daemon, name, hours);
-  const costMoney = powerKwh * price + iceKwh * worth;
-  return {
-    sentence: `${sentence} That is ${costMoney >= 0 ? 'about' : 'a saving of about'} ${Math.abs(costMoney).toFixed(2)} ${currency} against the plan.`,
-    costMoney,
-  };
-}
-
-/** Ice spent (negative: made or kept) and electricity drawn by a wish, beyond what the plan has in the same hours. */
-function wishDraws(
-  daemon: Daemon,
-  name: WishName,
-  hours: number,
-): { iceKwh: number; powerKwh: number; sentence: string } {
-  const { config, last, state } = daemon.view();
-  const nowMs = last?.record.atMs ?? 0;
-  const steps = (state.planned?.plan.steps ?? []).filter(
-    (step) => step.startMs >= nowMs - 1 && step.startMs < nowMs + hours * HOUR_MS,
-  );
-  const share = (test: (command: string) => boolean): number =>
-    steps.length === 0 ? 0 : steps.filter((step) => test(step.command)).length / steps.length;
-  const chargingH = hours * share((command) => command.startsWith('charge'));
-  const coolingH = hours * share((command) => command.endsWith('discharge'));
-  const { iceMakingW, powerW } = config.chiller;
-  const coolW = Math.min(last?.record.iceOnHandKwh ?? 0, (hours - coolingH) * 1.5);
-  switch (name) {
-    case 'cool-now':
-      return {
-        iceKwh: coolW,
-        powerKwh: 0,
-        sentence: `Up to ${coolW.toFixed(1)} kWh of ice more would be spent.`,
-      };
-    case 'save-ice':
-      return {
-        iceKwh: -coolingH,
-        powerKwh: 0,
-        sentence: `The rooms would go without cooling for ${coolingH.toFixed(1)} h that the plan has cooled.`,
-      };
-    case 'make-ice': {
-      const moreH = hours - chargingH;
-      return {
-        iceKwh: (-moreH * iceMakingW) / 1000,
-        powerKwh: (moreH * powerW) / 1000,
-        sentence: `Up to ${((moreH * iceMakingW) / 1000).toFixed(1)} kWh of ice more would be made.`,
-      };
-    }
-    default:
-      return {
-        iceKwh: (chargingH * iceMakingW) / 1000 - coolingH,
-        powerKwh: (-chargingH * powerW) / 1000,
-        sentence: `Everything would rest; ${chargingH.toFixed(1)} h of making ice and ${coolingH.toFixed(1)} h of cooling fall out.`,
-      };
-  }
 }
 
 function nightRow(sheet: NightSheet): NightRow {
