@@ -34,8 +34,10 @@ export interface Change {
 }
 
 /** Nights that a level needs before a change from it can be told, and that a new level needs to be believed. */
-const LEAST_BEFORE = 10;
-const LEAST_AFTER = 4;
+const LEAST_BEFORE = 7;
+const LEAST_AFTER = 3;
+/** Fewer nights than this tell nothing. */
+export const LEAST_NIGHTS = LEAST_BEFORE + LEAST_AFTER;
 /** Older nights no longer speak for the level of now. */
 const WINDOW = 60;
 /** Nights after the telling that still settle date and size. */
@@ -207,10 +209,10 @@ function shrinkage(residual: readonly number[]): number {
   return (1 - rho) / (1 + rho);
 }
 
-/** Values beyond 2.5 sigma of the running median of seven nights are drawn in to there; a lasting step stays. */
+/** Values beyond 2.5 sigma of the running median of five nights are drawn in to there; a lasting step stays. */
 function winsorised(values: readonly number[], basis: Basis, leastNoise: number): number[] {
   const flat = residuals(values, basis);
-  const running = runningMedian(flat, 3);
+  const running = runningMedian(flat, 2);
   const off = flat.map((value, i) => value - running[i]);
   const sigma = Math.max(leastNoise, 1.4826 * median(off.map(Math.abs)));
   const most = CLIP_SIGMAS * sigma;

@@ -10,7 +10,7 @@ import type { CycleRecord } from '../record.ts';
 import { HOUR_MS, MINUTE_MS, type Night } from '../time.ts';
 import { ICE_KG_PER_KWH, iceAtStart } from './account.ts';
 import { powersOf } from './electricity.ts';
-import { carnotAt } from './figures.ts';
+import { carnotAt } from './carnot.ts';
 import type { NightSheet } from './night-schema.ts';
 import { bySlot, energyKwh, meanOver, rounded, spansOf, type Span } from './spans.ts';
 

@@ -1,148 +1,177 @@
 /** The figures of many nights as series that a change can be told from. */
+import { quantile } from '../numerics/quantile.ts';
+import { HOUR_MS, parseInstant } from '../time.ts';
 import type { NightValue } from './change-point.ts';
+import { closuresOf, type Closure } from './leak-closure.ts';
 import type { FigureName, NightSheet } from './night-schema.ts';
 
-export const SERIES = [
-  'leak',
-  'cop',
-  'machine-power',
-  'coolant',
-  'coil',
-  'flow',
-  'pump-power',
-  'load',
-] as const;
+export const SERIES = ['leak', 'machine-power', 'coolant', 'coil', 'flow', 'pump-power', 'airing'] as const;
 export type SeriesName = (typeof SERIES)[number] | `probe ${string}`;
+
+/** How a change is told: in per cent of the figure, in kelvin, or as share of a difference an hour. */
+export type SeriesUnit = '%' | 'K' | 'per h';
 
 export interface Series {
   readonly name: SeriesName;
-  /** Natural logarithm of the figure, or kelvin for a probe's error. */
+  readonly unit: SeriesUnit;
+  /** Values are natural logarithms of the figure. */
   readonly relative: boolean;
   readonly leastNoise: number;
   readonly leastStep: number;
   readonly nights: readonly (NightValue & { readonly date: string })[];
 }
 
-interface Spec {
-  /** `anchored` says whether what the learner holds has been tried on the plant of late. */
-  readonly of: (sheet: NightSheet, anchored: boolean) => number | null;
-  readonly weather: (sheet: NightSheet) => readonly (number | null)[];
-  readonly leastNoise: number;
-  readonly leastStep?: number;
-}
-
 /** A sheet that saw less of its night than this says nothing about the plant. */
 const ENOUGH_PCT = 90;
 /** Steps of less than this are not worth a visit: half of the 15 % that must be found. */
 const LEAST_RELATIVE_STEP = 0.075;
-/** Half of a one-wire thermometer's own tolerance of ±0.5 K (common practice, no source). */
-const LEAST_PROBE_STEP_K = 0.25;
-const PROBE_NOISE_K = 0.15;
+/** More than half of a one-wire thermometer's own tolerance of ±0.5 K (common practice, no source). */
+const LEAST_PROBE_STEP_K = 0.3;
+const PROBE_NOISE_K = 0.03;
+/** A shut cabin follows the outdoor air by some hundredths of the difference an hour; an open door by tenths. */
+const [LEAST_AIRING_STEP, AIRING_NOISE] = [0.1, 0.02];
+/** The leak is told in parts of what the first closures say, as many as these: a bank's own, not the site file's. */
+const USUAL_CLOSURES = 20;
+const LEAST_LEAK_WPERK = 0.2;
+const LEAST_LEAK_STEP = 0.15;
+const LEAK_NOISE = 0.05;
 
-const figure = (name: FigureName) => (sheet: NightSheet) => sheet.figures[name];
-const learned = (sheet: NightSheet, name: string): number | null =>
-  sheet.learned.find((one) => one.name === name)?.value ?? null;
+/** Below this, head-pressure control, where there is one, keeps the condenser warmer than the air asks for (common practice). */
+const COLD_BELOW_C = 10;
+/** Leaving water that is warmer by this than on the colder nights has not met ice everywhere. */
+const BARE_ABOVE_K = 1.5;
 
-/** A bank that ran out tells the learner what it had wrong, all at once: until then its figures are beliefs. */
-const RAN_OUT_KWH = 0.3;
-/** Nights after that for which they are taken for the plant's own. */
-const ANCHORED_NIGHTS = 7;
-
-/** For each sheet, whether the bank ran out on one of the last nights, this one left out: its correction is under way. */
-function anchoredNights(sheets: readonly NightSheet[]): boolean[] {
-  return sheets.map((_, i) =>
-    sheets.slice(Math.max(0, i - ANCHORED_NIGHTS), i).some((sheet) => sheet.ice.lowestKwh < RAN_OUT_KWH),
-  );
+interface Spec {
+  readonly figure: FigureName;
+  /** What the figure goes with; null where it is not known or the night does not count. */
+  readonly weather: (sheet: NightSheet, usualLeavingC: number) => readonly (number | null)[];
+  readonly leastNoise: number;
 }
 
-const outdoor = (sheet: NightSheet): readonly (number | null)[] => [sheet.weather.outdoorMeanC];
-/** Thicker ice and warmer air both make the machine work harder: where the charge began, how far it went, and the air meanwhile. */
-const charge = (sheet: NightSheet): readonly (number | null)[] => [
-  sheet.conditions.chargeOutdoorC,
-  sheet.conditions.chargeInventoryPct,
-  sheet.ice.lowestKwh,
-];
-
-/**
- * Where each figure comes from, the surer source first, and the noise that is always allowed for. A learned figure is
- * preferred where one night alone says little; a figure of the night where the learner is slow.
- */
-const SPECS: Readonly<Record<(typeof SERIES)[number], Spec>> = {
-  leak: {
-    of: (sheet, anchored) => (anchored ? (learned(sheet, 'heat-leak') ?? sheet.figures.heatLeakWPerK) : null),
-    weather: outdoor,
-    leastNoise: 0.03,
-    // Among the learned figures the one that wanders most; what soaks an insulation moves it far more.
-    leastStep: Math.log(1.3),
+const SPECS: Readonly<Record<'machine-power' | 'coolant' | 'coil' | 'flow' | 'pump-power', Spec>> = {
+  // Warmer air makes the machine work harder; so does colder coolant, where it is heard. In cold air it does what its maker thought best.
+  'machine-power': {
+    figure: 'machinePowerAtRatingW',
+    weather: ({ conditions, refill }) => {
+      const mild = conditions.chargeOutdoorC !== null && conditions.chargeOutdoorC > COLD_BELOW_C;
+      const outdoorC = mild ? conditions.chargeOutdoorC : null;
+      return refill === null ? [outdoorC] : [outdoorC, conditions.chargeCoolantC];
+    },
+    leastNoise: 0.01,
   },
-  cop: {
-    of: (sheet, anchored) =>
-      anchored ? (learned(sheet, 'charging-factor') ?? sheet.figures.copAtRating) : null,
-    weather: (sheet) => [sheet.weather.outdoorMeanC, sheet.conditions.chargeInventoryPct],
+  // What drives the heat out of the bank: a machine that takes less leaves its coolant warmer. So does a coil that has melted
+  // bare in places, and one that stands in warm water tells nothing.
+  coolant: {
+    figure: 'coolantBelowZeroK',
+    weather: ({ conditions, refill }, usualLeavingC) => [
+      conditions.chargeOutdoorC,
+      (conditions.dischargeLeavingC ?? 0) > usualLeavingC + BARE_ABOVE_K
+        ? null
+        : (refill?.until.meltedKwh ?? 0),
+    ],
     leastNoise: 0.015,
   },
-  'machine-power': { of: figure('machinePowerAtRatingW'), weather: charge, leastNoise: 0.015 },
-  coolant: {
-    of: figure('coolantBelowZeroK'),
-    weather: (sheet) => [sheet.conditions.chargeOutdoorC, sheet.conditions.chargeInventoryPct],
-    leastNoise: 0.02,
-  },
-  // Below the dew point the coil takes moisture too, and more heat with it: colder water, damper air.
-  coil: {
-    of: figure('coilNtu'),
-    weather: (sheet) => [sheet.conditions.dischargeLeavingC, sheet.conditions.dischargeHumidityPct ?? 0],
-    leastNoise: 0.02,
-  },
-  flow: {
-    of: (sheet, anchored) => sheet.figures.flowLPerMin ?? (anchored ? learned(sheet, 'pump-flow') : null),
-    weather: outdoor,
-    leastNoise: 0.02,
-  },
-  'pump-power': { of: figure('pumpPowerW'), weather: () => [], leastNoise: 0.01 },
-  load: {
-    of: figure('loadPerDegree'),
-    weather: (sheet) => [sheet.weather.outdoorMeanC, rangeOf(sheet)],
-    leastNoise: 0.06,
-  },
+  coil: { figure: 'coilNtu', weather: () => [], leastNoise: 0.015 },
+  flow: { figure: 'flowLPerMin', weather: () => [], leastNoise: 0.02 },
+  'pump-power': { figure: 'pumpPowerW', weather: () => [], leastNoise: 0.01 },
 };
-
-function rangeOf(sheet: NightSheet): number | null {
-  const { outdoorMaxC, outdoorMinC } = sheet.weather;
-  return outdoorMaxC === null || outdoorMinC === null ? null : outdoorMaxC - outdoorMinC;
-}
 
 /** Sheets in order of their nights, those of one plant. */
 export function seriesOf(sheets: readonly NightSheet[]): Series[] {
   const usable = sheets.filter((sheet) => sheet.coveredPct >= ENOUGH_PCT && sheet.clockDoubtfulMinutes < 60);
-  const anchored = anchoredNights(usable);
-  const plant = SERIES.map((name): Series => {
-    const { of, weather, leastNoise, leastStep = LEAST_RELATIVE_STEP } = SPECS[name];
-    return {
-      name,
-      relative: true,
-      leastNoise,
-      leastStep,
-      nights: usable.flatMap((sheet, i) => {
-        const value = of(sheet, anchored[i]);
-        const known = weather(sheet).filter((one) => one !== null);
-        if (value === null || !(value > 0) || known.length < weather(sheet).length) return [];
-        return [{ date: sheet.night.date, value: Math.log(value), weather: known }];
-      }),
-    };
+  const figures = Object.entries(SPECS).map(([name, spec]) =>
+    // oxlint-disable-next-line typescript/no-unsafe-type-assertion -- keys of SPECS
+    figureSeries(name as keyof typeof SPECS, spec, usable),
+  );
+  return [leakSeries(usable), ...figures, airingSeries(usable), ...probeSeries(usable)];
+}
+
+function figureSeries(
+  name: keyof typeof SPECS,
+  { figure, weather, leastNoise }: Spec,
+  sheets: readonly NightSheet[],
+): Series {
+  const leaving = sheets.flatMap((sheet) => sheet.conditions.dischargeLeavingC ?? []);
+  const usualLeavingC = leaving.length === 0 ? 0 : quantile(leaving, 0.25);
+  const nights = sheets.flatMap((sheet) => {
+    const value = sheet.figures[figure];
+    const error = sheet.figureErrors?.[figure] ?? 0;
+    const all = weather(sheet, usualLeavingC);
+    const known = all.filter((one) => one !== null);
+    if (value === null || !(value > 0) || known.length < all.length) return [];
+    // a night that cannot tell the smallest step of interest tells nothing
+    if (!(error / value < LEAST_RELATIVE_STEP)) return [];
+    return [{ date: sheet.night.date, value: Math.log(value), weather: known }];
   });
-  return [...plant, ...probeSeries(usable)];
+  return { name, unit: '%', relative: true, leastNoise, leastStep: LEAST_RELATIVE_STEP, nights };
+}
+
+/** One value for each closure, with the night of its later charge; in parts of the median leak. */
+function leakSeries(sheets: readonly NightSheet[]): Series {
+  const closures = closuresOf(sheets, follows);
+  const usual = usualLeak(closures.slice(0, USUAL_CLOSURES));
+  return {
+    name: 'leak',
+    unit: '%',
+    relative: false,
+    leastNoise: LEAK_NOISE,
+    leastStep: LEAST_LEAK_STEP,
+    nights: closures.map((one) => ({
+      date: one.date,
+      value: one.leakWPerK / usual,
+      weather: [one.meltedWPerK],
+    })),
+  };
+}
+
+/** The leak without what an error of the flow adds to it: the slope by Theil and Sen (Sen 1968, J. Am. Stat. Assoc. 63(324)). */
+function usualLeak(closures: readonly Closure[]): number {
+  if (closures.length === 0) return LEAST_LEAK_WPERK;
+  const slopes = closures.flatMap((a, i) =>
+    closures
+      .slice(i + 1)
+      .filter((b) => Math.abs(b.meltedWPerK - a.meltedWPerK) > 1)
+      .map((b) => (b.leakWPerK - a.leakWPerK) / (b.meltedWPerK - a.meltedWPerK)),
+  );
+  const slope = slopes.length === 0 ? 0 : quantile(slopes, 0.5);
+  const leaks = closures.map((one) => one.leakWPerK - slope * one.meltedWPerK);
+  return Math.max(LEAST_LEAK_WPERK, quantile(leaks, 0.5));
+}
+
+function follows(before: NightSheet, after: NightSheet): boolean {
+  const end = parseInstant(before.night.end) ?? Number.NaN;
+  const start = parseInstant(after.night.start) ?? Number.NaN;
+  return Math.abs(start - end) < HOUR_MS;
+}
+
+function airingSeries(sheets: readonly NightSheet[]): Series {
+  const nights = sheets.flatMap((sheet) => {
+    const value = sheet.figures.roomFollowsPerH ?? null;
+    return value === null ? [] : [{ date: sheet.night.date, value, weather: [] }];
+  });
+  return {
+    name: 'airing',
+    unit: 'per h',
+    relative: false,
+    leastNoise: AIRING_NOISE,
+    leastStep: LEAST_AIRING_STEP,
+    nights,
+  };
 }
 
 function probeSeries(sheets: readonly NightSheet[]): Series[] {
-  const points = new Set(sheets.flatMap((sheet) => sheet.probes.map((probe) => probe.point)));
-  return [...points].map((point) => ({
-    name: `probe ${point}` as const,
-    relative: false,
-    leastNoise: PROBE_NOISE_K,
-    leastStep: LEAST_PROBE_STEP_K,
-    nights: sheets.flatMap((sheet) => {
-      const error = sheet.probes.find((probe) => probe.point === point)?.errorAtIcePointK ?? null;
-      return error === null ? [] : [{ date: sheet.night.date, value: error, weather: [] }];
-    }),
-  }));
+  const checks = sheets.flatMap((sheet) =>
+    (sheet.probeChecks ?? []).map((check) => ({ date: sheet.night.date, ...check })),
+  );
+  return [...new Set(checks.map((check) => check.point))].map((point) => {
+    const own = checks.filter((check) => check.point === point);
+    return {
+      name: `probe ${point}` as const,
+      unit: 'K' as const,
+      relative: false,
+      leastNoise: PROBE_NOISE_K,
+      leastStep: LEAST_PROBE_STEP_K,
+      nights: own.map(({ date, readC }) => ({ date, value: readC, weather: [] })),
+    };
+  });
 }

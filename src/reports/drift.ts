@@ -6,7 +6,7 @@
 import { firstChange, type Change } from './change-point.ts';
 import type { NightSheet } from './night-schema.ts';
 import { rounded } from './spans.ts';
-import { seriesOf, type Series, type SeriesName } from './drift-series.ts';
+import { seriesOf, type Series, type SeriesName, type SeriesUnit } from './drift-series.ts';
 
 export const SIGNATURES = [
   'fouled-coil',
@@ -29,9 +29,9 @@ export interface DriftFinding {
   readonly sinceLatest: string;
   /** Night whose sheet could first tell it. */
   readonly toldOn: string;
-  /** Change of the figure in per cent, or in K for a probe. */
+  /** Change of the figure, in `unit`. */
   readonly change: number;
-  readonly unit: '%' | 'K';
+  readonly unit: SeriesUnit;
   /** Probability that the figure changed at all, 0 to 1. */
   readonly confidence: number;
   /** For the margin of a ledger: "leak up 34 %". */
@@ -43,18 +43,18 @@ export interface DriftFinding {
 
 /** Each part of a plant gives trouble about once a year, no more (common practice, no source). */
 const HAZARD_PER_NIGHT = 1 / 365;
-/** The learner's first weeks are its own change, not the plant's. */
-const LEARNING_NIGHTS = 14;
+/** In its first nights a plant is still being set up. */
+const SETTING_UP_NIGHTS = 3;
 /** Two changes within this many nights of each other belong together. */
 const TOGETHER_NIGHTS = 10;
 
 /** All changes in the nights of one plant that are trouble, or the end of one, in order of the night they set in. */
 export function driftOf(sheets: readonly NightSheet[]): DriftFinding[] {
   const dates = sheets.map((sheet) => sheet.night.date);
-  const changes = seriesOf(sheets.slice(LEARNING_NIGHTS)).flatMap(changesOf);
+  const changes = seriesOf(sheets.slice(SETTING_UP_NIGHTS)).flatMap(changesOf);
   const named = changes
     .filter((one) => !explainedAway(one, changes, dates))
-    .map((one) => ({ ...one, signature: signatureOf(one, changes, dates) }));
+    .map((one) => ({ ...one, signature: signatureOf(one) }));
   return firstOfEach(named, dates)
     .filter((one) => one.signature !== null || named.some((before) => ends(one, before)))
     .map(findingOf)
@@ -105,14 +105,18 @@ function alongside(one: Told, name: SeriesName, all: readonly Told[], dates: rea
 
 /**
  * A change that another one brings about is not told beside it: less flow warms the water more in the coil and is less work for the
- * pump; an ice machine that makes less looks, for some nights, like a bank that leaks more.
+ * pump; a coolant thermometer that lies shows in every figure that is made of it; a machine that makes less than its catalogue looks
+ * like a bank that leaks more; a bank that leaks more warms the water by its walls.
  */
 const BROUGHT_ABOUT_BY: Readonly<Partial<Record<SeriesName, readonly SeriesName[]>>> = {
   coil: ['pump-power'],
   'pump-power': ['flow'],
-  'machine-power': ['cop'],
-  coolant: ['machine-power'],
-  leak: ['cop', 'coolant', 'machine-power'],
+  coolant: ['probe coolant-supply'],
+  'machine-power': ['probe coolant-supply'],
+  leak: ['coolant', 'probe coolant-supply', 'flow'],
+  'probe bank-top': ['leak'],
+  'probe bank-middle': ['leak'],
+  'probe bank-bottom': ['leak'],
 };
 
 function explainedAway(one: Told, all: readonly Told[], dates: readonly string[]): boolean {
@@ -140,15 +144,12 @@ function ends(one: Named, before: Named): boolean {
   return before.signature !== null && before.series.name === one.series.name && before.since < one.since;
 }
 
-function signatureOf(one: Told, all: readonly Told[], dates: readonly string[]): Signature | null {
+function signatureOf(one: Told): Signature | null {
   const { step } = one.change;
   if (one.series.name.startsWith('probe ')) return 'lying-probe';
   switch (one.series.name) {
     case 'leak':
       return step > 0 ? 'wet-insulation' : null;
-    case 'cop':
-      if (step > 0) return null;
-      return alongside(one, 'machine-power', all, dates) > 0 ? 'dirty-condenser' : 'low-refrigerant';
     case 'machine-power':
       return step > 0 ? 'dirty-condenser' : 'low-refrigerant';
     case 'coolant':
@@ -159,7 +160,7 @@ function signatureOf(one: Told, all: readonly Told[], dates: readonly string[]):
     case 'flow':
     case 'pump-power':
       return step < 0 ? 'tired-pump' : null;
-    case 'load':
+    case 'airing':
       return step > 0 ? 'open-door-habit' : null;
     default:
       return null;
@@ -168,17 +169,16 @@ function signatureOf(one: Told, all: readonly Told[], dates: readonly string[]):
 
 const FIGURE_WORDS: Readonly<Record<string, string>> = {
   leak: 'heat leak',
-  cop: 'ice made per kWh',
   'machine-power': 'machine power at its rating',
-  coolant: 'coolant below 0 \u00b0C while charging',
+  coolant: 'depth of the coolant below 0 \u00b0C',
   coil: 'transfer units of the coil',
   flow: 'melt-water flow',
   'pump-power': 'pump power',
-  load: 'load per degree of heat outside',
+  airing: 'share of the outdoor difference that the rooms take on in an hour',
 };
 
 const LOOK: Readonly<Record<Signature, string>> = {
-  'fouled-coil': 'Look at the filter and fins of the fan coil.',
+  'fouled-coil': 'Look at the filter and fins of the fan coil, and at the pair of water thermometers.',
   'dirty-condenser': 'Look at the condenser: dust, leaves, a fan that stands, or air that comes round again.',
   'low-refrigerant':
     'Have a certified person look at the refrigerant charge and at oil traces on the joints.',
@@ -188,12 +188,22 @@ const LOOK: Readonly<Record<Signature, string>> = {
   'open-door-habit': 'Look at doors, windows and vents in the evening, and whether more people are home.',
 };
 
+/** A step in the unit of its series; per cent of a logarithm, of a part, or as it is. */
+function amountOf({ unit, relative }: Series, step: number): number {
+  if (unit !== '%') return rounded(step, 2);
+  return rounded((relative ? Math.exp(step) - 1 : step) * 100, 1);
+}
+
 function findingOf(one: Named): DriftFinding {
   const { series, change, signature } = one;
-  const amount = series.relative ? rounded((Math.exp(change.step) - 1) * 100, 1) : rounded(change.step, 2);
-  const unit = series.relative ? '%' : 'K';
-  const words = FIGURE_WORDS[series.name] ?? `${series.name.replace('probe ', '')} at the ice point`;
-  const size = `${Math.abs(amount).toFixed(unit === '%' ? 0 : 1)} ${unit}`;
+  const { unit } = series;
+  const amount = amountOf(series, change.step);
+  const words =
+    FIGURE_WORDS[series.name] ?? `${series.name.replace('probe ', '')} where it should stand still`;
+  const size =
+    unit === 'per h'
+      ? Math.abs(amount).toFixed(2)
+      : `${Math.abs(amount).toFixed(unit === '%' ? 0 : 1)} ${unit}`;
   const note = `${words} ${change.step > 0 ? 'up' : 'down'} ${size}`;
   const when =
     one.earliest === one.latest

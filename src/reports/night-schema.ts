@@ -126,7 +126,6 @@ const trace = z
   .describe('the night in quarter hours, for the plots');
 
 export const FIGURES = [
-  'heatLeakWPerK',
   'copAtRating',
   'iceMakingAtRatingW',
   'machinePowerAtRatingW',
@@ -136,8 +135,36 @@ export const FIGURES = [
   'flowLPerMin',
   'pumpPowerW',
   'loadPerDegree',
+  'roomFollowsPerH',
 ] as const;
 export type FigureName = (typeof FIGURES)[number];
+
+const heatSums = z.strictObject({
+  madeKwh: describe(number, 'by the catalogue, from coolant and outdoor temperature'),
+  meltedKwh: describe(number, 'by the loop as heard'),
+  surroundKh: describe(number, 'air round the bank above 0 \u00b0C'),
+  unheardHours: describe(number, 'hours of which one of these is not known'),
+});
+
+const refill = z
+  .strictObject({
+    chargeEnd: describe(instant.nullable(), 'of the last charge of an hour and a half or more'),
+    until: describe(heatSums, 'from noon to the end of that charge, or of the night'),
+    after: describe(heatSums, 'from there to noon'),
+    curve: z
+      .array(z.strictObject({ madeKwh: number, belowZeroK: number, outdoorC: number }))
+      .describe(
+        'how the coolant fell as ice was made, quarter hours counted back from the end of the charge; empty if it did not get to ice',
+      ),
+  })
+  .describe('what the leak is read from over several nights: what a charge has to make good');
+
+const probeCheck = z.strictObject({
+  point: z.string(),
+  where: z.enum(['beside-ice', 'coolant-at-rest']),
+  readC: number,
+  errorK: describe(number, 'standard error of that reading'),
+});
 
 export const nightSheetSchema = z
   .strictObject({
@@ -234,10 +261,16 @@ export const nightSheetSchema = z
     learned: z.array(learned),
     figures: z
       .record(z.enum(FIGURES), maybe)
-      .describe('what drift is read from, weather taken out as far as one night allows'),
+      .describe('what drift is read from, led back to reference conditions as far as one night allows'),
+    figureErrors: z
+      .record(z.enum(FIGURES), maybe)
+      .describe('standard error of each, where one night tells it'),
+    refill: refill.nullable(),
+    probeChecks: z.array(probeCheck).describe('readings where nature holds the place, so that they stay'),
     conditions: z
       .strictObject({
         chargeOutdoorC: maybe,
+        chargeCoolantC: maybe,
         chargeInventoryPct: maybe,
         dischargeInventoryPct: maybe,
         dischargeLeavingC: maybe,

@@ -13,10 +13,10 @@ import { likeForLike, type WayRun } from './compare.ts';
 import { coverageOf, probesOf, type ProbeState } from './coverage.ts';
 import { copOf, electricityOf, machineMoney, supplyOf } from './electricity.ts';
 import { displayFor } from './display.ts';
-import { conditionsOf, figuresOf } from './figures.ts';
 import { forecastOf, noonPlan } from './forecast-check.ts';
 import { NIGHT_SHEET_SCHEMA, type NightSheet } from './night-schema.ts';
 import { commandsOf, interlocksOf, toldOf, wishesOf, type Told } from './orders.ts';
+import { plantFigures } from './plant-figures.ts';
 import { comfortOf, deliveredOf, weatherOf } from './service.ts';
 import { rounded, roundedOrNull, spansOf, type Span } from './spans.ts';
 import { summaryOf } from './summary.ts';
@@ -96,8 +96,7 @@ export function nightSheet(input: NightInput): NightSheet {
       value: rounded(one.value, 5),
       sd: roundedOrNull(one.sd, 5),
     })),
-    figures: figuresOf(site, spans),
-    conditions: conditionsOf(spans),
+    ...plantFigures(site, spans, before),
     trace: traceOf(spans, night),
     caution: CAUTION,
   } satisfies Omit<NightSheet, 'summary'>;

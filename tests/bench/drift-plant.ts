@@ -1,12 +1,11 @@
 /**
- * Nights of a simulated Juniper as night sheets, for what drift has to live with: weather, people, probes with their errors, and an
- * estimator that learns. The machine is run by a fixed hand, so that no plan stands between a figure and its cause.
+ * Nights of a simulated Juniper as night sheets, for what drift has to live with: weather, people, probes with their errors. The machine is run
+ * by a fixed hand, so that no plan stands between a figure and its cause; there is no estimator, because drift reads
+ * nothing of it.
  */
 import { readFileSync } from 'node:fs';
-import { expectedHome, limitAt } from '../../src/comfort-hours.ts';
 import type { Command, Mode } from '../../src/commands.ts';
 import type { SiteConfig } from '../../src/config.ts';
-import { createEstimator, type Estimator } from '../../src/estimation/estimator.ts';
 import type { PointId, Reading } from '../../src/points.ts';
 import type { CycleRecord } from '../../src/record.ts';
 import { nightSheet, type NightSheet } from '../../src/reports/night.ts';
@@ -15,7 +14,15 @@ import type { FactorName } from '../../src/simulator/parameters.ts';
 import type { ProbeOverrides } from '../../src/simulator/probe-faults.ts';
 import { seededWeather } from '../../src/simulator/seeded-weather.ts';
 import { createSimulator, type Simulator, type SimulatorOptions } from '../../src/simulator/simulator.ts';
-import { DAY_MS, HOUR_MS, MINUTE_MS, localMinuteOfDay, nightAt, nightOf, localDate } from '../../src/time.ts';
+import {
+  DAY_MS,
+  MINUTE_MS,
+  localMinuteOfDay,
+  nightAt,
+  nightOf,
+  localDate,
+  type Night,
+} from '../../src/time.ts';
 
 const CYCLE_MS = MINUTE_MS;
 /** A summer that the bank is big enough for on most nights: a night that runs out says nothing of the load. */
@@ -43,8 +50,45 @@ export function juniperSite(): SiteConfig {
   return file.config;
 }
 
-/** One sheet a night, from a plant that starts at noon of the first night. */
-export function* simulatedNights(run: PlantRun): Generator<NightSheet> {
+/** The points of an instrument set. */
+export type Heard = ReadonlySet<PointId>;
+
+export interface NightRecords {
+  readonly night: Night;
+  readonly records: readonly CycleRecord[];
+}
+
+/** One sheet a night, as a plant with these points would have written it; null for all that Juniper has. */
+export function* sheetsThrough(nights: Iterable<NightRecords>, heard: Heard | null): Generator<NightSheet> {
+  const site = withPoints(juniperSite(), heard);
+  let before: readonly CycleRecord[] = [];
+  for (const { night, records } of nights) {
+    const seen = heard === null ? records : records.map((record) => asHeard(record, heard));
+    yield nightSheet({
+      site,
+      night,
+      records: [...before, ...seen],
+      plans: [],
+      revision: 1,
+      issuedMs: night.endMs,
+    });
+    before = seen;
+  }
+}
+
+function withPoints(site: SiteConfig, heard: Heard | null): SiteConfig {
+  if (heard === null) return site;
+  const points = Object.entries(site.points).filter(([point]) => heard.has(point.split('/')[0] as PointId));
+  return { ...site, points: Object.fromEntries(points) };
+}
+
+function asHeard(record: CycleRecord, heard: Heard): CycleRecord {
+  const silent = Object.entries(HEARD).filter(([point]) => !heard.has(point as PointId));
+  return { ...record, ...Object.fromEntries(silent.map(([, field]) => [field, null])) };
+}
+
+/** The records of each night, from a plant that starts at noon of the first one. */
+export function* simulatedRecords(run: PlantRun): Generator<NightRecords> {
   const site = juniperSite();
   const { zone, latitudeDeg, longitudeDeg, elevationM } = site.site;
   const first = nightAt(zone, Date.UTC(2026, 5, 10, 12) + (run.seed % 30) * DAY_MS);
@@ -55,7 +99,6 @@ export function* simulatedNights(run: PlantRun): Generator<NightSheet> {
     weather: seededWeather({ seed: run.seed + 1, latitudeDeg, longitudeDeg, elevationM, hotDayC: HOT_DAY_C }),
     start: { iceKg: 80 },
   };
-  const estimator = createEstimator(site, { seed: run.seed, startMs: first.startMs });
   const hand = new Hand(site, createSimulator(options));
   let night = first;
   for (let count = 0; count < run.nights; count++) {
@@ -64,20 +107,9 @@ export function* simulatedNights(run: PlantRun): Generator<NightSheet> {
       hand.openHours = run.fault.openHours ?? null;
     }
     const records: CycleRecord[] = [];
-    for (let atMs = night.startMs + CYCLE_MS; atMs <= night.endMs; atMs += CYCLE_MS) {
-      records.push(hand.cycle(atMs, estimator));
-    }
-    const { learned, probes } = estimator.estimate();
-    yield nightSheet({
-      site,
-      night,
-      records,
-      plans: [],
-      learned,
-      probes,
-      revision: 1,
-      issuedMs: night.endMs,
-    });
+    for (let atMs = night.startMs + CYCLE_MS; atMs <= night.endMs; atMs += CYCLE_MS)
+      records.push(hand.cycle(atMs));
+    yield { night, records };
     night = nightOf(zone, localDate(zone, night.endMs));
   }
 }
@@ -117,6 +149,7 @@ const HEARD: Readonly<Partial<Record<PointId, keyof CycleRecord>>> = {
   'outdoor-temperature': 'outdoorC',
   'room-temperature': 'roomC',
   'room-humidity': 'roomHumidityPct',
+  'outdoor-humidity': 'outdoorHumidityPct',
 };
 
 /** Fills the bank in the small hours, cools by a thermostat in the evening. */
@@ -132,7 +165,7 @@ class Hand {
     this.simulator = simulator;
   }
 
-  cycle(atMs: number, estimator: Estimator): CycleRecord {
+  cycle(atMs: number): CycleRecord {
     const { simulator } = this;
     simulator.switch('chiller', this.command === 'charge-now');
     simulator.switch('pump', this.command === 'discharge');
@@ -141,12 +174,7 @@ class Hand {
     simulator.openWindow(this.openHours !== null && hour >= this.openHours[0] && hour < this.openHours[1]);
     const readings = simulator.advance(atMs);
     for (const reading of readings) this.last.set(reading.point, reading);
-    estimator.advance(
-      atMs,
-      readings.toSorted((a, b) => a.atMs - b.atMs),
-      this.command,
-    );
-    const record = this.record(atMs, estimator);
+    const record = this.record(atMs);
     this.command = this.decide(atMs);
     return record;
   }
@@ -169,38 +197,26 @@ class Hand {
     return { inventoryPct: truth.inventoryPct, roomC: this.last.get('room-temperature')?.value ?? 25 };
   }
 
-  private record(atMs: number, estimator: Estimator): CycleRecord {
-    const estimate = estimator.estimate();
+  private record(atMs: number): CycleRecord {
     const heard = Object.fromEntries(
       Object.entries(HEARD).map(([point, field]) => [field, this.last.get(point)?.value ?? null]),
     );
-    const running = this.command === 'discharge';
-    const roomC = this.last.get('room-temperature')?.value ?? null;
-    const limitC = limitAt(this.site.comfort, this.site.site.zone, atMs);
-    const home = expectedHome(this.site.cabin, this.site.site.zone, atMs);
     return {
       ...EMPTY,
       ...heard,
+      roomC: this.meanRoomC(),
       atMs,
-      iceOnHandKwh: estimate.iceOnHandKwh,
-      iceOnHandLowKwh: estimate.lowKwh,
-      iceOnHandHighKwh: estimate.highKwh,
-      iceKg: estimate.iceKg,
-      inventoryPct: estimate.inventoryPct,
-      phase: estimate.phase,
-      waterC: estimate.waterC,
-      heatLeakWPerK: estimate.heatLeakWPerK,
-      chargingW: estimate.chargingW,
-      dischargingW: estimate.dischargingW,
-      leakW: estimate.leakW,
-      deliveredW: running ? Math.max(0, estimate.dischargingW - this.site.delivery.pumpW) : null,
       requested: this.command,
       command: this.command,
       mode: MODE_OF[this.command],
-      limitC,
-      home,
-      warmKh: home && roomC !== null ? (Math.max(0, roomC - limitC) * CYCLE_MS) / HOUR_MS : 0,
     };
+  }
+
+  private meanRoomC(): number | null {
+    const rooms = [...this.last].flatMap(([point, { value }]) =>
+      point.startsWith('room-temperature') ? [value] : [],
+    );
+    return rooms.length === 0 ? null : rooms.reduce((sum, room) => sum + room, 0) / rooms.length;
   }
 }
 

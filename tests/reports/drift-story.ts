@@ -5,11 +5,11 @@
 import { createRandom, type Random } from '../../src/numerics/random.ts';
 import type { NightSheet } from '../../src/reports/night.ts';
 import type { SeriesName } from '../../src/reports/drift-series.ts';
-import { DAY_MS } from '../../src/time.ts';
+import { DAY_MS, HOUR_MS } from '../../src/time.ts';
 import { toldSheet } from './juniper.ts';
 
 export interface FigureNoise {
-  /** Standard deviation of the logarithm from night to night (K for a probe), and correlation with the night before. */
+  /** Standard deviation of the logarithm from night to night (as it is for probes and airing), and correlation with the night before. */
   readonly sd: number;
   readonly rho: number;
 }
@@ -20,7 +20,7 @@ export interface DriftStory {
   readonly nights: number;
   readonly seed: number;
   readonly noise: Noises;
-  /** Change of the logarithm of a figure (K for a probe) from a night on. */
+  /** Change of the logarithm of a figure (as it is for probes and airing) from a night on. */
   readonly change?: { readonly atNight: number; readonly by: Readonly<Partial<Record<SeriesName, number>>> };
   readonly wildPart?: number;
 }
@@ -53,11 +53,15 @@ export function driftingSheets(story: DriftStory): NightSheet[] {
       const figure = figures.find((one) => one.name === name);
       if (!figure) return null;
       const step = story.change && night >= story.change.atNight ? (story.change.by[name] ?? 0) : 0;
-      return figure.values[night] + step + (name.startsWith('probe ') ? 0 : WEATHER_LEFT * weatherK);
+      return figure.values[night] + step + (plain(name) ? 0 : WEATHER_LEFT * weatherK);
     };
     return sheetOf(base, night, outdoor[night], of);
   });
 }
+
+/** Figures that are no ratios and have no weather in them. */
+const plain = (name: SeriesName): boolean => name.startsWith('probe ') || WEATHERLESS.includes(name);
+const WEATHERLESS: readonly SeriesName[] = ['airing', 'coil', 'flow', 'pump-power', 'leak'];
 
 function sheetOf(
   base: NightSheet,
@@ -71,13 +75,17 @@ function sheetOf(
   };
   return {
     ...base,
-    night: { ...base.night, date: new Date(START_MS + night * DAY_MS).toISOString().slice(0, 10) },
+    night: {
+      ...base.night,
+      date: new Date(START_MS + night * DAY_MS).toISOString().slice(0, 10),
+      start: new Date(START_MS + night * DAY_MS).toISOString(),
+      end: new Date(START_MS + (night + 1) * DAY_MS).toISOString(),
+    },
     weather: { outdoorMeanC: outdoorC, outdoorMaxC: outdoorC + 8, outdoorMinC: outdoorC - 7 },
-    ice: { ...base.ice, lowestKwh: night % 3 === 0 ? 0 : 1 + (night % 7) / 10 },
     conditions: {
       ...base.conditions,
       chargeOutdoorC: outdoorC - 5,
-      chargeInventoryPct: 55 + 3 * Math.sin(night),
+      chargeCoolantC: -10 + 0.4 * Math.sin(night),
       dischargeLeavingC: 4 + Math.sin(0.7 * night),
       dischargeHumidityPct: 48 + 4 * Math.sin(1.3 * night),
     },
@@ -87,16 +95,34 @@ function sheetOf(
       coilNtu: scaled('coil', 0.22),
       flowLPerMin: scaled('flow', 12),
       pumpPowerW: scaled('pump-power', 45),
-      loadPerDegree: scaled('load', 0.08),
-      heatLeakWPerK: null,
-      copAtRating: null,
       coolantBelowZeroK: scaled('coolant', 8),
+      roomFollowsPerH: of('airing') === null ? null : 0.05 + (of('airing') ?? 0),
     },
-    learned: [
-      ...learnedFigure('heat-leak', scaled('leak', 2), 'W/K'),
-      ...learnedFigure('charging-factor', scaled('cop', 1), ''),
-    ],
-    probes: base.probes.map((probe) => ({ ...probe, errorAtIcePointK: of(`probe ${probe.point}`) })),
+    refill: refillOf(scaled('leak', 2), night),
+    probeChecks: PROBES.flatMap((point) => {
+      const error = of(`probe ${point}`);
+      return error === null ? [] : [{ point, where: 'beside-ice' as const, readC: error, errorK: 0 }];
+    }),
+  };
+}
+
+const PROBES = ['bank-bottom', 'coolant-supply'] as const;
+const SURROUND_KH = 24 * 24;
+
+/** A charge that ends where the last one did has made good what was melted and leaked since. */
+function refillOf(leakWPerK: number | null, night: number): NightSheet['refill'] {
+  if (leakWPerK === null) return null;
+  const meltedKwh = 6 + 2 * Math.sin(0.9 * night);
+  return {
+    chargeEnd: new Date(START_MS + night * DAY_MS + 20 * HOUR_MS).toISOString(),
+    until: {
+      madeKwh: meltedKwh + (leakWPerK * SURROUND_KH) / 1000,
+      meltedKwh,
+      surroundKh: SURROUND_KH,
+      unheardHours: 0,
+    },
+    after: { madeKwh: 0, meltedKwh: 0, surroundKh: 0, unheardHours: 0 },
+    curve: [14, 13, 12.5].map((belowZeroK, i) => ({ madeKwh: 0.4 * (i + 0.5), belowZeroK, outdoorC: 18 })),
   };
 }
 
@@ -115,8 +141,4 @@ function noiseSeries(random: Random, nights: number, { sd, rho }: FigureNoise, w
     const wild = random.next() < wildPart ? 4 * random.normal() : 0;
     return sd * (value + wild);
   });
-}
-
-function learnedFigure(name: string, value: number | null, unit: string): NightSheet['learned'] {
-  return value === null ? [] : [{ name, value, sd: null, unit }];
 }
