@@ -13,6 +13,7 @@ import type { IceEstimate } from './estimation/types.ts';
 import type { Forecast } from './forecasting/forecaster.ts';
 import type { PlanInputs } from './planning/build.ts';
 import { explain, explainSimple } from './planning/explain.ts';
+import { followed } from './planning/followed.ts';
 import type { Plan } from './planning/plan.ts';
 import type { PlanProblem } from './planning/problem.ts';
 import { simpleCommand } from './planning/strategies.ts';
@@ -27,10 +28,13 @@ export function decided(
   plan: Plan,
   problem: PlanProblem,
   config: SiteConfig,
-): Pick<Planned, 'strategy' | 'command' | 'reason'> {
-  if (strategy === 'planned') return { strategy, command: plan.command, reason: explain(plan, problem) };
-  const command = simpleCommand(strategy, problem, config.planning.timetable);
-  return { strategy, command, reason: explainSimple(strategy, command, problem) };
+): Pick<Planned, 'plan' | 'strategy' | 'command' | 'reason'> {
+  if (strategy === 'planned')
+    return { plan, strategy, command: plan.command, reason: explain(plan, problem) };
+  const { timetable } = config.planning;
+  const command = simpleCommand(strategy, problem, timetable);
+  const reason = explainSimple(strategy, command, problem);
+  return { plan: followed(strategy, problem, timetable, plan), strategy, command, reason };
 }
 
 export function planInputs(

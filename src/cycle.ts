@@ -82,7 +82,7 @@ export function replan(
       ),
   });
   const prices = config.power.island ? islandPrices(config, moment, forecast, problem, grid) : grid;
-  return { plan, problem, prices, forecast, ...decided(wanted.strategy, plan, problem, config) };
+  return { problem, prices, forecast, ...decided(wanted.strategy, plan, problem, config) };
 }
 
 /** One look at the plant: takes the readings since the last one, gives an order and the record of why. */

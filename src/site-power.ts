@@ -80,6 +80,12 @@ export const batterySection = section('The site battery.', {
   ),
   wear: key('wear', money('kWh'), '0.06 EUR/kWh', 'Cost of wear for each kWh taken out.'),
   mostChargeW: key('most-charge', quantity('power', '10 W', '100 kW'), '2 kW', 'Highest charging power.'),
+  roundTripPct: key(
+    'round-trip',
+    quantity('fraction', '50 %', '100 %'),
+    '90 %',
+    'What comes out of it of what went in, charger and inverter counted.',
+  ),
   mostDischargeW: key(
     'most-discharge',
     quantity('power', '10 W', '100 kW'),
@@ -94,6 +100,19 @@ export const generatorSection = section('A generator.', {
   quietFrom: key('quiet-from', clockTime, '22:00', 'Local time from which it must be silent.'),
   quietTo: key('quiet-to', clockTime, '08:00', 'Local time until which it must be silent.'),
   minRunMs: key('minimum-run', duration('PT0S', 'PT8H'), 'PT30M', 'Shortest run.'),
+  startMoney: key('start-cost', plainNumber(0, 100), 0, 'Money that a start costs in wear and fuel.'),
+  startsBelowPct: key(
+    'starts-below',
+    quantity('fraction', '0 %', '95 %'),
+    '20 %',
+    'Charge of the battery below which it is started.',
+  ),
+  stopsAtPct: key(
+    'stops-at',
+    quantity('fraction', '5 %', '100 %'),
+    '70 %',
+    'Charge of the battery at which it is stopped again.',
+  ),
 });
 
 export const islandSection = section('A site with no utility grid.', {

@@ -4,8 +4,10 @@ import { bankLimits } from '../plant/bank.ts';
 import { iceMachine } from '../plant/ice-machine.ts';
 import { localMinuteOfDay } from '../time.ts';
 import type {
+  BatteryTerms,
   ChillerTerms,
   DemandTerms,
+  GeneratorTerms,
   GridPower,
   IslandPower,
   PlanPlant,
@@ -176,44 +178,58 @@ function demandTerms(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): De
   if (!terms || !demand) return null;
   const zone = config.power.tariff?.zone ?? config.site.zone;
   const allDay = terms.from === terms.to;
+  // A new month starts afresh; its peak is left to the plans made in it.
+  const measured = bySlot((atMs) =>
+    atMs < demand.untilMs && (allDay || within(zone, atMs, terms.from, terms.to)) ? 1 : 0,
+  );
+  const ownPeakW = Math.max(0, ...measured.map((counts, t) => counts * (houseAt(inputs, t) ?? 0)));
   return {
     moneyPerKw: demand.price,
-    peakSoFarW: demand.peakKw * 1000,
-    // A new month starts afresh; its peak is left to the plans made in it.
-    measured: bySlot((atMs) =>
-      atMs < demand.untilMs && (allDay || within(zone, atMs, terms.from, terms.to)) ? 1 : 0,
-    ),
+    // What the house will reach by itself is paid whatever the plant does.
+    peakSoFarW: Math.max(demand.peakKw * 1000, ownPeakW),
+    measured,
     nightsLeft: Math.max(1, Math.ceil((demand.untilMs - nowMs) / DAY_MS)),
   };
 }
 
 function islandPower(config: SiteConfig, inputs: PlanInputs, bySlot: BySlot): IslandPower {
   const island = config.power.island;
-  const battery = island?.battery;
-  const generator = island?.generator;
   return {
     kind: 'island',
     houseW: bySlot((_, t) => houseAt(inputs, t) ?? island?.houseW ?? 0),
-    battery: battery
-      ? {
-          capacityKwh: battery.capacityKwh,
-          floorKwh: (battery.capacityKwh * battery.floorPct) / 100,
-          // A battery that is not heard counts as at its floor: nothing is taken from it.
-          nowKwh: (battery.capacityKwh * (inputs.batteryPct ?? battery.floorPct)) / 100,
-          wearMoneyPerKwh: battery.wear,
-          mostChargeW: battery.mostChargeW,
-          mostDischargeW: battery.mostDischargeW,
-        }
-      : null,
-    generator: generator
-      ? {
-          powerW: generator.powerW,
-          moneyPerKwh: generator.price,
-          quiet: bySlot((atMs) =>
-            within(config.site.zone, atMs, generator.quietFrom, generator.quietTo) ? 1 : 0,
-          ),
-        }
-      : null,
+    battery: batteryTerms(config, inputs.batteryPct),
+    generator: generatorTerms(config, bySlot),
     inverterW: island?.inverterW ?? 0,
+  };
+}
+
+function batteryTerms({ power }: SiteConfig, batteryPct: number | null): BatteryTerms | null {
+  const battery = power.island?.battery;
+  if (!battery) return null;
+  return {
+    capacityKwh: battery.capacityKwh,
+    floorKwh: (battery.capacityKwh * battery.floorPct) / 100,
+    // A battery that is not heard counts as at its floor: nothing is taken from it.
+    nowKwh: (battery.capacityKwh * (batteryPct ?? battery.floorPct)) / 100,
+    wearMoneyPerKwh: battery.wear,
+    mostChargeW: battery.mostChargeW,
+    mostDischargeW: battery.mostDischargeW,
+    roundTrip: battery.roundTripPct / 100,
+  };
+}
+
+function generatorTerms({ site, power }: SiteConfig, bySlot: BySlot): GeneratorTerms | null {
+  const generator = power.island?.generator;
+  if (!generator) return null;
+  const capacityKwh = power.island?.battery?.capacityKwh ?? 0;
+  const quiet = (atMs: number): boolean => within(site.zone, atMs, generator.quietFrom, generator.quietTo);
+  return {
+    powerW: generator.powerW,
+    moneyPerKwh: generator.price,
+    startMoney: generator.startMoney,
+    quiet: bySlot((atMs) => (quiet(atMs) || quiet(atMs + Math.max(0, generator.minRunMs - 1)) ? 1 : 0)),
+    leastRunMs: generator.minRunMs,
+    startsBelowKwh: (capacityKwh * generator.startsBelowPct) / 100,
+    stopsAtKwh: (capacityKwh * generator.stopsAtPct) / 100,
   };
 }

@@ -1,4 +1,5 @@
 /** The best command at every state, and which commands a state allows. */
+import { spanOf } from './problem.ts';
 import { valueAt, type Work } from './work.ts';
 
 /** The best command at every cell of a class at a slot: writes its value. */
@@ -30,18 +31,18 @@ function offer(work: Work, to: number, after: number, money: number): void {
 
 /** State after an idle slot, −1 where the shortest run forbids; a machine that must not run may always stop. */
 export function idleAfter(work: Work, t: number, state: number): number {
-  const { states } = work;
+  const { states, problem } = work;
   const machine = state % states.plain;
-  const after = states.afterIdle[machine];
+  const after = states.afterIdle[spanOf(problem, t) - 1][machine];
   if (after < 0 && work.mayRun[t]) return -1;
   return state - machine + Math.max(0, after);
 }
 
 /** State after a slot with the machine, −1 where the shortest rest or a limit forbids. */
 export function chargeAfter(work: Work, t: number, state: number): number {
-  const { states } = work;
+  const { states, problem } = work;
   const machine = state % states.plain;
-  const after = states.afterCharge[machine];
+  const after = states.afterCharge[spanOf(problem, t) - 1][machine];
   if (after < 0 || !work.mayRun[t] || (machine < states.off && !work.mayStart[t])) return -1;
   const peak = states.count > states.plain && (state >= states.plain || work.peakMoney[t] > 0);
   return after + (peak ? states.plain : 0);

@@ -7,7 +7,7 @@
  * What has been seen is the load and the outdoor temperature over their means, in standard deviations, faded over six
  * hours: yesterday morning says less about tonight than this afternoon does.
  */
-import type { PlanProblem } from './problem.ts';
+import { spanOf, type PlanProblem } from './problem.ts';
 
 export interface Classes {
   /** Most classes in any slot. */
@@ -47,7 +47,7 @@ export function classify(problem: PlanProblem, mostClasses: number): Classes {
     const apart = seen[order[count - 1]] - seen[order[0]] >= TOLD_APART;
     cut(order, weight, apart ? most : 1, of.subarray(t * count, (t + 1) * count));
     shareOut(of, share, weight, t, most);
-    if (t < slots) see(problem, weight, t, fade, seen);
+    for (let k = 0; t < slots && k < spanOf(problem, t); k += 1) see(problem, weight, t, fade, seen);
   }
   return { most, of, share, weight };
 }

@@ -1,6 +1,6 @@
 /** What each command is expected to cost from one state between grid points, and what one scenario makes of it. */
 import { chargeAfter, idleAfter, startMoney } from './choose.ts';
-import { gridMoney, settleIsland } from './electricity.ts';
+import { gridMoney, settleRow } from './electricity.ts';
 import { anyLoad, electricityTogether, readTogether } from './expect.ts';
 import { move, readSlot } from './motion.ts';
 import { slotHours } from './problem.ts';
@@ -38,7 +38,8 @@ export function machineAfter(work: Work, t: number, machine: number, command: nu
 
 function weighOne(work: Work, t: number, c: number, at: Standing, command: number, after: number): number {
   const fixed = command & CHARGES ? startMoney(work, t, at.machine) : 0;
-  if (work.together && !(command & DISCHARGES)) return fixed + weighTogether(work, t, c, at, command, after);
+  if (work.together && !work.island && !(command & DISCHARGES))
+    return fixed + weighTogether(work, t, c, at, command, after);
   const { classes, problem, tables, slot } = work;
   const count = problem.scenarios.length;
   const hours = slotHours(problem, t);
@@ -49,7 +50,7 @@ function weighOne(work: Work, t: number, c: number, at: Standing, command: numbe
     readSlot(problem, problem.scenarios[s], t, hours, tables, slot);
     const paid = moveOne(work, t, at, command);
     const next = valueAt(work, t + 1, classes.of[(t + 1) * count + s], after);
-    money += share * (paid + valueBetween(work, next, work.outcome.iceKwh, work.settled.batteryKwh));
+    money += share * (paid + valueBetween(work, next, work.outcome.iceKwh, work.settled.batteryKwh[0]));
   }
   return money;
 }
@@ -110,13 +111,15 @@ const between = (values: Float64Array, i: number, part: number): number =>
 
 /** Moves and settles; returns the money of the slot, start and demand left out. */
 function moveOne(work: Work, t: number, at: Standing, command: number): number {
-  const { slot, outcome, settled, island, problem } = work;
+  const { slot, outcome, settled, island, problem, moved } = work;
   moveIce(work, t, at.iceKwh, command);
   const other = outcome.unmetKwh * slot.unmetMoneyPerKwh + outcome.cutOff * problem.chiller.startMoney;
-  settled.batteryKwh = 0;
+  settled.batteryKwh[0] = 0;
   if (!island) return other + gridMoney(slot, outcome.energyKwh);
-  settleIsland(island, slot, at.batteryKwh, outcome.energyKwh, settled);
-  return other + settled.money;
+  moved.energyKwh[0] = outcome.energyKwh;
+  moved.machineKwh[0] = outcome.machineKwh;
+  settleRow(island, slot, at.batteryKwh, moved.energyKwh, moved.machineKwh, 1, settled);
+  return other + settled.money[0];
 }
 
 /**
@@ -131,7 +134,7 @@ export function advance(work: Work, t: number, s: number, at: Standing, command:
   readSlot(problem, problem.scenarios[s], t, slotHours(problem, t), tables, slot);
   const money = fixed + moveOne(work, t, at, done);
   at.iceKwh = work.outcome.iceKwh;
-  at.batteryKwh = work.settled.batteryKwh;
+  at.batteryKwh = work.settled.batteryKwh[0];
   at.machine = after;
   return money;
 }

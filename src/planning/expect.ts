@@ -6,7 +6,8 @@
  * served is moved on its own and lands in its own class of the next slot, so the expectation keeps the scenarios' own
  * spread and order in time, while the command is chosen for the class as a whole.
  */
-import { gridMoney, settleIsland, type Island } from './electricity.ts';
+import { levelKwh, levelOf } from './battery-grid.ts';
+import { gridMoney, settleRow, type Island } from './electricity.ts';
 import { move, readSlot } from './motion.ts';
 import { slotHours } from './problem.ts';
 import { valueAt, type Work } from './work.ts';
@@ -16,7 +17,8 @@ export function expectClass(work: Work, t: number, c: number): void {
   const { expected, states, cells } = work;
   expected.fill(0);
   if (work.together) {
-    sweepTogether(work, t, c);
+    if (work.island) sweepGroups(work, work.island, t, c);
+    else sweepTogether(work, t, c);
     if (anyLoad(work, t, c)) sweepMembers(work, t, c, true);
     else expected.copyWithin(states.count * cells, 0, states.count * cells);
   } else {
@@ -50,24 +52,53 @@ function sweepTogether(work: Work, t: number, c: number): void {
   }
 }
 
-/** Mean circumstances of a class; the unmet load is priced member by member. */
-export function readTogether(work: Work, t: number, c: number): void {
+/**
+ * The same on an island, where members must be apart as far as they go to different classes: their sun is the mean of
+ * those that go together, and the battery takes it.
+ */
+function sweepGroups(work: Work, island: Island, t: number, c: number): void {
+  for (let next = 0; next < work.classes.most; next += 1) {
+    const chance = readTogether(work, t, c, next);
+    if (chance === 0) continue;
+    const to = valueAt(work, t + 1, next, 0);
+    for (const charge of [false, true]) {
+      if (charge && !work.mayRun[t]) continue;
+      moveAll(work, t, charge, false);
+      settleAndAdd(work, island, chance, charge, 0, to);
+    }
+  }
+}
+
+/**
+ * Mean circumstances of a class, or of those of it that go to class `next`; the unmet load is priced member by member.
+ * Returns their part of the class.
+ */
+export function readTogether(work: Work, t: number, c: number, next: number | null = null): number {
   const { classes, problem, slot, tables } = work;
   const count = problem.scenarios.length;
   const hours = slotHours(problem, t);
+  let chance = 0;
   let row = 0;
   let unmet = 0;
+  let panelW = 0;
   for (let s = 0; s < count; s += 1) {
     if (classes.of[t * count + s] !== c) continue;
+    if (next !== null && classes.of[(t + 1) * count + s] !== next) continue;
     const share = classes.share[t * count + s];
     readSlot(problem, problem.scenarios[s], t, hours, tables, slot);
+    chance += share;
     row += share * (slot.outdoorRow + slot.outdoorPart);
     unmet += share * slot.loadW * slot.unmetMoneyPerKwh;
+    panelW += share * slot.panelW;
   }
+  if (chance === 0) return 0;
+  row /= chance;
   slot.outdoorRow = Math.min(Math.floor(row), tables.outdoorRows - 2);
   slot.outdoorPart = row - slot.outdoorRow;
-  slot.loadW = unmet;
+  slot.panelW = panelW / chance;
+  slot.loadW = unmet / chance;
   slot.unmetMoneyPerKwh = 1;
+  return chance;
 }
 
 function mixValues(work: Work, t: number, c: number): void {
@@ -120,8 +151,11 @@ function sweepMembers(work: Work, t: number, c: number, discharge: boolean): voi
     for (const charge of [false, true]) {
       if (charge && !work.mayRun[t]) continue;
       moveAll(work, t, charge, discharge);
-      if (work.island) settleAll(work, work.island);
-      else payAll(work);
+      if (work.island) {
+        settleAndAdd(work, work.island, share, charge, shift, next);
+        continue;
+      }
+      payAll(work);
       add(work, share, charge, shift, work.value, next);
     }
   }
@@ -141,14 +175,12 @@ function add(
   value: Float64Array,
   next: number,
 ): void {
-  const { states, cells, island } = work;
+  const { states, cells } = work;
   const first = charge ? states.off : 0;
   const last = charge ? states.plain : states.off;
   for (let peak = 0; peak < states.count; peak += states.plain) {
-    for (let m = peak + first; m < peak + last; m += 1) {
-      if (island) addIsland(work, share, value, next + m * cells, shift + m * cells);
-      else addGrid(work, share, value, next + m * cells, shift + m * cells);
-    }
+    for (let m = peak + first; m < peak + last; m += 1)
+      addGrid(work, share, value, next + m * cells, shift + m * cells);
   }
 }
 
@@ -175,6 +207,7 @@ function moveAll(work: Work, t: number, charge: boolean, discharge: boolean): vo
     moved.low[i] = low;
     moved.part[i] = place - low;
     moved.energyKwh[i] = outcome.energyKwh;
+    moved.machineKwh[i] = outcome.machineKwh;
     moved.money[i] = outcome.unmetKwh * price + outcome.cutOff * startMoney;
   }
 }
@@ -188,37 +221,42 @@ function addGrid(work: Work, share: number, value: Float64Array, from: number, t
   }
 }
 
-/** Settles what was moved at every battery level: corner cell and parts of the bilinear value, and the money. */
-function settleAll(work: Work, island: Island): void {
-  const { moved, settled, slot, tables, onBattery, batteryPoints, batteryStepKwh } = work;
+/**
+ * Settles what was moved at every battery level, and adds it for the machine states `first` to below `last`. One pass:
+ * the corners of the bilinear value are the same for all of them.
+ */
+function settleAndAdd(
+  work: Work,
+  island: Island,
+  share: number,
+  charge: boolean,
+  shift: number,
+  next: number,
+): void {
+  const { moved, settled, slot, tables, battery, cells, expected, value, states } = work;
+  const { low, part, energyKwh, machineKwh, money } = moved;
   const { points } = tables;
-  for (let b = 0; b < batteryPoints; b += 1) {
-    for (let i = 0; i < points; i += 1) {
-      settleIsland(island, slot, b * batteryStepKwh, moved.energyKwh[i], settled);
-      const place = batteryPoints > 1 ? settled.batteryKwh / batteryStepKwh : 0;
-      const low = Math.max(0, Math.min(Math.floor(place), batteryPoints - 2));
-      const cell = b * points + i;
-      onBattery.corner[cell] = low * points + moved.low[i];
-      onBattery.part[cell] = place - low;
-      onBattery.money[cell] = moved.money[i] + settled.money;
-    }
-  }
-}
-
-function addIsland(work: Work, share: number, value: Float64Array, from: number, to: number): void {
-  const { expected, moved, onBattery, tables, cells } = work;
-  const { corner, part, money } = onBattery;
-  const { points } = tables;
+  const first = (charge ? states.off : 0) * cells;
+  const end = (charge ? states.plain : states.off) * cells;
+  const most = Math.max(0, battery.points - 2);
   // Without a battery there is no level above; its part is nothing then.
-  const up = work.batteryPoints > 1 ? points : 0;
-  for (let base = 0; base < cells; base += points) {
+  const up = battery.points > 1 ? points : 0;
+  for (let b = 0; b < battery.points; b += 1) {
+    settleRow(island, slot, levelKwh(battery, b), energyKwh, machineKwh, points, settled);
     for (let i = 0; i < points; i += 1) {
-      const cell = base + i;
-      const k = from + corner[cell];
-      const icePart = moved.part[i];
-      const lower = value[k] + icePart * (value[k + 1] - value[k]);
-      const upper = value[k + up] + icePart * (value[k + up + 1] - value[k + up]);
-      expected[to + cell] += share * (money[cell] + lower + part[cell] * (upper - lower));
+      const place = levelOf(battery, settled.batteryKwh[i]);
+      const level = place >= most ? most : Math.floor(place);
+      const above = place - level;
+      const paid = money[i] + settled.money[i];
+      const icePart = part[i];
+      const corner = next + level * points + low[i];
+      const to = shift + b * points + i;
+      for (let m = first; m < end; m += cells) {
+        const k = corner + m;
+        const lower = value[k] + icePart * (value[k + 1] - value[k]);
+        const upper = value[k + up] + icePart * (value[k + up + 1] - value[k + up]);
+        expected[to + m] += share * (paid + lower + above * (upper - lower));
+      }
     }
   }
 }

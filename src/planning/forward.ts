@@ -1,4 +1,4 @@
-/** Lives the policy forward through every scenario, for what the plan will probably look like. */
+/** Lives commands forward through every scenario, for what the plan will probably look like. */
 import { advance, cheapest, weigh, type Standing } from './evaluate.ts';
 import { stateNow } from './machine-states.ts';
 import { slotHours, type PlanProblem } from './problem.ts';
@@ -26,25 +26,35 @@ export function standingNow(work: Work): Standing {
 const clampIce = (problem: PlanProblem, iceKwh: number): number =>
   Math.min(Math.max(iceKwh, 0), problem.plant.capacityKwh);
 
-/**
- * Each scenario starts from another quantile of the estimate, so that the band holds what is not known of the ice as
- * well as of the weather. The first command is the same for all: it is the one that is given.
- */
+/** Lives the best policy. The first command is the same for all scenarios: it is the one that is given. */
 export function liveForward(work: Work, firstCommand: number): Paths {
+  const { classes, problem } = work;
+  const count = problem.scenarios.length;
+  const money = new Float64Array(4);
+  return live(work, (t, s, at) => {
+    if (t === 0) return firstCommand;
+    weigh(work, t, classes.of[t * count + s], at, money);
+    return cheapest(money, false);
+  });
+}
+
+/**
+ * Lives every scenario under the commands that are chosen for it. Each starts from another quantile of the estimate, so
+ * that the band holds what is not known of the ice as well as of the weather.
+ */
+export function live(work: Work, choose: (t: number, s: number, at: Standing) => number): Paths {
   const { problem, classes } = work;
   const { slots, scenarios } = problem;
   const count = scenarios.length;
   const iceKwh = new Float64Array((slots + 1) * count);
   const command = new Uint8Array(slots * count);
-  const money = new Float64Array(4);
   let expectedMoney = 0;
   let expectedWarmKh = 0;
   for (let s = 0; s < count; s += 1) {
     const at = { ...standingNow(work), iceKwh: iceQuantile(problem, spreadOut(s)) };
     for (let t = 0; t < slots; t += 1) {
       iceKwh[t * count + s] = at.iceKwh;
-      if (t > 0) weigh(work, t, classes.of[t * count + s], at, money);
-      const chosen = t === 0 ? firstCommand : cheapest(money, false);
+      const chosen = choose(t, s, at);
       command[t * count + s] = chosen;
       const paid = advance(work, t, s, at, chosen);
       const warmKh = work.outcome.unmetKwh * scenarios[s].warmKhPerKwh;

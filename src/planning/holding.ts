@@ -1,5 +1,5 @@
 /** What it is worth to have, or for once not to have, ice in the bank at certain hours. */
-import type { PlanProblem } from './problem.ts';
+import { slotStartMs, spanOf, type PlanProblem } from './problem.ts';
 import type { Tables } from './tables.ts';
 
 /** The chance of an evening outside all scenarios: one in one more than there are, as for the next draw of a sample. */
@@ -18,11 +18,12 @@ export function holdingMoney(problem: PlanProblem, tables: Tables): Float64Array
   const wantedKwh = Math.hypot(reserveKwh, Math.max(0, iceKwh - iceLowKwh));
   if (!(wantedKwh > 0)) return holding;
   const { loadW, warmKhPerKwh } = meanOf(problem);
-  const days = Math.max(1, (slots * problem.slotMs) / 86_400_000);
-  const total = loadW.reduce((sum, w) => sum + w, 0);
+  const slotsInAll = loadW.reduce((sum, _, t) => sum + spanOf(problem, t), 0);
+  const days = Math.max(1, (slotsInAll * problem.slotMs) / 86_400_000);
+  const total = loadW.reduce((sum, w, t) => sum + w * spanOf(problem, t), 0);
   const perKwh = outsideChance(scenarios.length) * warmHourMoney * warmKhPerKwh;
   for (let t = 0; t < slots; t += 1) {
-    const share = total > 0 ? (loadW[t] * days) / total : 0;
+    const share = total > 0 ? (loadW[t] * spanOf(problem, t) * days) / total : 0;
     for (let i = 0; i < tables.points; i += 1) {
       holding[t * tables.points + i] = share * perKwh * Math.max(0, wantedKwh - i * tables.stepKwh);
     }
@@ -53,10 +54,11 @@ const EMPTY_PCT = 1;
  * Melting the bank out now and then also evens the block (common practice, no source).
  */
 export function meltOutSlot(problem: PlanProblem): number | null {
-  const { iceHighKwh, iceLowKwh, plant, slots, slotMs } = problem;
+  const { iceHighKwh, iceLowKwh, plant, slots, nowMs } = problem;
   if (!((iceHighKwh - iceLowKwh) / 2 > UNSURE * plant.capacityKwh)) return null;
   const { loadW } = meanOf(problem);
-  const daySlots = Math.min(slots, Math.round(86_400_000 / slotMs));
+  let daySlots = 0;
+  while (daySlots < slots && slotStartMs(problem, daySlots) - nowMs < 86_400_000) daySlots += 1;
   let last = -1;
   for (let t = 0; t < daySlots; t += 1) {
     if (last >= 0 && loadW[t] <= 0 && loadW[t - 1] > 0) break;

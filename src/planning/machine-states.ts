@@ -11,9 +11,9 @@ export interface MachineStates {
   readonly plain: number;
   /** `plain`, or twice that with a demand charge. */
   readonly count: number;
-  /** State after a slot without and with the machine, peak not counted; −1 where it may not. */
-  readonly afterIdle: Int8Array;
-  readonly afterCharge: Int8Array;
+  /** State after a step of one slot, of two, without and with the machine, peak not counted; −1 where it may not. */
+  readonly afterIdle: readonly Int8Array[];
+  readonly afterCharge: readonly Int8Array[];
 }
 
 export function machineStates(chiller: ChillerTerms, slotMs: number, demand: boolean): MachineStates {
@@ -26,8 +26,17 @@ export function machineStates(chiller: ChillerTerms, slotMs: number, demand: boo
   for (let k = 0; k < on; k += 1) afterCharge[off + k] = off + Math.min(k + 1, on - 1);
   afterIdle[plain - 1] = 0;
   afterCharge[off - 1] = off;
-  return { off, on, plain, count: plain * (demand ? 2 : 1), afterIdle, afterCharge };
+  return {
+    off,
+    on,
+    plain,
+    count: plain * (demand ? 2 : 1),
+    afterIdle: [afterIdle, twice(afterIdle)],
+    afterCharge: [afterCharge, twice(afterCharge)],
+  };
 }
+
+const twice = (after: Int8Array): Int8Array => after.map((state) => (state < 0 ? -1 : after[state]));
 
 /** The state that the machine is in now. An unknown past counts as long enough. */
 export function stateNow(problem: PlanProblem, states: MachineStates): number {

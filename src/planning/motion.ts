@@ -40,8 +40,9 @@ export interface Plant {
 /** What a slot under a command comes to; written anew by every call. */
 export interface Outcome {
   iceKwh: number;
-  /** Electricity of the cooling plant. */
+  /** Electricity of the cooling plant, and the ice machine's part of it. */
   energyKwh: number;
+  machineKwh: number;
   unmetKwh: number;
   deliveredKwh: number;
   /** Share of the slot that the machine was kept from running by a full bank or by hot outdoor air. */
@@ -51,6 +52,7 @@ export interface Outcome {
 export const newOutcome = (): Outcome => ({
   iceKwh: 0,
   energyKwh: 0,
+  machineKwh: 0,
   unmetKwh: 0,
   deliveredKwh: 0,
   cutOff: 0,
@@ -94,7 +96,8 @@ export function move(
   const runs = charge && slot.mayCharge;
   let ice = Math.min(plant.capacityKwh, Math.max(0, iceKwh - leakW * kWh));
   let made = runs ? makingW * kWh : 0;
-  let energy = runs ? powerW * kWh : 0;
+  let machine = runs ? powerW * kWh : 0;
+  let pumping = 0;
   const needKwh = (runs && slot.heated ? slot.loadW + makingW + powerW : slot.loadW) * kWh;
   let net = 0;
   if (discharge && needKwh > 0) {
@@ -107,19 +110,20 @@ export function move(
       if (duty * drawKwh > available) duty = available / drawKwh;
       net = duty * mostKwh;
       ice -= duty * drawKwh;
-      energy += duty * (plant.pumpW + plant.fanW) * kWh;
+      pumping = duty * (plant.pumpW + plant.fanW) * kWh;
     }
   }
   const room = plant.capacityKwh - ice;
   out.cutOff = charge && !runs ? 1 : 0;
   if (made > room) {
     out.cutOff = 1 - room / made;
-    energy -= powerW * kWh * out.cutOff;
+    machine -= powerW * kWh * out.cutOff;
     made = room;
   }
   // what is drawn to the last drop may round to just below nothing
   out.iceKwh = Math.max(0, ice + made);
-  out.energyKwh = energy;
+  out.energyKwh = machine + pumping;
+  out.machineKwh = machine;
   out.unmetKwh = needKwh - net;
   out.deliveredKwh = net;
 }

@@ -15,7 +15,7 @@ import {
   type Paths,
 } from './forward.ts';
 import { meltOutSlot } from './holding.ts';
-import { faultOf, slotHours, slotStartMs, type PlanProblem } from './problem.ts';
+import { faultOf, slotHours, slotStartMs, spanOf, type PlanProblem } from './problem.ts';
 import { solve, TooSlow, type SolveOptions } from './solve.ts';
 import { valueAt, valueBetween, type Work } from './work.ts';
 
@@ -187,31 +187,41 @@ function iceFlip(work: Work, here: Standing, chosen: number): number | null {
   return nearest;
 }
 
-function stepsOf(work: Work, paths: Paths): PlanStep[] {
-  const { problem, classes } = work;
+/** One for each slot; both slots of a pair carry the same, and the ice on the way from one step to the next. */
+export function stepsOf(work: Work, paths: Paths): PlanStep[] {
+  const { problem } = work;
+  const steps = Array.from({ length: problem.slots }, (_, t) => stepOf(work, paths, t));
+  return steps.flatMap((step, t) => {
+    if (spanOf(problem, t) === 1) return [step];
+    const next = steps[t + 1] ?? step;
+    const half = (key: 'iceKwh' | 'iceLowKwh' | 'iceHighKwh'): number => (step[key] + next[key]) / 2;
+    const second = { iceKwh: half('iceKwh'), iceLowKwh: half('iceLowKwh'), iceHighKwh: half('iceHighKwh') };
+    return [step, { ...step, ...second, startMs: step.startMs + problem.slotMs }];
+  });
+}
+
+function stepOf({ problem, classes }: Work, paths: Paths, t: number): PlanStep {
   const count = problem.scenarios.length;
   const { weight } = classes;
   const buy = problem.power.kind === 'grid' ? problem.power.buy : null;
-  return Array.from({ length: problem.slots }, (_, t) => {
-    const ice = paths.iceKwh.subarray(t * count, (t + 1) * count);
-    const outdoor = Float64Array.from(problem.scenarios, (s) => s.outdoorC[t]);
-    const load = Float64Array.from(problem.scenarios, (s) => s.loadW[t]);
-    const at = (values: Float64Array, p: number): number => weightedQuantile(values, weight, p);
-    return {
-      startMs: slotStartMs(problem, t),
-      command: commonCommand(paths.command.subarray(t * count, (t + 1) * count), weight),
-      iceKwh: at(ice, 0.5),
-      iceLowKwh: at(ice, 0.1),
-      iceHighKwh: at(ice, 0.9),
-      priceMoneyPerKwh: buy ? buy[t] : 0,
-      outdoorC: at(outdoor, 0.5),
-      outdoorLowC: at(outdoor, 0.1),
-      outdoorHighC: at(outdoor, 0.9),
-      loadW: at(load, 0.5),
-      loadLowW: at(load, 0.1),
-      loadHighW: at(load, 0.9),
-    };
-  });
+  const ice = paths.iceKwh.subarray(t * count, (t + 1) * count);
+  const outdoor = Float64Array.from(problem.scenarios, (s) => s.outdoorC[t]);
+  const load = Float64Array.from(problem.scenarios, (s) => s.loadW[t]);
+  const at = (values: Float64Array, p: number): number => weightedQuantile(values, weight, p);
+  return {
+    startMs: slotStartMs(problem, t),
+    command: commonCommand(paths.command.subarray(t * count, (t + 1) * count), weight),
+    iceKwh: at(ice, 0.5),
+    iceLowKwh: at(ice, 0.1),
+    iceHighKwh: at(ice, 0.9),
+    priceMoneyPerKwh: buy ? buy[t] : 0,
+    outdoorC: at(outdoor, 0.5),
+    outdoorLowC: at(outdoor, 0.1),
+    outdoorHighC: at(outdoor, 0.9),
+    loadW: at(load, 0.5),
+    loadLowW: at(load, 0.1),
+    loadHighW: at(load, 0.9),
+  };
 }
 
 /** What most of the scenarios would have the machine do, and the pump. */

@@ -31,7 +31,7 @@ export interface PlanPlant {
 
 export interface DemandTerms {
   readonly moneyPerKw: number;
-  /** Highest mean power of the month so far, W. */
+  /** Highest mean power of the month so far, or of what the house will come to by itself, W. */
   readonly peakSoFarW: number;
   /** For each slot, 1 where power is measured. */
   readonly measured: ArrayLike<number>;
@@ -54,13 +54,20 @@ export interface BatteryTerms {
   readonly wearMoneyPerKwh: number;
   readonly mostChargeW: number;
   readonly mostDischargeW: number;
+  /** What comes out of what went in; half of the loss is counted on either way. */
+  readonly roundTrip: number;
 }
 
 export interface GeneratorTerms {
   readonly powerW: number;
   readonly moneyPerKwh: number;
-  /** For each slot, 1 where it must be silent. */
+  readonly startMoney: number;
+  /** For each slot, 1 where it cannot be started: it must be silent before its shortest run is over. */
   readonly quiet: ArrayLike<number>;
+  readonly leastRunMs: number;
+  /** Battery below which it is started, and at which it is stopped. */
+  readonly startsBelowKwh: number;
+  readonly stopsAtKwh: number;
 }
 
 export interface IslandPower {
@@ -85,7 +92,10 @@ export interface ChillerTerms {
 export interface PlanProblem {
   readonly nowMs: number;
   readonly slotMs: number;
+  /** Steps that the series below have values for; each is one slot long unless `spans` says otherwise. */
   readonly slots: number;
+  /** Length of each step in slots and the slot that it begins with, where steps are longer than slots. */
+  readonly spans?: { readonly length: Uint8Array; readonly start: Uint16Array };
   readonly zone: string;
   readonly currency: string;
   readonly units: DisplayUnits;
@@ -115,17 +125,22 @@ export interface PlanProblem {
   readonly reserveKwh: number;
 }
 
-/** Length of a slot in hours; what is left of it for the first. */
-export function slotHours(problem: PlanProblem, slot: number): number {
+/** Length of a step in slots. */
+export function spanOf(problem: PlanProblem, step: number): number {
+  return problem.spans ? problem.spans.length[step] : 1;
+}
+
+/** Length of a step in hours; what is left of it for the first. */
+export function slotHours(problem: PlanProblem, step: number): number {
   const { nowMs, slotMs } = problem;
-  const whole = slotMs / 3_600_000;
-  if (slot > 0) return whole;
+  if (step > 0) return (spanOf(problem, step) * slotMs) / 3_600_000;
   const left = Math.floor(nowMs / slotMs) * slotMs + slotMs - nowMs;
   return left / 3_600_000;
 }
 
-export function slotStartMs(problem: PlanProblem, slot: number): number {
-  if (slot === 0) return problem.nowMs;
+export function slotStartMs(problem: PlanProblem, step: number): number {
+  if (step === 0) return problem.nowMs;
+  const slot = problem.spans ? problem.spans.start[step] : step;
   return (Math.floor(problem.nowMs / problem.slotMs) + slot) * problem.slotMs;
 }
 

@@ -1,4 +1,5 @@
 /** Sets up a solve, finds what ice left at the end is worth, and runs the recursion back to now. */
+import { batteryGrid, levelKwh } from './battery-grid.ts';
 import { classify } from './classes.ts';
 import { demandMoney, islandOf } from './electricity.ts';
 import { chooseBest } from './choose.ts';
@@ -7,8 +8,10 @@ import { valueAt, type Work } from './work.ts';
 import { machineStates } from './machine-states.ts';
 import { newOutcome, newSlot } from './motion.ts';
 import { holdingMoney } from './holding.ts';
-import type { PlanProblem, PlanScenario } from './problem.ts';
-import { buildTables, rowOf, type Tables } from './tables.ts';
+import { slotHours, type PlanProblem, type PlanScenario } from './problem.ts';
+import { partFrom } from './part.ts';
+import { stepped } from './stepped.ts';
+import { buildTables, meltTable, rowOf, type Tables } from './tables.ts';
 
 export interface SolveOptions {
   /** Points of the ice grid. */
@@ -36,8 +39,8 @@ export function createWork(
   const { slots, chiller, slotMs, power } = problem;
   const island = power.kind === 'island' ? islandOf(power) : null;
   const states = machineStates(chiller, slotMs, power.kind === 'grid' && power.demand !== null);
-  const batteryPoints = island && island.capacityKwh > 0 ? Math.max(2, options.batteryPoints ?? 6) : 1;
-  const cells = tables.points * batteryPoints;
+  const battery = batteryGrid(island, options.batteryPoints ?? 7);
+  const cells = tables.points * battery.points;
   const work: Work = {
     problem,
     tables,
@@ -45,8 +48,7 @@ export function createWork(
     states,
     plant: { ...problem, capacityKwh: problem.plant.capacityKwh, directCooling: chiller.directCooling },
     island,
-    batteryPoints,
-    batteryStepKwh: island && batteryPoints > 1 ? island.capacityKwh / (batteryPoints - 1) : 1,
+    battery,
     cells,
     value: new Float64Array((slots + 1) * Math.max(1, classes) * states.count * cells),
     expected: new Float64Array(2 * states.count * cells),
@@ -58,19 +60,15 @@ export function createWork(
       low: new Int32Array(tables.points),
       part: new Float64Array(tables.points),
       energyKwh: new Float64Array(tables.points),
+      machineKwh: new Float64Array(tables.points),
       money: new Float64Array(tables.points),
     },
-    onBattery: {
-      corner: new Int32Array(cells),
-      part: new Float64Array(cells),
-      money: new Float64Array(cells),
-    },
-    together: !island && !chiller.heatsRoom,
+    together: !chiller.heatsRoom,
     ownPower: problem.scenarios.some((s) => Array.from(s.panelW).some((w) => w > 0)),
     mixed: new Float64Array(states.count * cells),
     slot: newSlot(),
     outcome: newOutcome(),
-    settled: { batteryKwh: 0, money: 0 },
+    settled: { batteryKwh: new Float64Array(tables.points), money: new Float64Array(tables.points) },
   };
   limits(work);
   return work;
@@ -94,20 +92,28 @@ function limits(work: Work): void {
   }
 }
 
+/** Cells of a single scenario's ice grid over all its steps, and the most points that such a grid has. */
+const SINGLE_CELLS = 80_000;
+const MOST_POINTS = 3841;
+
 /**
  * Points of the ice grid. Between points the value is linear, which blurs the cliff where the ice just suffices. The
- * spread of many scenarios blurs it more than the grid does; a single one needs a fine grid to show it.
+ * spread of many scenarios blurs it more than the grid does; a single one, whose best plan ends on the very edge, needs
+ * a fine grid to show it, and can afford one.
  */
-function pointsFor(problem: PlanProblem): number {
-  if (problem.power.kind === 'island') return 31;
-  return problem.scenarios.length >= 8 ? 61 : 241;
+function pointsFor({ power, scenarios, slots }: PlanProblem): number {
+  if (power.kind === 'island') return scenarios.length >= 8 ? 31 : 61;
+  if (scenarios.length >= 8) return 61;
+  if (scenarios.length > 1) return 241;
+  return Math.min(MOST_POINTS, Math.max(241, Math.floor(SINGLE_CELLS / slots)));
 }
 
-/** Solves to the value of every state at every slot. Throws `TooSlow` past its limit. */
-export function solve(problem: PlanProblem, options: SolveOptions = {}): Work {
+/** Solves to the value of every state at every step. Throws `TooSlow` past its limit. */
+export function solve(given: PlanProblem, options: SolveOptions = {}): Work {
+  const problem = stepped(given);
   const tables = buildTables(problem, options.points ?? pointsFor(problem));
   const work = createWork(problem, options, tables, options.classes ?? 4);
-  if (options.endMoneyPerKwh === undefined) setEnd(work, options);
+  if (options.endMoneyPerKwh === undefined) setEnd(work, given, options);
   else setEndWorth(work, options.endMoneyPerKwh);
   backward(work, options);
   return work;
@@ -142,56 +148,27 @@ const TAIL_ROUNDS = 2;
  * becomes the value at its end, but for a constant (relative value iteration, White 1963). It starts from the
  * cheapest that ice can be made for, up to a day's need.
  */
-function setEnd(work: Work, options: SolveOptions): void {
-  const { problem, states, cells, classes } = work;
-  const daySlots = Math.min(problem.slots, Math.round(DAY_SLOTS_MS / problem.slotMs));
-  const from = problem.slots - daySlots;
-  const tables = { ...work.tables, meltRow: work.tables.meltRow.subarray(from) };
-  const tail = createWork(lastDay(problem, from), options, tables, 1);
+function setEnd(work: Work, given: PlanProblem, options: SolveOptions): void {
+  const { states, cells, classes } = work;
+  const daySlots = Math.min(given.slots, Math.round(DAY_SLOTS_MS / given.slotMs));
+  const day = stepped(lastDay(given, given.slots - daySlots), 0);
+  const tables = { ...work.tables, ...meltTable(day, work.tables) };
+  const tail = createWork(day, options, tables, 1);
   const size = states.count * cells;
-  const end = tail.value.subarray(daySlots * size);
+  const end = tail.value.subarray(day.slots * size);
   end.set(firstGuess(tail));
   for (let round = 0; round < TAIL_ROUNDS; round += 1) {
     backward(tail, options);
     const base = tail.value[0];
     for (let k = 0; k < size; k += 1) end[k] = tail.value[k] - base;
   }
-  for (let c = 0; c < classes.most; c += 1) work.value.set(end, valueAt(work, problem.slots, c, 0));
+  for (let c = 0; c < classes.most; c += 1) work.value.set(end, valueAt(work, work.problem.slots, c, 0));
 }
 
+/** A few scenarios stand for the last day. */
 function lastDay(problem: PlanProblem, from: number): PlanProblem {
-  const { power, slots, slotMs } = problem;
-  const cut = (values: ArrayLike<number>): Float64Array => Float64Array.from(values).subarray(from, slots);
-  const demand = power.kind === 'grid' && power.demand;
-  const generator = power.kind === 'island' && power.generator;
-  return {
-    ...problem,
-    nowMs: (Math.floor(problem.nowMs / slotMs) + from) * slotMs,
-    slots: slots - from,
-    scenarios: spread(problem.scenarios, from, slots).map((s) => ({
-      ...s,
-      weight: 1,
-      outdoorC: cut(s.outdoorC),
-      loadW: cut(s.loadW),
-      panelW: cut(s.panelW),
-    })),
-    limitC: cut(problem.limitC),
-    surroundC: cut(problem.surroundC),
-    power:
-      power.kind === 'grid'
-        ? {
-            ...power,
-            buy: cut(power.buy),
-            sell: cut(power.sell),
-            houseW: cut(power.houseW),
-            demand: demand ? { ...demand, measured: cut(demand.measured) } : null,
-          }
-        : {
-            ...power,
-            houseW: cut(power.houseW),
-            generator: generator ? { ...generator, quiet: cut(generator.quiet) } : null,
-          },
-  };
+  const scenarios = spread(problem.scenarios, from, problem.slots).map((s) => ({ ...s, weight: 1 }));
+  return partFrom({ ...problem, scenarios }, from);
 }
 
 /** A few scenarios evenly over the ranks of the last day's load. */
@@ -214,12 +191,12 @@ function firstGuess(tail: Work): Float64Array {
   const buy = power.kind === 'grid' ? Math.min(...Array.from(power.buy)) : (tail.island?.wear ?? 0);
   let needKwh = 0;
   for (let t = 0; t < problem.slots; t += 1) {
-    for (const s of scenarios) needKwh += (s.loadW[t] * problem.slotMs) / 3.6e9 / scenarios.length;
+    for (const s of scenarios) needKwh += (s.loadW[t] * slotHours(problem, t)) / 1000 / scenarios.length;
   }
   return Float64Array.from({ length: states.count * cells }, (_, k) => {
     const cell = k % cells;
     const ice = (cell % tables.points) * tables.stepKwh;
-    const battery = Math.floor(cell / tables.points) * tail.batteryStepKwh;
+    const battery = levelKwh(tail.battery, Math.floor(cell / tables.points));
     return -Math.max(0, buy) * perIce * Math.min(ice, needKwh) - (tail.island?.wear ?? 0) * battery;
   });
 }

@@ -30,7 +30,7 @@ export function buildTables(problem: PlanProblem, points: number): Tables {
     leakW[i] = problem.plant.leakW(i * stepKwh, 0);
     leakWPerK[i] = (problem.plant.leakW(i * stepKwh, 20) - leakW[i]) / 20;
   }
-  return { points, stepKwh, ...machine, leakW, leakWPerK, ...meltTable(problem, points, stepKwh) };
+  return { points, stepKwh, ...machine, leakW, leakWPerK, ...meltTable(problem, { points, stepKwh }) };
 }
 
 /** Kelvin between rows, and inventories asked at each: machine maps are smooth, finer asks change nothing. */
@@ -83,7 +83,7 @@ function outdoorRange(problem: PlanProblem): [number, number] {
   return [low, high];
 }
 
-function meltTable(problem: PlanProblem, points: number, stepKwh: number) {
+export function meltTable(problem: PlanProblem, { points, stepKwh }: Pick<Tables, 'points' | 'stepKwh'>) {
   const rooms: number[] = [];
   const meltRow = new Int32Array(problem.slots);
   for (let t = 0; t < problem.slots; t += 1) {

@@ -1,5 +1,6 @@
 /** Everything that one solve reads and writes. */
 import type { Classes } from './classes.ts';
+import { levelOf, type BatteryGrid } from './battery-grid.ts';
 import type { Island, Settled } from './electricity.ts';
 import type { MachineStates } from './machine-states.ts';
 import type { Outcome, Plant, Slot } from './motion.ts';
@@ -15,8 +16,7 @@ export interface Work {
   readonly plant: Plant;
   /** Null on a grid. */
   readonly island: Island | null;
-  readonly batteryPoints: number;
-  readonly batteryStepKwh: number;
+  readonly battery: BatteryGrid;
   /** Ice points × battery points. */
   readonly cells: number;
   /** Value at [((slot × classes + class) × states + state) × cells + battery × points + ice]; slots + 1 of them. */
@@ -34,12 +34,7 @@ export interface Work {
     readonly low: Int32Array;
     readonly part: Float64Array;
     readonly energyKwh: Float64Array;
-    readonly money: Float64Array;
-  };
-  /** On an island, the same at every battery level: corner cell, part beyond it on the battery, money. */
-  readonly onBattery: {
-    readonly corner: Int32Array;
-    readonly part: Float64Array;
+    readonly machineKwh: Float64Array;
     readonly money: Float64Array;
   };
   /** Whether members of a class may be moved together where nothing is delivered; and whether there is own power. */
@@ -69,9 +64,10 @@ export function valueBetween(work: Work, offset: number, iceKwh: number, battery
 function plane(work: Work, offset: number, low: number, part: number, batteryKwh: number): number {
   const { value } = work;
   const below = offset + low;
-  if (work.batteryPoints === 1) return value[below] + part * (value[below + 1] - value[below]);
-  const place = batteryKwh / work.batteryStepKwh;
-  const b = place >= work.batteryPoints - 1 ? work.batteryPoints - 2 : Math.floor(place);
+  const { points } = work.battery;
+  if (points === 1) return value[below] + part * (value[below + 1] - value[below]);
+  const place = levelOf(work.battery, batteryKwh);
+  const b = place >= points - 1 ? points - 2 : Math.floor(place);
   const k = below + b * work.tables.points;
   const above = k + work.tables.points;
   const lower = value[k] + part * (value[k + 1] - value[k]);

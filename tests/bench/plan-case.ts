@@ -20,11 +20,15 @@ import { runLoop, type LoopOptions, type Outcome } from './plan-loop.ts';
 export const RUNS = ['foresight', 'planned', 'storage-priority', 'chiller-priority', 'timetable'] as const;
 export type Run = (typeof RUNS)[number];
 
+/** Days that those who learn nothing live before they count: bank, battery and cabin forget how they began. */
+const SETTLING_DAYS = 2;
+
 /** Which case of which seed, and how long. */
 export interface CaseOrder {
   readonly seed: number;
   readonly index: number;
   readonly nights: number;
+  /** Days that the plan learns before it counts; at least as many as the others settle. */
   readonly warmUpDays: number;
 }
 
@@ -50,14 +54,15 @@ export function runCase({ seed: baseSeed, index, nights, warmUpDays }: CaseOrder
     on,
     seed,
     weather,
-    startMs: countFromMs - warmUpDays * DAY_MS,
+    startMs: countFromMs - SETTLING_DAYS * DAY_MS,
     countFromMs,
     endMs,
     reachMs: endMs,
   };
+  const learning = { ...options, startMs: countFromMs - warmUpDays * DAY_MS };
   const means: MeanForecasts = new Map();
   const problems: PlanProblem[] = [];
-  const planned = runLoop(options, plannedDecider(options, seed, means, problems));
+  const planned = runLoop(learning, plannedDecider(learning, seed, means, problems));
   const storage = runLoop(
     { ...options, reachMs: endMs + 2 * DAY_MS },
     simpleDecider(options, means, 'storage-priority'),

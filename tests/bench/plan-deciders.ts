@@ -183,10 +183,7 @@ function problemOf(
   const { slotMs } = config.planning;
   const slots = forecast.scenarios[0].loadW.length;
   const prices = priceSlots(config, slotStart(nowMs, slotMs), slotMs, slots, on.dated(nowMs));
-  return planProblem(
-    config,
-    planInputs(stages, state, moment, ice, forecast, prices, { demand, houseW }),
-  );
+  return planProblem(config, planInputs(stages, state, moment, ice, forecast, prices, { demand, houseW }));
 }
 
 function latest(means: MeanForecasts, nowMs: number): Forecast {

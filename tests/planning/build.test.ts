@@ -75,8 +75,8 @@ describe('building a problem', () => {
     if (power.kind !== 'island' || !power.battery || !power.generator) throw new Error('no island');
     expect(power.battery.floorKwh).toBeCloseTo(1.5, 9);
     expect(power.battery.nowKwh).toBeCloseTo(1.5, 9);
-    // Quiet from 22:00 (slot 3) to 08:00 (slot 43).
-    expect([2, 3, 42, 43].map((t) => power.generator?.quiet[t])).toEqual([0, 1, 1, 0]);
+    // Quiet from 22:00 (slot 3) to 08:00 (slot 43); a run of half an hour from 21:45 on would reach into it.
+    expect([1, 2, 3, 42, 43].map((t) => power.generator?.quiet[t])).toEqual([0, 1, 1, 1, 0]);
   });
 
   it('believes in the panels before they have shown anything', () => {

@@ -253,6 +253,7 @@ describe('character of the plan', () => {
           floorKwh: 1.5,
           nowKwh: 4.8,
           wearMoneyPerKwh: 0.06,
+          roundTrip: 1,
           mostChargeW: 2000,
           mostDischargeW: 2000,
         },

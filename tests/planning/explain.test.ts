@@ -109,19 +109,19 @@ describe('reasons', () => {
     };
     expect(sentences).toMatchInlineSnapshot(`
       {
-        "cool": "Resting: 0.6 kWh are in the bank, and the evening may need 3.3 kWh at most; more is made from 02:15 tomorrow if it comes to that.",
+        "cool": "Resting: 0.6 kWh are in the bank, and the evening may need 3.3 kWh at most; more is made from 02:00 tomorrow if it comes to that.",
         "dark": "Waiting to make ice until 07:30, when the sun has more to spare; 3.0 kWh are in the bank, and the evening may need 12.4.",
         "evening": "Cooling with ice: the rest of the night may need 8.0 kWh; 7.0 are in the bank, which lasts until about 00:00, and more is made from 00:00.",
         "full": "Resting: the bank is full with 14.0 kWh.",
-        "island": "Making ice from now until about 23:30: the panels give 1.5 kW more than the house needs, and the evening may need 12.4 kWh; 3.0 are in the bank.",
+        "island": "Making ice from now until about 18:15: the panels give 1.5 kW more than the house needs, and the evening may need 12.4 kWh; 3.0 are in the bank.",
         "late": "Cooling with ice: the rest of the night may need 4.8 kWh; 4.0 are in the bank, which lasts until about 00:30, and more is made from 00:00.",
         "melts": "Cooling with ice: the rest of the night may need 2.9 kWh; 3.4 are in the bank, which lasts until about 22:15, and more is made from 00:45.",
         "mild": "Resting: 6.0 kWh are in the bank, and the evening may need 4.0 kWh at most.",
         "none": "Resting: 0.6 kWh are in the bank, and no cooling is expected.",
         "rests": "Resting: 11.0 kWh are in the bank, and the evening may need 12.4 kWh at most; more is made from 00:00 tomorrow if it comes to that.",
         "short": "Cooling with ice: the rest of the night may need 8.0 kWh; 3.2 are in the bank, which lasts until about 21:30, and more is made from 22:30.",
-        "start": "Making ice from now until about 09:30: power costs 11 ct until 06:00, then 16 ct, and the evening may need 12.4 kWh; 3.0 are in the bank.",
-        "waits": "Cooling with ice: the rest of the night may need 2.1 kWh; 2.8 are in the bank, which lasts until about 16:15 tomorrow, and more is made from 00:30.",
+        "start": "Making ice from now until about 09:15: power costs 11 ct until 06:00, then 16 ct, and the evening may need 12.4 kWh; 3.0 are in the bank.",
+        "waits": "Cooling with ice: the rest of the night may need 2.1 kWh; 2.8 are in the bank, which lasts until about 16:00 tomorrow, and more is made from 00:30.",
       }
     `);
   });
@@ -140,7 +140,7 @@ describe('reasons', () => {
       [
         "Waiting an hour would cost 4 ct.",
         "One more kWh of ice would be worth 7.6 ct.",
-        "It would stop making ice with power above 20 ct for the coming hour, or more than 12.6 kWh in the bank.",
+        "It would stop making ice with power above 19 ct for the coming hour, or more than 12.6 kWh in the bank.",
       ]
     `);
     const later = summer(9, ice(11));
@@ -216,6 +216,7 @@ function island(clock: number): PlanProblem {
         floorKwh: 1.5,
         nowKwh: 4,
         wearMoneyPerKwh: 0.06,
+        roundTrip: 1,
         mostChargeW: 2000,
         mostDischargeW: 2000,
       },
