@@ -210,7 +210,11 @@ function stepOf({ problem, classes }: Work, paths: Paths, t: number): PlanStep {
   const at = (values: Float64Array, p: number): number => weightedQuantile(values, weight, p);
   return {
     startMs: slotStartMs(problem, t),
-    command: commonCommand(paths.command.subarray(t * count, (t + 1) * count), weight),
+    command: commonCommand(
+      paths.command.subarray(t * count, (t + 1) * count),
+      weight,
+      problem.chiller.chargesWhileDischarging,
+    ),
     iceKwh: at(ice, 0.5),
     iceLowKwh: at(ice, 0.1),
     iceHighKwh: at(ice, 0.9),
@@ -224,15 +228,16 @@ function stepOf({ problem, classes }: Work, paths: Paths, t: number): PlanStep {
   };
 }
 
-/** What most of the scenarios would have the machine do, and the pump. */
-function commonCommand(commands: Uint8Array, weight: Float64Array): Command {
+/** What most of the scenarios would have the machine do, and the pump; of two that exclude each other, the likelier. */
+function commonCommand(commands: Uint8Array, weight: Float64Array, both: boolean): Command {
   let charge = 0;
   let discharge = 0;
   for (let s = 0; s < commands.length; s += 1) {
     if (commands[s] & 1) charge += weight[s];
     if (commands[s] & 2) discharge += weight[s];
   }
-  return commandFor(charge >= 0.5, discharge >= 0.5);
+  if (both || charge < 0.5 || discharge < 0.5) return commandFor(charge >= 0.5, discharge >= 0.5);
+  return commandFor(charge > discharge, charge <= discharge);
 }
 
 function lasting(work: Work): Pick<Plan, 'lastsUntilMs' | 'lastsAtLeastUntilMs'> {
