@@ -96,6 +96,8 @@ export interface BalanceInput {
   readonly night: Night;
   readonly probes: readonly ProbeState[];
   readonly doubtfulMinutes: number;
+  /** What the owner's word alone changed of the ice on hand. */
+  readonly toldKwh: number;
   readonly show: Display;
 }
 
@@ -202,6 +204,8 @@ function heardOut(spans: readonly Span[]): Heard {
 /** The most likely culprit of a large residual, in words: what speaks plainly first, then where it arose. */
 function culpritOf(residualKwh: number, parts: Residuals, heard: Heard, input: BalanceInput): string {
   const share = (part: number): number => part / residualKwh;
+  if (share(-input.toldKwh) > 0.5)
+    return 'what the owner told of the bank: the ice on hand was changed by that and by no heat';
   if (input.doubtfulMinutes > 15) return 'the clock, which was doubtful part of the night';
   if (share(parts.gaps) > 0.5) return 'the stretch without records, over which nothing was counted';
   const probe = input.probes.find(

@@ -15,7 +15,7 @@ import { copOf, electricityOf, machineMoney, supplyOf } from './electricity.ts';
 import { displayFor } from './display.ts';
 import { forecastOf, noonPlan } from './forecast-check.ts';
 import { NIGHT_SHEET_SCHEMA, type NightSheet } from './night-schema.ts';
-import { commandsOf, interlocksOf, toldOf, wishesOf, type Told } from './orders.ts';
+import { commandsOf, interlocksOf, toldKwh, toldOf, wishesOf, type Told } from './orders.ts';
 import { plantFigures } from './plant-figures.ts';
 import { comfortOf, deliveredOf, weatherOf } from './service.ts';
 import { rounded, roundedOrNull, spansOf, type Span } from './spans.ts';
@@ -60,7 +60,8 @@ export function nightSheet(input: NightInput): NightSheet {
   const coverage = coverageOf(spans, night, input.issuedMs, site.site.zone);
   const show = displayFor(site.site);
   const doubtfulMinutes = coverage.clockDoubtfulMinutes;
-  const balance = balanceOf({ site, spans, start, night, probes, show, doubtfulMinutes });
+  const told = toldKwh(input.told ?? []);
+  const balance = balanceOf({ site, spans, start, night, probes, show, doubtfulMinutes, toldKwh: told });
   const ice = iceOf(spans, start, site);
   const electricity = electricityOf(site, spans);
   const worth = worthOfIce(site, spans, balance.inKwh);

@@ -26,7 +26,14 @@ export interface Told {
   readonly what: ToldWhat;
   readonly point: string | null;
   readonly takenBackMs: number | null;
+  /** Ice on hand before and after it was told. */
+  readonly beforeKwh: number;
+  readonly afterKwh: number;
 }
+
+/** Cold that came or went by word alone, kWh: no flux accounts for it. */
+export const toldKwh = (told: readonly Told[]): number =>
+  told.reduce((sum, one) => sum + (one.takenBackMs === null ? one.afterKwh - one.beforeKwh : 0), 0);
 
 /** Only where something was told, so that sheets from before this could be told stand as they were written. */
 export function toldOf(told: readonly Told[]): Pick<NightSheet, 'told'> {
