@@ -118,14 +118,20 @@ function errorText({ errorAtIcePointK, errorSdK, errorDateMs }: PointRow, format
 }
 
 function learnedTable(list: readonly LearnedFigure[], format: Format): HTMLTableElement {
-  const rows = list.map(({ name, value, sd, unit }) => {
-    const known = words.learnedNames[name];
-    const text = (of: number): string =>
-      known?.asPct ? `${plain(100 * of, 0)} %` : unit === '' ? plain(of, 2) : format.value(of, unit);
-    const what = h('span', {}, known?.what ?? name);
-    return row(what, figure(value, text(value)), figure(sd, text(sd)));
+  const rows = list.map((learned) => {
+    const what = h('span', {}, words.learnedNames[learned.name]?.what ?? learned.name);
+    const text = (value: number): string => learnedText(learned, value, format);
+    return row(what, figure(learned.value, text(learned.value)), figure(learned.sd, text(learned.sd)));
   });
   return table(words.learned, [words.figure, words.value, words.sd], [h('tbody', {}, ...rows)]);
+}
+
+function learnedText({ name, unit }: LearnedFigure, value: number, format: Format): string {
+  const as = words.learnedNames[name]?.as;
+  if (as === '%') return `${plain(100 * value, 0)} %`;
+  if (as !== undefined)
+    return `${plain((100 * value) / (format.temperatureNumber(1) - format.temperatureNumber(0)), 1)} %`;
+  return unit === '' ? plain(value, 2) : format.value(value, unit);
 }
 
 /** Who holds something back, with its sentence; the quiet ones are only named. */

@@ -35,12 +35,14 @@ const WISH_MEANING: Readonly<Record<WishName, string>> = {
 };
 
 /** What the learned figures mean. Those in % are shares, or changes of a share. */
-const LEARNED_WORDS: Readonly<Record<string, { readonly what: string; readonly asPct?: true }>> = {
+const LEARNED_WORDS: Readonly<
+  Record<string, { readonly what: string; readonly as?: '%' | '% for 10 degrees' }>
+> = {
   'heat-leak': { what: 'Heat leak of the bank' },
-  'charging-factor': { what: 'Ice making, of what the site file says', asPct: true },
-  'charging-by-outdoor': { what: 'Its change for each 10 °C outdoors', asPct: true },
-  'charging-by-inventory': { what: 'Its change from empty to full', asPct: true },
-  'machine-power-factor': { what: 'Power of the ice machine, of what the site file says', asPct: true },
+  'charging-factor': { what: 'Ice making, of what the site file says', as: '%' },
+  'charging-by-outdoor': { what: 'Its change for each 10 degrees outdoors', as: '% for 10 degrees' },
+  'charging-by-inventory': { what: 'Its change from empty to full', as: '%' },
+  'machine-power-factor': { what: 'Power of the ice machine, of what the site file says', as: '%' },
   'melt-conductance': { what: 'Conductance of melting, half full' },
   'melt-exponent': { what: 'How it falls as ice is spent, exponent' },
   'freeze-conductance': { what: 'Conductance of freezing' },
@@ -349,7 +351,7 @@ export const strings = {
       last: 'Last value',
       age: 'Age',
       heard: 'Heard',
-      error: 'Error at 0 °C',
+      error: 'Error at the ice point',
       remark: 'Remark',
       plausible: 'Plausible',
     },
