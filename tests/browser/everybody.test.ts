@@ -1,40 +1,9 @@
-import { AxeBuilder } from '@axe-core/playwright';
 import { describe, expect, it } from 'vitest';
 import { hasChromium } from './chromium.ts';
 import { VIEWS, useWindow } from './window.ts';
 
-async function faults(view: string, axe: AxeBuilder): Promise<string[]> {
-  // One frame at a time: the sheet's frame runs no scripts, so axe could not look into it anyway.
-  const { violations } = await axe.setLegacyMode(true).analyze();
-  return violations.map(({ id, nodes }) => `${view} ${id}: ${nodes.map(({ html }) => html).join(' ')}`);
-}
-
 describe.skipIf(!hasChromium)('the page for everybody: eyes, ears, keyboards, small windows', () => {
   const at = useWindow();
-  it('has no fault that axe finds on any sheet, in the light and the dark theme', async () => {
-    await at.open('tonight');
-    for (const view of VIEWS) {
-      await at.turnTo(view);
-      if (view === 'tonight') await at.page.getByRole('button', { name: 'Cool now' }).click();
-      await at.page.emulateMedia({ colorScheme: 'light' });
-      const everything = ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa', 'best-practice'];
-      expect(await faults(view, new AxeBuilder({ page: at.page }).withTags(everything))).toEqual([]);
-      await at.page.emulateMedia({ colorScheme: 'dark' });
-      expect(await faults(view, new AxeBuilder({ page: at.page }).withRules(['color-contrast']))).toEqual([]);
-    }
-    await at.page.emulateMedia({ colorScheme: null });
-    // axe tries to look into the sheet's frame, which lets no script in; the browser says so.
-    at.complaints = at.complaints.filter((line) => !line.startsWith('Blocked script execution'));
-  }, 120_000);
-
-  it('fits 320 px without rolling sideways, on any sheet', async () => {
-    await at.open('plant', 320, 640);
-    for (const view of VIEWS) {
-      await at.turnTo(view);
-      expect(await at.page.evaluate(() => document.documentElement.scrollWidth)).toBeLessThanOrEqual(320);
-    }
-  });
-
   it('shows six hours at a time on a phone, the present ones first, and rolls on', async () => {
     await at.open('tonight', 360, 740);
     const roll = at.page.getByRole('slider');
