@@ -12,7 +12,7 @@ import {
 import type { IceEstimate } from './estimation/types.ts';
 import type { Forecast } from './forecasting/forecaster.ts';
 import type { PlanInputs } from './planning/build.ts';
-import { explain, explainSimple } from './planning/explain.ts';
+import { asides, explain, explainSimple } from './planning/explain.ts';
 import { followed } from './planning/followed.ts';
 import type { Plan } from './planning/plan.ts';
 import type { PlanProblem } from './planning/problem.ts';
@@ -108,7 +108,7 @@ export function islandPrices(
 const totalWeight = ({ scenarios }: Forecast): number => scenarios.reduce((sum, s) => sum + s.weight, 0);
 
 /** The plan as it is stored and shown. */
-export function planRecordOf({ plan, forecast, strategy, reason, prices }: Planned): PlanRecord {
+export function planRecordOf({ plan, problem, forecast, strategy, reason, prices }: Planned): PlanRecord {
   const byStart = new Map(prices.map((slot) => [slot.startMs, slot.buy]));
   const steps = plan.steps.map((step) => ({
     ...step,
@@ -124,6 +124,7 @@ export function planRecordOf({ plan, forecast, strategy, reason, prices }: Plann
     worthOfIceMoneyPerKwh: plan.worthOfIceMoneyPerKwh ?? 0,
     waitCostMoney: plan.waitCostMoney ?? 0,
     reason,
+    asides: asides(plan, problem),
     forecastKnows: forecast.knows,
   };
 }

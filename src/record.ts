@@ -119,5 +119,7 @@ export interface PlanRecord {
   readonly worthOfIceMoneyPerKwh: number;
   readonly waitCostMoney: number;
   readonly reason: string;
+  /** Sentences beside it: what waiting costs, what ice is worth, what would change its mind. Older plans have none. */
+  readonly asides?: readonly string[];
   readonly forecastKnows: string;
 }

@@ -115,17 +115,20 @@ function eveningWord(problem: PlanProblem): string {
   return sinceNoonMs > 8 * HOUR_MS ? 'night' : 'evening';
 }
 
+/** Part of the estimate under which its low end is told as well: that is what the plan counts on. */
+const SURE_PART = 0.7;
+
 function coolingSentence(plan: Plan, problem: PlanProblem): string {
   const need = comingNeed(problem);
-  const have = `${energyFigure(problem, problem.iceKwh)} are in the bank`;
+  const { iceKwh, iceLowKwh } = problem;
+  const have = `${energyFigure(problem, iceKwh)} are in the bank`;
   if (need.mostKwh < 0.05) {
-    return `Ready to cool: the room is close to its limit of ${temperatureText(problem, problem.limitC[0])}, and ${energyText(problem, problem.iceKwh)} of cold are in the bank.`;
+    return `Ready to cool: the room is close to its limit of ${temperatureText(problem, problem.limitC[0])}, and ${energyText(problem, iceKwh)} of cold are in the bank.`;
   }
   const ends = plan.lastsAtLeastUntilMs ?? plan.lastsUntilMs;
-  const lasts =
-    ends === null
-      ? 'which lasts through the night'
-      : `which lasts until about ${clockText(problem, problem.nowMs, ends)}`;
+  const how = ends === null ? 'through the night' : `until about ${clockText(problem, problem.nowMs, ends)}`;
+  const sure = `of which ${energyFigure(problem, Math.max(0, iceLowKwh))} are sure and last`;
+  const lasts = `${iceLowKwh < SURE_PART * iceKwh ? sure : 'which lasts'} ${how}`;
   const more = nextMaking(plan);
   const then =
     more && ends !== null ? `, and more is made from ${clockText(problem, problem.nowMs, more.startMs)}` : '';
@@ -222,8 +225,13 @@ export function explainSimple(
   return `${DOES[command]}: ${rule}; ${priceClause(problem)}; ${have}.`;
 }
 
+/** What stands beside the reason: what waiting would cost, what ice is worth, what would change its mind. */
+export function asides(plan: Plan, problem: PlanProblem): string[] {
+  return [waitSentence, worthSentence, flipSentence].flatMap((sentence) => sentence(plan, problem) ?? []);
+}
+
 /** What an hour of doing otherwise would cost; null when that is not known. */
-export function waitSentence(plan: Plan, problem: PlanProblem): string | null {
+function waitSentence(plan: Plan, problem: PlanProblem): string | null {
   const { waitCostMoney } = plan;
   if (waitCostMoney === null) return null;
   const cost = waitCostMoney < 0.005 ? 'next to nothing' : moneyText(problem, waitCostMoney);
@@ -234,14 +242,14 @@ export function waitSentence(plan: Plan, problem: PlanProblem): string | null {
 }
 
 /** What a little more ice is worth now; null when that is not known. */
-export function worthSentence(plan: Plan, problem: PlanProblem): string | null {
+function worthSentence(plan: Plan, problem: PlanProblem): string | null {
   if (plan.worthOfIceMoneyPerKwh === null) return null;
   const unit = problem.units === 'SI' ? 'kWh' : 'kWh (3,400 BTU)';
   return `One more ${unit} of ice would be worth ${priceText(problem, plan.worthOfIceMoneyPerKwh)}.`;
 }
 
 /** What would turn the machine's command into its opposite; null when nothing near would. */
-export function flipSentence(plan: Plan, problem: PlanProblem): string | null {
+function flipSentence(plan: Plan, problem: PlanProblem): string | null {
   const { priceMoneyPerKwh, iceKwh } = plan.flips;
   const stop = charges(plan.command);
   const parts: string[] = [];
