@@ -25,6 +25,7 @@ const temperature = (low: number, high: number, brickClass: string | null, what:
   brickClass,
   what,
 });
+/** A meter at rest may show a little less than nothing: the lower limits leave room for it. */
 const power = (low: number, high: number, what: string): PointSpec => ({
   kind: 'power',
   unit: 'W',
@@ -89,13 +90,14 @@ export const POINTS = {
   'loop-flow': {
     kind: 'waterFlow',
     unit: 'L/min',
-    plausible: [0, 200],
+    // A meter at rest may show a little less than nothing.
+    plausible: [-5, 200],
     brickClass: 'Chilled_Water_Flow_Sensor',
     what: 'melt-water flow through the load loop',
   },
-  'chiller-power': { ...power(0, 20_000, 'electrical power of the ice machine'), required: true },
-  'pump-power': power(0, 5000, 'electrical power of the melt-water pump'),
-  'fan-power': power(0, 5000, 'electrical power of the fan coil'),
+  'chiller-power': { ...power(-10, 20_000, 'electrical power of the ice machine'), required: true },
+  'pump-power': power(-10, 5000, 'electrical power of the melt-water pump'),
+  'fan-power': power(-10, 5000, 'electrical power of the fan coil'),
   'room-temperature': {
     ...temperature(-30, 60, 'Zone_Air_Temperature_Sensor', 'air in a cooled room'),
     perRoom: true,
@@ -110,10 +112,10 @@ export const POINTS = {
     required: true,
   },
   'outdoor-humidity': percent('Outside_Air_Humidity_Sensor', 'outdoor relative humidity'),
-  'panel-power': power(0, 50_000, 'power from the solar panels'),
+  'panel-power': power(-10, 50_000, 'power from the solar panels'),
   'battery-charge': percent(null, 'charge of the site battery'),
-  'generator-power': power(0, 50_000, 'power from the generator'),
-  'house-power': power(0, 50_000, 'power that the house draws, the cooling plant left out'),
+  'generator-power': power(-10, 50_000, 'power from the generator'),
+  'house-power': power(-10, 50_000, 'power that the house draws, the cooling plant left out'),
   'grid-power': power(-50_000, 50_000, 'power from the grid, feed-in negative'),
   'ice-at-electrode': truth(null, 'thickness electrode is iced'),
   occupied: truth('Occupancy_Sensor', 'somebody is home'),

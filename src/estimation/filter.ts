@@ -5,6 +5,7 @@
  * Phase boundaries are then felt as far as the belief reaches, not only at its centre.
  */
 import { DYNAMIC, STATES, type Priors } from './layout.ts';
+import { normalCdf } from '../numerics/normal.ts';
 
 export interface Belief {
   /** Logarithm of the weight of this belief among others. */
@@ -68,7 +69,8 @@ export function predict(
   const { factor, columns, plus, minus } = work;
   factorise(belief.cov, factor);
   for (let j = 0; j < N; j++) {
-    if (j >= DYNAMIC) {
+    // Nothing to spread by: a quantity that this form of bank does not have, or that only shows in readings.
+    if (j >= DYNAMIC || factor[j * N + j] <= 2e-6) {
       for (let i = 0; i < N; i++) columns[i * N + j] = factor[i * N + j];
       continue;
     }
@@ -179,4 +181,39 @@ export function correct(
     }
   }
   return found;
+}
+
+/** Standard normal density. */
+const density = (z: number): number => Math.exp(-0.5 * z * z) / Math.sqrt(2 * Math.PI);
+
+/**
+ * A quantity is known to lie on one side of a limit: the belief becomes the normal with the mean and variance of what
+ * is left of it (Simon & Simon 2010, "Constrained Kalman filtering via density function truncation", Int. J. Systems
+ * Science 41:159–171). Only a belief whose mean lies beyond is touched, so that saying it again takes nothing more
+ * away. `softness` is the spread of the limit itself. Gives the logarithm of the share of the belief that was left.
+ */
+export function truncate(
+  belief: Belief,
+  i: number,
+  limit: number,
+  side: 'at-least' | 'at-most',
+  softness: number,
+): number {
+  const sign = side === 'at-most' ? 1 : -1;
+  const beyond = sign * (belief.mean[i] - limit);
+  if (!(beyond > 0)) return 0;
+  const variance = belief.cov[i * N + i];
+  const sd = Math.sqrt(variance + softness * softness);
+  const z = Math.max(-4, -beyond / sd);
+  const left = Math.max(1e-5, normalCdf(z));
+  const ratio = density(z) / left;
+  const share = variance / (sd * sd);
+  const step = (-sign * sd * ratio * share) / variance;
+  const shrink = (share * ratio * (ratio + z)) / variance;
+  const column = Float64Array.from({ length: N }, (_, k) => belief.cov[k * N + i]);
+  for (let k = 0; k < N; k++) {
+    belief.mean[k] += step * column[k];
+    for (let j = 0; j < N; j++) belief.cov[k * N + j] -= shrink * column[k] * column[j];
+  }
+  return Math.log(left);
 }

@@ -1,6 +1,7 @@
 /** Several Gaussian beliefs with weights: what they say together, and when they are one. */
 import { STATES } from './layout.ts';
 import type { Belief } from './filter.ts';
+import { normalCdf } from '../numerics/normal.ts';
 
 const N = STATES;
 /** A belief this much less likely than the best (logarithm) is given up. */
@@ -58,15 +59,6 @@ export function momentsOf(bells: readonly Bell[]): Moments {
   const mean = bells.reduce((sum, bell) => sum + bell.weight * bell.mean, 0);
   const square = bells.reduce((sum, b) => sum + b.weight * (b.sd ** 2 + (b.mean - mean) ** 2), 0);
   return { mean, sd: Math.sqrt(square) };
-}
-
-/** Normal distribution function: Abramowitz & Stegun 1964, 7.1.26, error below 1.5e-7. */
-export function normalCdf(z: number): number {
-  const t = 1 / (1 + 0.3275911 * (Math.abs(z) / Math.SQRT2));
-  const poly =
-    t * (0.254829592 + t * (-0.284496736 + t * (1.421413741 + t * (-1.453152027 + t * 1.061405429))));
-  const erf = 1 - poly * Math.exp((-z * z) / 2);
-  return 0.5 * (1 + (z < 0 ? -erf : erf));
 }
 
 /** Quantile of a mixture of normals by bisection between the outermost bells. */

@@ -53,6 +53,8 @@ function coolantSense(models: PlantModels, point: 'coolant-supply' | 'coolant-re
     states: [
       X.ice,
       ...LAYERS,
+      X.hollow,
+      X.rim,
       X.cop,
       X.copIce,
       X.freeze,
@@ -73,7 +75,18 @@ function coolantSense(models: PlantModels, point: 'coolant-supply' | 'coolant-re
 /** Electrical power of the running machine: falls or rises with the ice on the coil in a way that this plant repeats. */
 function powerSense(models: PlantModels, drive: Drive): Sense {
   return {
-    states: [X.ice, ...LAYERS, X.power, X.powerIce, X.freeze, X.freezeNow, X.thickening, X.growth],
+    states: [
+      X.ice,
+      ...LAYERS,
+      X.hollow,
+      X.rim,
+      X.power,
+      X.powerIce,
+      X.freeze,
+      X.freezeNow,
+      X.thickening,
+      X.growth,
+    ],
     predict: (x) => {
       const balance = models.machine.balance(
         drive.condenserAirC,

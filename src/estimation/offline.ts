@@ -19,6 +19,8 @@ export interface LogOptions {
   /** Time between rows, at least a minute. */
   readonly stepMs?: number;
   readonly seed?: number;
+  /** What somebody knows of the bank as the log begins. */
+  readonly begins?: 'empty' | 'full';
 }
 
 /** A longer silence is passed over without rows: nothing is known of the ice after it (and one date may be absurd). */
@@ -31,7 +33,7 @@ const stepEndMs = (atMs: number, stepMs: number): number => Math.floor(atMs / st
 export function estimateLog(
   config: SiteConfig,
   readings: Iterable<Reading>,
-  { stepMs = MINUTE_MS, seed = 1 }: LogOptions = {},
+  { stepMs = MINUTE_MS, seed = 1, begins }: LogOptions = {},
 ): LogRow[] {
   const rows: LogRow[] = [];
   let batch: Reading[] = [];
@@ -46,6 +48,7 @@ export function estimateLog(
     if (!estimator) {
       toMs = stepEndMs(reading.atMs, stepMs);
       estimator = createEstimator(config, { seed, startMs: toMs - stepMs });
+      if (begins) estimator.anchor(begins);
     }
     while (reading.atMs > toMs) {
       close();

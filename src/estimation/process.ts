@@ -12,6 +12,7 @@ import {
 } from '../plant/bank.ts';
 import type { DeliveryModel } from '../plant/delivery.ts';
 import type { IceMachineModel } from '../plant/ice-machine.ts';
+import { iceOnWall, meltedThrough, passWall } from './hollow.ts';
 import { X } from './layout.ts';
 import { meanOf, overturn, passLayers, scale, shift, type Passed } from './water.ts';
 
@@ -108,7 +109,7 @@ export function freezeWPerKOf(models: PlantModels, x: Float64Array): number {
   if (models.sealed) return 2 * freezeConductanceWPerK(models.bank, 0, 0, gain);
   return freezeConductanceWPerK(
     models.bank,
-    x[X.ice],
+    models.internal ? iceOnWall(x) : x[X.ice],
     Math.exp(x[X.thickening]),
     gain,
     Math.exp(x[X.growth]),
@@ -166,8 +167,12 @@ export function advance(models: PlantModels, x: Float64Array, drive: Drive, flow
     ? advanceInternal(models, x, drive, leakW)
     : advanceExternal(models, x, drive, leakW);
   charge(models, x, chargingW * drive.dtS);
+  if (models.internal) passWall(x, (-chargingW * drive.dtS) / fullJ(models));
   settle(models, x);
 }
+
+/** Latent heat of a full bank, J. */
+const fullJ = ({ bank }: PlantModels): number => FUSION_J_PER_KG * bank.mostIceKg;
 
 /** Heat capacity of the water that is not frozen, J/K. */
 function liquidJPerK(models: PlantModels, ice: number): number {
@@ -239,9 +244,9 @@ function spread(models: PlantModels, x: Float64Array, total: number): readonly n
 
 /** A bath round containers that freeze and melt from their walls. Gives the heat brought in by the loop, W. */
 function advanceSealed(models: PlantModels, x: Float64Array, drive: Drive, otherW: number): number {
-  const fullJ = FUSION_J_PER_KG * models.bank.mostIceKg;
+  const full = fullJ(models);
   const shutJPerK = models.bank.heatCapacityJPerK - bathJPerK(models);
-  const iceC = x[X.ice] < 0 ? (-x[X.ice] * fullJ) / shutJPerK : 0;
+  const iceC = x[X.ice] < 0 ? (-x[X.ice] * full) / shutJPerK : 0;
   const each = 0.25 * containerWPerK(models, x, drive, meanOf(x) < iceC);
   const passed: Passed = { loopW: 0, toIceJ: 0 };
   passLayers(
@@ -256,7 +261,8 @@ function advanceSealed(models: PlantModels, x: Float64Array, drive: Drive, other
     },
     passed,
   );
-  x[X.ice] = Math.max(SEALED_LEAST, x[X.ice] - passed.toIceJ / fullJ);
+  x[X.ice] = Math.max(SEALED_LEAST, x[X.ice] - passed.toIceJ / full);
+  passWall(x, passed.toIceJ / full);
   overturn(x, true);
   return passed.loopW;
 }
@@ -271,13 +277,15 @@ function containerWPerK(models: PlantModels, x: Float64Array, drive: Drive, free
   const melt = 2 * meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
   const still = 2 * freezeWPerK * Math.exp(x[X.freeze] + x[X.freezeNow]);
   const outside = 1 / (drive.flowing * melt + (1 - drive.flowing) * Math.min(still, melt));
-  const ice = Math.min(0.985, Math.max(0.015, x[X.ice]));
   if (freezing) {
+    const ice = Math.min(0.985, iceOnWall(x));
     return 1 / (outside + (Math.exp(x[X.thickening]) * -Math.log1p(-ice)) / (Math.LN2 * melt));
   }
-  const shape = (x[X.meltExponent] - models.bank.guess.meltExponent) * Math.log(2 * ice);
-  const inside = -Math.log(ice) / (Math.LN2 * melt);
-  return Math.exp(shape + x[X.meltBend] * (2 * ice - 1)) / (outside + inside);
+  const water = Math.min(0.985, x[X.ice] > 0 ? meltedThrough(x) : 1);
+  const shape =
+    (x[X.meltExponent] - models.bank.guess.meltExponent) * Math.log(2 * Math.max(0.015, 1 - water));
+  const inside = -Math.log1p(-water) / (Math.LN2 * melt);
+  return Math.exp(shape + x[X.meltBend] * (1 - 2 * water)) / (outside + inside);
 }
 
 /** Coolant in a coil within ice or water. Colder coolant than the bank freezes. Gives the heat brought in, W. */
@@ -295,6 +303,7 @@ function advanceInternal(models: PlantModels, x: Float64Array, drive: Drive, lea
   const heatJ = (loopW + leakW) * dt - storedJ;
   if (iced) melt(models, x, heatJ);
   else x[X.top] += heatJ / capacity;
+  passWall(x, (loopW * dt) / fullJ(models));
   return loopW;
 }
 
@@ -311,15 +320,24 @@ function throughCoil(models: PlantModels, x: Float64Array, drive: Drive, dt: num
 }
 
 function coilConductanceWPerK(models: PlantModels, x: Float64Array, freezing: boolean): number {
-  if (!(x[X.ice] > 0)) return BARE_PART * freezeWPerKOf(models, x);
-  if (freezing) return freezeWPerKOf(models, x);
-  // Ice that recedes from the tube leaves water whose resistance grows as a logarithm: it cannot grow far.
-  const least = LEAST_SHARE * models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
-  return Math.max(
-    least * Math.min(1, x[X.ice] / 0.03),
-    BARE_PART * 0.5 * freezeWPerKOf(models, x),
-    meltWPerKOf(models, x),
-  );
+  const bare = BARE_PART * freezeWPerKOf(models, x);
+  if (!(x[X.ice] > 0)) return bare;
+  return freezing ? freezeWPerKOf(models, x) : Math.max(0.5 * bare, meltFromWithinWPerK(models, x));
+}
+
+/**
+ * From brine to ice that recedes from its tube, W/K. The nameplate, meant at half a full bank melted, is shared evenly
+ * between the tube and the water round it (no source), whose resistance grows as the logarithm of its radius. Ice is
+ * gone where the brine comes in before it is elsewhere: the less of it, the less of the coil it covers.
+ */
+function meltFromWithinWPerK(models: PlantModels, x: Float64Array): number {
+  const growth = Math.exp(x[X.growth]);
+  const water = Math.log1p(growth * meltedThrough(x)) / Math.log1p(0.5 * growth);
+  const covered = x[X.meltExponent] * Math.log((x[X.ice] + 0.01) / 0.51);
+  const shape = covered + x[X.meltBend] * (1 - 2 * meltedThrough(x));
+  const nominal = models.bank.config.meltWPerK * Math.exp(x[X.melt] + x[X.meltNow]);
+  const least = LEAST_SHARE * Math.min(1, x[X.ice] / 0.03);
+  return nominal * Math.max(least, (2 * Math.exp(shape)) / (1 + water));
 }
 
 /** Takes the machine's heat out: from the ice when there is some, from warm water first when there is little. */

@@ -5,6 +5,7 @@ import {
   correct,
   foresee,
   sdOf,
+  truncate,
   type Belief,
   type Innovation,
   type Sense,
@@ -203,18 +204,15 @@ function learnMachine(learner: Learner, beliefs: readonly Belief[], now: Circums
 }
 
 function learnAnchors(learner: Learner, beliefs: readonly Belief[], now: Circumstances): void {
+  const softness = Math.hypot(NOISE.anchor.fresh, NOISE.anchor.alike);
   for (const { ice, side } of now.heard.anchors) {
     for (const belief of beliefs) {
-      const at = belief.mean[X.ice];
-      if ((side === 'at-least' && at >= ice) || (side === 'at-most' && at <= ice)) continue;
-      const found = correct(
-        belief,
-        learner.senses.ice,
-        ice,
-        varianceOf(NOISE.anchor, now.drive.dtS),
-        learner.work,
-      );
-      weigh(belief, logDensity(found));
+      if (side !== 'at') {
+        weigh(belief, truncate(belief, X.ice, ice, side, softness));
+        continue;
+      }
+      const noise = varianceOf(NOISE.anchor, now.drive.dtS);
+      weigh(belief, logDensity(correct(belief, learner.senses.ice, ice, noise, learner.work)));
     }
   }
 }
