@@ -83,6 +83,7 @@ function program(): Command {
     .option(...CONFIG)
     .option(...JSON_OUT)
     .option('--html', 'print it as a page that fits one sheet of A4 or Letter')
+    .option('--revision <number>', 'an older revision, the newest unless named')
     .action(ending(async () => (await import('./verbs/night.ts')).night));
   cli
     .command('nights')

@@ -14,17 +14,17 @@ import { createEstimator } from '../estimation/estimator.ts';
 import { createForecaster } from '../forecasting/forecaster.ts';
 import type { Message } from '../mqtt/intake.ts';
 import type { PointId, Reading } from '../points.ts';
-import type { PlanRecord } from '../record.ts';
-import { HOUR_MS, MINUTE_MS, nightAt, type Night } from '../time.ts';
+import type { CycleRecord, PlanRecord } from '../record.ts';
+import { HOUR_MS, MINUTE_MS, nightAt } from '../time.ts';
 import { AlertBoard } from './alert-board.ts';
 import { latchesOf, Memory } from './memory.ts';
-import { nightsToClose, writeSheet } from './nights.ts';
+import { NightBook } from './night-book.ts';
 import { OutlookSource } from './outlook.ts';
 import { Owner, withLimit } from './owner.ts';
 import type { DaemonEvents, DaemonParts } from './ports.ts';
 import { flush } from './flush.ts';
 import { HighWater } from './high-water.ts';
-import { LATE_MS, Past, replay, type Checkpoint } from './rewind.ts';
+import { LATE_MS, Past, relivedRecord, replay, type Checkpoint } from './rewind.ts';
 import { Tellings } from './telling.ts';
 import { WarmTonight } from './warm-tonight.ts';
 
@@ -67,7 +67,7 @@ export class Daemon {
   #last: Ticked | null = null;
   #lastPlan: PlanRecord | null = null;
   #lastUrgentMs = 0;
-  #closedBefore = '';
+  readonly #nights: NightBook;
   readonly #warm: WarmTonight;
 
   constructor(parts: DaemonParts) {
@@ -79,6 +79,7 @@ export class Daemon {
     this.owner = new Owner(config, store.loadMemory('owner'));
     this.#warm = new WarmTonight(store, config.site.zone);
     this.tellings = new Tellings(store.loadMemory('told'));
+    this.#nights = new NightBook(parts, (sheet) => this.#inform((events) => events.night?.(sheet)));
     this.#config = withLimit(config, this.owner.settings(nowMs).limitC);
     this.#stages = stagesOf(
       this.#config,
@@ -143,9 +144,14 @@ export class Daemon {
     const horizonMs = (this.#state.lastMs ?? Number.NEGATIVE_INFINITY) - LATE_MS;
     for (const reading of readings) {
       if (reading.atMs > horizonMs) this.#pending.push(reading);
-      else this.#past.late(reading.atMs);
+      else this.#late(reading);
     }
     if (readings.some(({ point, value }) => URGENT_POINTS.has(point) && value === 1)) this.#urgent();
+  }
+
+  #late(reading: Reading): void {
+    this.#past.late(reading.atMs);
+    this.#nights.late(reading, this.#parts.clock.nowMs());
   }
 
   #urgent(): void {
@@ -232,37 +238,9 @@ export class Daemon {
     this.#guarded('closing the night', () => {
       if (this.#clock.state === 'doubtful') return;
       const nowMs = this.#parts.clock.nowMs();
-      const { date } = nightAt(this.#config.site.zone, nowMs);
-      if (this.#closedBefore === date) return;
-      for (const night of nightsToClose(this.#parts.store, this.#config.site.zone, nowMs))
-        this.#close(night, nowMs);
-      this.#closedBefore = date;
+      this.#nights.close(this.#config, nowMs, this.#last?.estimate ?? null, this.tellings);
+      if (!this.#past.waiting) this.#nights.revise(this.#config, nowMs, this.tellings);
     });
-  }
-
-  #close(night: Night, nowMs: number): void {
-    const estimate = this.#last?.estimate ?? null;
-    const sheet = writeSheet(
-      this.#config,
-      this.#parts.store,
-      night,
-      nowMs,
-      estimate,
-      this.tellings.all(night.startMs, night.endMs),
-    );
-    if (sheet === null) return;
-    const noStorage = sheet.comparisons.find((one) => one.strategy === 'no-storage');
-    this.#parts.device.publishNight({
-      sheet,
-      costMoney: sheet.electricity.money,
-      savedMoney: noStorage?.savedMoney ?? null,
-      balanceResidualPct: sheet.balance.residualPct,
-    });
-    this.#parts.log.info(
-      { night: night.date },
-      `The night of ${night.date} is closed. ${sheet.balance.sentence}`,
-    );
-    this.#inform((events) => events.night?.(sheet));
   }
 
   /** Takes over a changed comfort limit; the forecaster goes on with what it has learned. */
@@ -335,7 +313,12 @@ export class Daemon {
   #liveAgain(from: Checkpoint, nowMs: number): void {
     const { config, store, seed } = this.#parts;
     const told = this.tellings.between(from.atMs, nowMs);
-    const { estimator, checkpoints } = replay(config, store, from, nowMs, seed, told);
+    const closedMs = nightAt(config.site.zone, nowMs).startMs;
+    const relived: CycleRecord[] = [];
+    const { estimator, checkpoints } = replay(config, store, from, nowMs, seed, told, (record, at) => {
+      if (record.atMs <= closedMs) relived.push(relivedRecord(record, at.estimate()));
+    });
+    this.#nights.relived(relived);
     this.#stages = { ...this.#stages, estimator };
     this.#past.relived(from, checkpoints);
   }

@@ -5,8 +5,11 @@ import { simpleWays } from '../reports/compare.ts';
 import type { ProbeState } from '../reports/coverage.ts';
 import { readSheet, type NightSheet } from '../reports/night-schema.ts';
 import { nextRevision, nightSheet } from '../reports/night.ts';
+import type { CycleRecord } from '../record.ts';
 import type { Store } from '../store/store.ts';
 import { DAY_MS, nightAt, nightOf, type Night } from '../time.ts';
+import { heardAgain } from './heard-again.ts';
+import type { Late } from './late-nights.ts';
 import { Tellings, type Telling } from './telling.ts';
 
 /** What the estimator knows at the end of a night. */
@@ -43,8 +46,8 @@ export function sheetOf(
   nowMs: number,
   end: NightEnd | null,
   told: readonly Telling[] = [],
+  records: readonly CycleRecord[] = store.recordsBetween(night.startMs - DAY_MS, night.endMs),
 ): NightSheet | null {
-  const records = store.recordsBetween(night.startMs - DAY_MS, night.endMs);
   if (!records.some((record) => record.atMs > night.startMs)) return null;
   const { timetable } = config.planning;
   const timetableAt = (atMs: number) =>
@@ -75,14 +78,51 @@ export function writeSheet(
   if (fresh === null) return null;
   const before = store.sheet(night.date);
   const written = before === null ? null : readSheet(before.body);
-  const sheet = written === null ? fresh : nextRevision(written, fresh);
+  const sheet = written === null ? fresh : nextRevision(written, fresh, 'it was closed again');
   if (sheet !== null) store.addSheet(night.date, JSON.stringify(sheet));
   return sheet;
 }
 
-/** A stored sheet, or null when the night has none. */
-export function storedSheet(store: Store, date: string): NightSheet | null {
-  const stored = store.sheet(date);
+/** Ice on hand that a replay may differ by without having learned anything new. */
+const SAME_KWH = 0.02;
+
+/**
+ * The next revision of a closed night from its records with what came late in its place; null when the night has no
+ * sheet yet, or the late readings change nothing. The records in the store stay: they say what was known when it was decided.
+ */
+export function reviseSheet(
+  config: SiteConfig,
+  store: Store,
+  night: Night,
+  nowMs: number,
+  late: Late,
+  told: readonly Telling[],
+): NightSheet | null {
+  const written = storedSheet(store, night.date);
+  if (written === null) return null;
+  const stored = store.recordsBetween(night.startMs - DAY_MS, night.endMs);
+  const moved = stored.some(({ atMs, iceOnHandKwh }) => {
+    const again = late.relived.get(atMs);
+    return again !== undefined && Math.abs(again.iceOnHandKwh - iceOnHandKwh) > SAME_KWH;
+  });
+  const relived = moved ? stored.map((record) => late.relived.get(record.atMs) ?? record) : stored;
+  const readings = store.readingsBetween(late.fromMs - DAY_MS, night.endMs, late.points);
+  const records = heardAgain(config, relived, readings);
+  if (records.every((record, i) => record === stored[i])) return null;
+  const fresh = sheetOf(config, store, night, nowMs, null, told, records);
+  const sheet = fresh === null ? null : nextRevision(written, fresh, lateWords(late));
+  if (sheet !== null) store.addSheet(night.date, JSON.stringify(sheet));
+  return sheet;
+}
+
+/** Why a sheet was revised, in a few words. */
+export function lateWords({ count, points }: Late): string {
+  return `${count} late reading${count === 1 ? '' : 's'} of ${points.join(', ')}`;
+}
+
+/** A stored sheet, the newest revision unless one is named; null when the night has none. */
+export function storedSheet(store: Store, date: string, revision?: number): NightSheet | null {
+  const stored = store.sheet(date, revision);
   return stored === null ? null : readSheet(stored.body);
 }
 

@@ -4,7 +4,8 @@
  */
 import type { Command } from '../commands.ts';
 import type { SiteConfig } from '../config.ts';
-import { createEstimator, type Estimator } from '../estimation/estimator.ts';
+import { createEstimator, type Estimator, type IceEstimate } from '../estimation/estimator.ts';
+import type { CycleRecord } from '../record.ts';
 import type { Store } from '../store/store.ts';
 import type { Telling } from './telling.ts';
 import { DAY_MS, HOUR_MS, MINUTE_MS } from '../time.ts';
@@ -30,6 +31,11 @@ export class Past {
   #checkpoints: Checkpoint[] = [];
   #lateMs = Number.POSITIVE_INFINITY;
   #relivedMs = Number.NEGATIVE_INFINITY;
+
+  /** Whether late readings wait for the next replay. */
+  get waiting(): boolean {
+    return Number.isFinite(this.#lateMs);
+  }
 
   /** Notes a late reading; one from before every checkpoint is kept in the store and asks for nothing. */
   late(atMs: number): void {
@@ -67,7 +73,10 @@ export interface Replayed {
   readonly checkpoints: readonly Checkpoint[];
 }
 
-/** An estimator that stands at `toMs`, from a checkpoint, what the store holds since then, and what was told since. */
+/**
+ * An estimator that stands at `toMs`, from a checkpoint, what the store holds since then, and what was told since. Each record
+ * on the way is shown to `visit` with the estimator as it stands at its time.
+ */
 export function replay(
   config: SiteConfig,
   store: Store,
@@ -75,6 +84,7 @@ export function replay(
   toMs: number,
   seed: number,
   told: readonly Telling[],
+  visit: (record: CycleRecord, estimator: Estimator) => void = () => undefined,
 ): Replayed {
   const estimator = createEstimator(config, { seed, startMs: from.atMs, memory: from.memory });
   const records = store.recordsBetween(from.atMs, toMs);
@@ -95,6 +105,7 @@ export function replay(
     estimator.advance(endMs, store.readingsBetween(startMs, endMs), ordered);
     while (untold.length > 0 && untold[0].atMs <= endMs) retell(estimator, untold.splice(0, 1)[0]);
     while (next < records.length && records[next].atMs <= endMs) {
+      if (records[next].atMs === endMs) visit(records[next], estimator);
       ordered = records[next].command;
       next += 1;
     }
@@ -109,4 +120,31 @@ export function replay(
 
 function retell(estimator: Estimator, { what, point }: Telling): void {
   estimator.anchor(what, point ?? undefined);
+}
+
+/** A record as it would have been written with this estimate; what was decided stays. */
+export function relivedRecord(record: CycleRecord, estimate: IceEstimate): CycleRecord {
+  const { iceOnHandKwh, lowKwh, highKwh, iceKg, inventoryPct, phase, waterC } = estimate;
+  const { heatLeakWPerK, chargingW, dischargingW, leakW } = estimate;
+  // what the coil took is what came into the bank less the pump's own heat; its moist part keeps its share
+  const pumpW = record.deliveredW === null ? 0 : Math.max(0, record.dischargingW - record.deliveredW);
+  const deliveredW = record.deliveredW === null ? null : Math.max(0, dischargingW - pumpW);
+  const share =
+    record.deliveredW !== null && record.deliveredW > 0 ? (record.latentW ?? 0) / record.deliveredW : 0;
+  return {
+    ...record,
+    iceOnHandKwh,
+    iceOnHandLowKwh: lowKwh,
+    iceOnHandHighKwh: highKwh,
+    iceKg,
+    inventoryPct,
+    phase,
+    waterC,
+    heatLeakWPerK,
+    chargingW,
+    dischargingW,
+    leakW,
+    deliveredW,
+    latentW: record.latentW === null || deliveredW === null ? record.latentW : deliveredW * share,
+  };
 }

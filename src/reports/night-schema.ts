@@ -179,6 +179,7 @@ export const nightSheetSchema = z
     night: z.strictObject({ date: z.iso.date(), start: instant, end: instant, hours: number }),
     summary: z.array(z.string()).describe('the night in a few sentences, in the units of the site'),
     revision: z.int().min(1),
+    revisedBecause: describe(z.string(), 'empty for the first; every revision is kept'),
     issued: instant,
     whole: z.boolean(),
     partialBecause: z.string(),

@@ -70,6 +70,7 @@ export function nightSheet(input: NightInput): NightSheet {
     site: headOf(site),
     night: nightHead(night),
     revision: input.revision,
+    revisedBecause: '',
     issued: formatInstant(input.issuedMs),
     ...coverage,
     strategy: spans[spans.length - 1].record.strategy,
@@ -125,17 +126,17 @@ function worthOfIce(site: SiteConfig, spans: readonly Span[], madeKwh: number): 
 }
 
 /**
- * The next revision of a sheet, or null when nothing but its number and date of issue would change: a sheet is written
- * once, and again only for a reason. What the learners said at the end of the night is known only then, so a sheet
- * made later without it keeps what was written.
+ * The next revision of a sheet with its reason, or null when nothing but its number and date of issue would change: a sheet is
+ * written once, and again only for a reason. What the learners said at the end of the night is known only then, so a
+ * sheet made later without it keeps what was written.
  */
-export function nextRevision(written: NightSheet, fresh: NightSheet): NightSheet | null {
+export function nextRevision(written: NightSheet, fresh: NightSheet, because: string): NightSheet | null {
   const unlearned = fresh.learned.length === 0;
   const whole = unlearned
     ? { ...fresh, learned: written.learned, probes: probesKept(written, fresh) }
     : fresh;
   if (bare(written) === bare(whole)) return null;
-  return { ...whole, revision: written.revision + 1 };
+  return { ...whole, revision: written.revision + 1, revisedBecause: because };
 }
 
 function probesKept(written: NightSheet, fresh: NightSheet): NightSheet['probes'] {
@@ -146,5 +147,5 @@ function probesKept(written: NightSheet, fresh: NightSheet): NightSheet['probes'
 }
 
 function bare(sheet: NightSheet): string {
-  return JSON.stringify({ ...sheet, revision: 0, issued: '' });
+  return JSON.stringify({ ...sheet, revision: 0, revisedBecause: '', issued: '' });
 }

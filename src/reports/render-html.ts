@@ -7,6 +7,7 @@ import type { NightSheet } from './night-schema.ts';
 import { toldWords } from './orders.ts';
 import { escaped, plotsOf } from './plots.ts';
 import { SHEET_STYLE } from './sheet-style.ts';
+import { revisedWords } from './summary.ts';
 
 const MOST_COMMANDS = 7;
 const MOST_HOURS = 12;
@@ -45,7 +46,8 @@ function headline(sheet: NightSheet, show: Display): string {
   const [first, ...rest] = sheet.summary.map(escaped);
   const partial =
     sheet.partialBecause === '' ? '' : `<p class="caution">Partial: ${escaped(sheet.partialBecause)}.</p>`;
-  return `<div><h1>Night of ${escaped(show.day(sheet.night.start))}</h1><p class="answer">${first}</p><p>${rest.join(' ')}</p>${partial}</div>`;
+  const revised = sheet.revision > 1 ? `<p class="caution">Revised: ${escaped(revisedWords(sheet))}</p>` : '';
+  return `<div><h1>Night of ${escaped(show.day(sheet.night.start))}</h1><p class="answer">${first}</p><p>${rest.join(' ')}</p>${partial}${revised}</div>`;
 }
 
 function titleBlock(sheet: NightSheet, show: Display): string {
@@ -231,7 +233,7 @@ function notes(sheet: NightSheet, show: Display): string[] {
   return [
     listed('Held back', held),
     listed('Wishes', wishes),
-    listed('Told', toldWords(sheet, show.clock).slice(-3)),
+    listed('Told', toldWords(sheet, (instant) => show.clock(instant)).slice(-3)),
     listed(
       'Silent',
       silent.map((one) => `${one.point} ${Math.round(one.staleMinutes)} min`),

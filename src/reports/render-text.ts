@@ -4,6 +4,7 @@ import type { NightSheet } from './night-schema.ts';
 import { toldWords } from './orders.ts';
 import { bothEnds, heading, noted, rule, table, wrapped } from './paper.ts';
 import { stripOf } from './strip.ts';
+import { revisedWords } from './summary.ts';
 
 const MARGIN = 12;
 const MOST_COMMANDS = 14;
@@ -16,6 +17,7 @@ export function renderText(sheet: NightSheet): string {
     '',
     ...sheet.summary.flatMap((sentence) => wrapped(sentence)),
     ...(sheet.partialBecause === '' ? [] : noted('PARTIAL', `${sheet.partialBecause}.`, MARGIN)),
+    ...(sheet.revision > 1 ? noted('REVISED', revisedWords(sheet), MARGIN) : []),
     '',
     ...stripOf(sheet, show),
     '',
@@ -241,7 +243,7 @@ function commandLines(sheet: NightSheet, show: Display): string[] {
     ...sheet.wishes.flatMap((one) =>
       noted('wish', `${one.wish} from ${show.clock(one.from)} to ${show.clock(one.to)}`, MARGIN - 4),
     ),
-    ...toldWords(sheet, show.clock).flatMap((words) => noted('told', words, MARGIN - 4)),
+    ...toldWords(sheet, (instant) => show.clock(instant)).flatMap((words) => noted('told', words, MARGIN - 4)),
     ...sheet.interlocks.flatMap((one) =>
       noted(
         'spoke',

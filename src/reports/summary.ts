@@ -38,3 +38,9 @@ function comfortSentence(sheet: Figures, show: Display): string {
   if (!(comfort.warmKh > 0)) return `Rooms stayed within the limit, ${warmest}.`;
   return `${show.degreeHours(comfort.warmKh)} ${show.degreeHourUnit} above the limit in ${Math.round(comfort.warmMinutes)} minutes, ${warmest}.`;
 }
+
+/** What a sheet that was written again says of that. */
+export function revisedWords({ revision, revisedBecause }: NightSheet): string {
+  const older = revision === 2 ? 'revision 1 is kept' : `revisions 1 to ${revision - 1} are kept`;
+  return `revision ${revision}, ${revisedBecause || 'written again'}; ${older}.`;
+}

@@ -11,6 +11,8 @@ import type { Waiting } from './waiting.ts';
 
 type Row = [ts: number, point: number, value: number];
 type Between = [fromMs: number, toMs: number];
+type ReadingRows = Database.Statement<[{ from: number; to: number }], Row>;
+const MOST_PREPARED = 32;
 
 export interface StoredSheet {
   readonly date: string;
@@ -42,6 +44,7 @@ export class Statements implements RecordTable {
   readonly #putSheet: Database.Statement<[date: string, body: string, same: string], number>;
   readonly #records: Database.Statement<Between, Cell[]>;
   readonly #dropRecords: Database.Statement;
+  readonly #prepared = new Map<string, ReadingRows>();
 
   constructor(db: Database.Database) {
     this.#db = db;
@@ -109,6 +112,16 @@ export class Statements implements RecordTable {
     return this.#db.transaction(() => this.#putSheet.get(date, body, date) ?? 1)();
   }
 
+  /** A replay asks the same thousands of times; the few selections of points there are stay prepared. */
+  #readings(sql: string): ReadingRows {
+    const known = this.#prepared.get(sql);
+    if (known !== undefined) return known;
+    if (this.#prepared.size >= MOST_PREPARED) this.#prepared.clear();
+    const fresh = this.#db.prepare<{ from: number; to: number }, Row>(sql).raw() as ReadingRows;
+    this.#prepared.set(sql, fresh);
+    return fresh;
+  }
+
   /** Raw readings and the means of older ones, in order of time. */
   readingsBetween(fromMs: number, toMs: number, wanted: ReadonlySet<string> | null): Reading[] {
     const ids = wanted === null ? null : [...wanted].flatMap((name) => this.#points.find(name) ?? []);
@@ -116,13 +129,9 @@ export class Statements implements RecordTable {
     const part = (table: string, value: string, middleMs: number): string =>
       `SELECT ts + ${middleMs}, point, ${value} FROM ${table}
        WHERE ts > :from - ${middleMs} AND ts <= :to - ${middleMs} ${only}`;
-    const rows = this.#db
-      .prepare<{ from: number; to: number }, Row>(
-        `${part('readings', 'value', 0)} UNION ALL ${part('minutes', 'mean', MINUTE_MS / 2)}
-         UNION ALL ${part('quarters', 'mean', (15 * MINUTE_MS) / 2)} ORDER BY 1, 2`,
-      )
-      .raw()
-      .all({ from: fromMs, to: toMs });
+    const sql = `${part('readings', 'value', 0)} UNION ALL ${part('minutes', 'mean', MINUTE_MS / 2)}
+         UNION ALL ${part('quarters', 'mean', (15 * MINUTE_MS) / 2)} ORDER BY 1, 2`;
+    const rows = this.#readings(sql).all({ from: fromMs, to: toMs });
     return rows.flatMap(([atMs, id, value]) => {
       const point = this.#points.textOf(id);
       if (!isPointId(point)) return [];

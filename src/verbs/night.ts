@@ -1,7 +1,7 @@
 /** `rimehold night [DATE]`: one night sheet as text, JSON or a page that prints on one sheet. */
 import type { SiteConfig } from '../config.ts';
-import { sheetFor } from '../daemon/nights.ts';
-import { EXIT } from '../errors.ts';
+import { sheetFor, storedSheet } from '../daemon/nights.ts';
+import { EXIT, RimeholdError } from '../errors.ts';
 import { renderHtml } from '../reports/render-html.ts';
 import { renderText } from '../reports/render-text.ts';
 import type { Store } from '../store/store.ts';
@@ -10,13 +10,21 @@ import { loadSite, siteStore } from './site.ts';
 
 export function night(
   date: string | undefined,
-  options: { config: string; json?: boolean; html?: boolean },
+  options: { config: string; json?: boolean; html?: boolean; revision?: string },
 ): number {
+  const revision = wantedRevision(options.revision);
   const config = loadSite(options.config);
   const store = siteStore(config, true);
   try {
     const wanted = wantedDate(config, store, date);
-    const sheet = sheetFor(config, store, wanted, nowMs(store));
+    const newest = sheetFor(config, store, wanted, nowMs(store));
+    const sheet = revision === null ? newest : storedSheet(store, wanted, revision);
+    if (sheet === null && newest !== null) {
+      console.error(
+        `Expected a revision of the sheet of ${wanted} from 1 to ${newest.revision}, found --revision ${revision}.`,
+      );
+      return EXIT.no;
+    }
     if (sheet === null) {
       console.error(`Expected a night with records, found none for ${wanted}; ${nightsKept(store)}.`);
       return EXIT.no;
@@ -28,10 +36,20 @@ export function night(
           ? renderHtml(sheet)
           : `${renderText(sheet)}\n`,
     );
+    if (newest !== null && sheet.revision < newest.revision)
+      console.error(
+        `This is revision ${sheet.revision}; the newest is ${newest.revision}, made because ${newest.revisedBecause}.`,
+      );
     return EXIT.yes;
   } finally {
     store.close();
   }
+}
+
+function wantedRevision(text: string | undefined): number | null {
+  if (text === undefined) return null;
+  if (/^[1-9]\d{0,5}$/.test(text)) return Number(text);
+  throw new RimeholdError('usage', `Expected --revision with a number from 1 on, found "${text}".`);
 }
 
 /** The date that was named, or that of the last closed night. */

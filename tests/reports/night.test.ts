@@ -320,12 +320,12 @@ describe('form', () => {
 
   it('is revised only for a reason', () => {
     const first = toldSheet();
-    expect(nextRevision(first, toldSheet({}, { issuedMs: JULY.endMs + 9e6 }))).toBeNull();
-    const late = nextRevision(first, toldSheet({ startKwh: 10.6 }));
-    expect(late?.revision).toBe(2);
+    expect(nextRevision(first, toldSheet({}, { issuedMs: JULY.endMs + 9e6 }), 'why')).toBeNull();
+    const late = nextRevision(first, toldSheet({ startKwh: 10.6 }), 'why');
+    expect(late).toMatchObject({ revision: 2, revisedBecause: 'why' });
     // Made again from the store alone, without what the learners knew at noon: no reason for a revision.
-    expect(nextRevision(first, toldSheet({}, { learned: [], probes: [] }))).toBeNull();
-    const forgetful = nextRevision(first, toldSheet({ startKwh: 10.6 }, { learned: [], probes: [] }));
+    expect(nextRevision(first, toldSheet({}, { learned: [], probes: [] }), 'why')).toBeNull();
+    const forgetful = nextRevision(first, toldSheet({ startKwh: 10.6 }, { learned: [], probes: [] }), 'why');
     expect(forgetful?.learned).toEqual(first.learned);
     expect(forgetful?.probes).toEqual(first.probes);
     expect(first.revision).toBe(1);

@@ -1,0 +1,89 @@
+/** The daemon's sheets: closes each night once it is over, and revises a closed one when readings come late for it. */
+import type { SiteConfig } from '../config.ts';
+import type { IceEstimate } from '../estimation/types.ts';
+import type { NightSheet } from '../reports/night-schema.ts';
+import type { Reading } from '../points.ts';
+import type { CycleRecord } from '../record.ts';
+import { nightAt, type Night } from '../time.ts';
+import { LateNights, nightsSince, type Late } from './late-nights.ts';
+import { lateWords, nightsToClose, reviseSheet, writeSheet } from './nights.ts';
+import type { DaemonParts } from './ports.ts';
+import type { Tellings } from './telling.ts';
+
+export class NightBook {
+  readonly #parts: Pick<DaemonParts, 'store' | 'device' | 'log' | 'config'>;
+  readonly #tell: (sheet: NightSheet) => void;
+  readonly #late: LateNights;
+  #closedBefore = '';
+
+  constructor(
+    parts: Pick<DaemonParts, 'store' | 'device' | 'log' | 'config'>,
+    tell: (sheet: NightSheet) => void,
+  ) {
+    this.#parts = parts;
+    this.#tell = tell;
+    this.#late = new LateNights(parts.config.site.zone);
+  }
+
+  /** Notes a reading that came too late for the estimator's own step. */
+  late(reading: Reading, nowMs: number): void {
+    this.#late.heard(reading, nowMs);
+  }
+
+  /** Takes records that the estimator lived through again; only those of closed nights matter. */
+  relived(records: Iterable<CycleRecord>): void {
+    this.#late.relived(records);
+  }
+
+  /** Writes the sheet of every night that is over and has none. */
+  close(config: SiteConfig, nowMs: number, estimate: IceEstimate | null, tellings: Tellings): void {
+    const { store } = this.#parts;
+    const { zone } = config.site;
+    const { date } = nightAt(zone, nowMs);
+    if (this.#closedBefore === date) return;
+    for (const night of nightsToClose(store, zone, nowMs)) {
+      const told = tellings.all(night.startMs, night.endMs);
+      const sheet = writeSheet(config, store, night, nowMs, estimate, told);
+      if (sheet === null) continue;
+      this.#publish(sheet);
+      this.#parts.log.info(
+        { night: night.date },
+        `The night of ${night.date} is closed. ${sheet.balance.sentence}`,
+      );
+    }
+    this.#closedBefore = date;
+  }
+
+  /** Writes the next revision of every closed night that late readings changed, once they have all come. */
+  revise(config: SiteConfig, nowMs: number, tellings: Tellings): void {
+    const late = this.#late.take(nowMs);
+    if (late === null) return;
+    for (const night of nightsSince(config.site.zone, late.fromMs, nowMs))
+      this.#revise(config, night, nowMs, late, tellings);
+  }
+
+  #revise(config: SiteConfig, night: Night, nowMs: number, late: Late, tellings: Tellings): void {
+    const told = tellings.all(night.startMs, night.endMs);
+    const sheet = reviseSheet(config, this.#parts.store, night, nowMs, late, told);
+    if (sheet === null) return;
+    this.#publish(sheet);
+    this.#parts.log.info(
+      { night: night.date, revision: sheet.revision },
+      `The sheet of ${night.date} has a revision ${sheet.revision}: ${lateWords(late)}. ${sheet.balance.sentence}`,
+    );
+  }
+
+  #publish(sheet: NightSheet): void {
+    const newest = this.#parts.store.sheets().at(-1)?.date;
+    // an older night's revision is no news of the last one
+    if (newest !== undefined && newest > sheet.night.date) return;
+    const noStorage = sheet.comparisons.find((one) => one.strategy === 'no-storage');
+    this.#parts.device.publishNight({
+      sheet,
+      costMoney: sheet.electricity.money,
+      savedMoney: noStorage?.savedMoney ?? null,
+      balanceResidualPct: sheet.balance.residualPct,
+    });
+    this.#tell(sheet);
+  }
+}
