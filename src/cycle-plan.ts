@@ -11,7 +11,7 @@ import {
 } from './cycle-values.ts';
 import type { IceEstimate } from './estimation/types.ts';
 import type { Forecast } from './forecasting/forecaster.ts';
-import type { PlanInputs } from './planning/build.ts';
+import type { LearnedPlant, PlanInputs } from './planning/build.ts';
 import { asides, explain, explainSimple } from './planning/explain.ts';
 import { followed } from './planning/followed.ts';
 import type { Plan } from './planning/plan.ts';
@@ -62,7 +62,24 @@ export function planInputs(
     houseW: usual ?? valueOf(live, 'house-power'),
     batteryPct: valueOf(live, 'battery-charge'),
     demand,
-    learned: { heatLeakWPerK: ice.heatLeakWPerK },
+    learned: learnedPlant(config, ice),
+  };
+}
+
+/** A figure so far off its site file is a fault of plant or estimate, and no figure to plan with. */
+const FURTHEST = 2;
+
+function learnedPlant({ bank }: SiteConfig, { learned, heatLeakWPerK }: IceEstimate): LearnedPlant {
+  const figure = (name: string, unknown: number): number =>
+    learned.find((one) => one.name === name)?.value ?? unknown;
+  const gain = (value: number): number => Math.min(FURTHEST, Math.max(1 / FURTHEST, value));
+  return {
+    heatLeakWPerK,
+    meltGain: gain(figure('melt-conductance', bank.meltWPerK) / bank.meltWPerK),
+    powerGain: gain(figure('machine-power-factor', 1)),
+    copGain: gain(figure('charging-factor', 1)),
+    copByOutdoor: figure('charging-by-outdoor', 0),
+    copByInventory: figure('charging-by-inventory', 0),
   };
 }
 

@@ -40,7 +40,19 @@ export interface PlanInputs {
   /** Terms and state of the demand charge; null where there is none. */
   readonly demand: { readonly price: number; readonly peakKw: number; readonly untilMs: number } | null;
   /** What the estimate has learned of the plant. */
-  readonly learned?: { readonly meltGain?: number; readonly heatLeakWPerK?: number };
+  readonly learned?: LearnedPlant;
+}
+
+/** What the plant has shown of itself, as factors over its site file; 1 (and 0) where nothing is known. */
+export interface LearnedPlant {
+  readonly meltGain?: number;
+  readonly heatLeakWPerK?: number;
+  /** Electrical power of the machine, and ice made for each unit of it. */
+  readonly powerGain?: number;
+  readonly copGain?: number;
+  /** Logarithm of the latter for each 10 K of outdoor air above the rating, and for a full inventory over an empty one. */
+  readonly copByOutdoor?: number;
+  readonly copByInventory?: number;
 }
 
 export function planProblem(config: SiteConfig, inputs: PlanInputs): PlanProblem {
@@ -104,9 +116,16 @@ type BySlot = (value: (atMs: number, t: number) => number) => Float64Array;
 
 function plantOf(config: SiteConfig, inputs: PlanInputs): PlanPlant {
   const machine = iceMachine(config);
+  const { powerGain = 1, copGain = 1, copByOutdoor = 0, copByInventory = 0 } = inputs.learned ?? {};
+  const { ratedOutdoorC } = config.chiller;
   return {
     ...bankLimits(config, inputs.learned),
-    operate: (outdoorC, inventoryPct) => machine.operate(outdoorC, inventoryPct),
+    operate: (outdoorC, inventoryPct) => {
+      const nominal = machine.operate(outdoorC, inventoryPct);
+      const slope = (copByOutdoor * (outdoorC - ratedOutdoorC)) / 10 + (copByInventory * inventoryPct) / 100;
+      const cop = copGain * Math.exp(slope);
+      return { powerW: nominal.powerW * powerGain, iceMakingW: nominal.iceMakingW * powerGain * cop };
+    },
   };
 }
 

@@ -89,6 +89,17 @@ describe('building a problem', () => {
     expect(planProblem(island, { ...inputs, scenarios: [seen] }).scenarios[0].panelW[10]).toBe(300);
   });
 
+  it('plans with the machine and the ice as they have shown themselves', () => {
+    const learned = { powerGain: 1.1, copGain: 0.9, copByOutdoor: -0.05, copByInventory: 0.1, meltGain: 0.5 };
+    const known = planProblem(config, { ...inputs, learned }).plant;
+    const nominal = planProblem(config, inputs).plant;
+    const [seen, told] = [known.operate(35, 50), nominal.operate(35, 50)];
+    expect(seen.powerW).toBeCloseTo(1.1 * told.powerW, 9);
+    // 10 K over the rating of 25 °C, half full.
+    expect(seen.iceMakingW).toBeCloseTo(told.iceMakingW * 1.1 * 0.9 * Math.exp(-0.05 + 0.05), 9);
+    expect(known.meltLimitW(6, 26)).toBeLessThan(nominal.meltLimitW(6, 26));
+  });
+
   it('tells a machine that stands in the cooled room', () => {
     expect(planProblem(site('saltmarsh.yaml'), inputs).chiller.heatsRoom).toBe(true);
     expect(planProblem(config, inputs).chiller.heatsRoom).toBe(false);
