@@ -126,3 +126,33 @@ export function parseQuantity(text: unknown, dimension: Dimension): ParsedQuanti
 
 /** How a site shows figures: SI, or the inch-pound units of the trade. */
 export type DisplayUnits = 'SI' | 'IP';
+
+/** What each inside unit is, and how it reads in SI and IP: unit and decimals. */
+const SHOWN: Readonly<
+  Record<string, { dimension: Dimension; SI: string; IP: string; digits: readonly [SI: number, IP: number] }>
+> = {
+  degC: { dimension: 'temperature', SI: '°C', IP: '°F', digits: [1, 1] },
+  W: { dimension: 'power', SI: 'W', IP: 'W', digits: [0, 0] },
+  'L/min': { dimension: 'waterFlow', SI: 'L/min', IP: 'gal/min', digits: [1, 2] },
+  mm: { dimension: 'level', SI: 'mm', IP: 'in', digits: [0, 1] },
+  kg: { dimension: 'mass', SI: 'kg', IP: 'lb', digits: [1, 0] },
+  '%': { dimension: 'fraction', SI: '%', IP: '%', digits: [0, 0] },
+  K: { dimension: 'temperatureDifference', SI: 'K', IP: '°F', digits: [2, 2] },
+  'W/K': { dimension: 'conductance', SI: 'W/K', IP: 'BTU/(h degF)', digits: [1, 1] },
+};
+
+/** A value in an inside unit as a site shows it; electricity stays in W. An unknown unit is left as it is. */
+export function shownIn(
+  value: number,
+  unit: string,
+  units: DisplayUnits,
+): { readonly value: number; readonly unit: string; readonly digits: number } {
+  if (!Object.hasOwn(SHOWN, unit)) return { value, unit, digits: Math.abs(value) < 10 ? 2 : 0 };
+  const known = SHOWN[unit];
+  const shown = fromInside(value, known[units], known.dimension) ?? value;
+  return {
+    value: shown,
+    unit: known[units].replace('degF', '°F'),
+    digits: known.digits[units === 'SI' ? 0 : 1],
+  };
+}

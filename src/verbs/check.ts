@@ -1,17 +1,24 @@
 /** `rimehold check`: whether the plant may run: the file, the database, the broker, and each point as it is heard. */
-import { existsSync } from 'node:fs';
 import type { SiteConfig } from '../config.ts';
 import { heatIntoRoom } from '../dispatch/alerts.ts';
 import { EXIT, RimeholdError, sentenceOf } from '../errors.ts';
 import { BrokerClient } from '../mqtt/client.ts';
 import { Intake, type PointStatus } from '../mqtt/intake.ts';
 import { pointSpec, valueOf } from '../points.ts';
-import type { ProbeState } from '../reports/coverage.ts';
-import { readSheet } from '../reports/night-schema.ts';
 import { noted, PAPER_WIDTH, wrapped } from '../reports/paper.ts';
-import { formatDuration, formatInstant, parseDuration, ZONE_DATA_VERSION } from '../time.ts';
+import { fixed } from '../reports/display.ts';
+import {
+  formatDuration,
+  formatInstant,
+  localClock,
+  localDate,
+  parseDuration,
+  ZONE_DATA_VERSION,
+} from '../time.ts';
+import { shownIn, type DisplayUnits } from '../units.ts';
 import { brokerOptions } from './broker.ts';
-import { loadSite, siteStore } from './site.ts';
+import { lookAtStore, type StoreLook } from './check-store.ts';
+import { loadSite } from './site.ts';
 import { VERSION } from './version.ts';
 
 interface PointLine {
@@ -23,6 +30,7 @@ interface PointLine {
   readonly ageS: number | null;
   readonly required: boolean;
   readonly errorAtIcePointK: number | null;
+  readonly errorSdK: number | null;
   readonly checked: string | null;
   readonly note: string;
 }
@@ -42,6 +50,9 @@ interface Verdict {
   readonly database: string;
   readonly broker: string;
   readonly points: readonly PointLine[];
+  /** When the daemon last kept what it has learned; null before. */
+  readonly learnedAt: string | null;
+  readonly learned: NonNullable<StoreLook['estimate']>['learned'];
   readonly warnings: readonly string[];
   readonly mayRun: boolean;
 }
@@ -54,11 +65,13 @@ export async function check(options: { config: string; listen: string; json?: bo
       `Expected --listen with an ISO 8601 duration such as PT30S, found "${options.listen}".`,
     );
   const config = loadSite(options.config);
-  const { words: database, sound, probes } = checkStore(config);
+  const { words: database, sound, estimate } = lookAtStore(config);
   const heard = config.broker.embedded
     ? unheard(config)
     : await listen(config, listenMs, options.json !== true);
-  const points = heard.intake.status().map((status) => pointLine(status, heard.intake, probes));
+  const points = heard.intake
+    .status()
+    .map((status) => pointLine(status, heard.intake, estimate?.probes ?? []));
   const missing = config.broker.embedded ? [] : points.filter((point) => point.required && !point.fresh);
   const verdict: Verdict = {
     site: `${config.site.name} (${config.site.id})`,
@@ -67,6 +80,8 @@ export async function check(options: { config: string; listen: string; json?: bo
     database,
     broker: heard.broker,
     points,
+    learnedAt: estimate === null ? null : formatInstant(estimate.atMs),
+    learned: estimate?.learned ?? [],
     warnings: warningsOf(config),
     mayRun: sound && heard.connected && heard.refused.length === 0 && missing.length === 0,
   };
@@ -78,40 +93,8 @@ export async function check(options: { config: string; listen: string; json?: bo
       ? []
       : [`${missing.map(({ point }) => point).join(', ')} must be heard`]),
   ];
-  console.log(options.json ? JSON.stringify(verdict) : text(verdict, heard.connected, obstacles));
+  console.log(options.json ? JSON.stringify(verdict) : text(verdict, heard.connected, obstacles, config));
   return verdict.mayRun ? EXIT.yes : EXIT.no;
-}
-
-function checkStore(config: SiteConfig): { words: string; sound: boolean; probes: readonly ProbeState[] } {
-  const { file } = config.store;
-  if (!existsSync(file))
-    return { words: `${file} is not there yet; the first run makes it`, sound: true, probes: [] };
-  try {
-    const store = siteStore(config, true);
-    try {
-      const faults = store.verify();
-      const probes = lastProbes(store.sheets().at(-1)?.body ?? null);
-      return faults.length === 0
-        ? { words: `${file} is sound`, sound: true, probes }
-        : { words: `${file} is damaged: ${faults[0]}; put a backup in its place`, sound: false, probes };
-    } finally {
-      store.close();
-    }
-  } catch (error) {
-    return { words: sentenceOf(error), sound: false, probes: [] };
-  }
-}
-
-/** What the last night sheet says of each probe at 0 °C. */
-function lastProbes(body: string | null): readonly ProbeState[] {
-  const sheet = body === null ? null : readSheet(body);
-  return (sheet?.probes ?? []).map(({ point, errorAtIcePointK, errorSdK, checked, setAside }) => ({
-    point: point as ProbeState['point'],
-    errorAtIcePointK,
-    sd: errorSdK,
-    atMs: checked === null ? null : Date.parse(checked),
-    setAside,
-  }));
 }
 
 function unheard(config: SiteConfig): Heard {
@@ -152,7 +135,9 @@ async function heardAll(intake: Intake, listenMs: number): Promise<void> {
   }
 }
 
-function pointLine(status: PointStatus, intake: Intake, probes: readonly ProbeState[]): PointLine {
+type Probes = NonNullable<StoreLook['estimate']>['probes'];
+
+function pointLine(status: PointStatus, intake: Intake, probes: Probes): PointLine {
   const nowMs = Date.now();
   const spec = pointSpec(status.id);
   const probe = probes.find(({ point }) => point === status.id);
@@ -167,6 +152,7 @@ function pointLine(status: PointStatus, intake: Intake, probes: readonly ProbeSt
     ageS: status.last === null ? null : Math.max(0, Math.round((nowMs - status.last.atMs) / 1000)),
     required: spec?.required === true,
     errorAtIcePointK: probe?.errorAtIcePointK ?? null,
+    errorSdK: probe?.errorAtIcePointK == null ? null : probe.sd,
     checked: probe?.atMs == null ? null : formatInstant(probe.atMs),
     note: noteOf(status, fresh),
   };
@@ -189,10 +175,15 @@ function warningsOf(config: SiteConfig): string[] {
   return warnings;
 }
 
-function text(verdict: Verdict, connected: boolean, obstacles: readonly string[]): string {
+function text(
+  verdict: Verdict,
+  connected: boolean,
+  obstacles: readonly string[],
+  { site }: SiteConfig,
+): string {
   const points = [
-    'point                    last value      age    at 0 °C   note',
-    ...verdict.points.flatMap(rows),
+    'point                    last value      age  ice point   note',
+    ...verdict.points.flatMap((line) => rows(line, site.units)),
   ];
   return [
     ...wrapped(`${verdict.site}, rimehold ${verdict.version}, zone rules ${verdict.zoneData}`),
@@ -201,28 +192,58 @@ function text(verdict: Verdict, connected: boolean, obstacles: readonly string[]
     '',
     ...(connected ? points : ['No point was listened for: the broker comes first.']),
     '',
+    ...probeLines(verdict, site),
+    ...learnedLines(verdict, site),
     ...verdict.warnings.flatMap((warning) => wrapped(warning)),
     ...wrapped(obstacles.length === 0 ? 'The plant may run.' : `Not yet: ${obstacles.join('; ')}.`),
   ].join('\n');
 }
 
 /** A point on one line, its note below it where both are too long for 80 columns. */
-function rows(line: PointLine): string[] {
+function rows(line: PointLine, units: DisplayUnits): string[] {
   const name = `${line.fresh ? ' ' : line.required ? '!' : '?'} ${line.point.padEnd(22)}`;
   const unusable = line.value === null && line.ageS === null;
-  const head = unusable ? name : `${name} ${figures(line)}`;
+  const head = unusable ? name : `${name} ${figures(line, units)}`;
   if (line.note === '') return [head.trimEnd()];
   const whole = `${head}   ${line.note}`;
   if (Array.from(whole).length <= PAPER_WIDTH) return [whole];
   return [head.trimEnd(), ...noted('', line.note, 4)];
 }
 
-function figures(line: PointLine): string {
-  const value = line.value === null ? '–' : `${Number(line.value.toFixed(2))} ${line.unit}`;
+function figures(line: PointLine, units: DisplayUnits): string {
+  const shown = shownIn(line.value ?? 0, line.unit, units);
+  // finer than on the page: probes are compared here
+  const value = line.value === null ? '–' : `${Number(shown.value.toFixed(2))} ${shown.unit}`.trim();
   const age = line.ageS === null ? '–' : `${line.ageS} s`;
   const error =
     line.errorAtIcePointK === null
       ? '–'
-      : `${line.errorAtIcePointK >= 0 ? '+' : '−'}${Math.abs(line.errorAtIcePointK).toFixed(2)} K`;
+      : `${line.errorAtIcePointK >= 0 ? '+' : ''}${shownText(line.errorAtIcePointK, 'K', units)}`;
   return `${value.padStart(10)} ${age.padStart(8)} ${error.padStart(10)}`;
+}
+
+function shownText(value: number, unit: string, units: DisplayUnits): string {
+  const shown = shownIn(value, unit, units);
+  return `${fixed(shown.value, shown.digits)} ${shown.unit}`.trim();
+}
+
+/** When ice last checked each probe, and how sure its error is. */
+function probeLines({ points }: Verdict, { units, zone }: SiteConfig['site']): string[] {
+  const lines = points.flatMap(({ point, errorAtIcePointK, errorSdK, checked }) =>
+    errorAtIcePointK === null || errorSdK === null || checked === null
+      ? []
+      : `  ${point.padEnd(24)} ${shownText(errorAtIcePointK, 'K', units)} ± ${shownText(errorSdK, 'K', units)}, checked by ice on ${localDate(zone, Date.parse(checked))}`,
+  );
+  return lines.length === 0 ? [] : ['probes at the ice point, as the daemon last kept them', ...lines, ''];
+}
+
+function learnedLines({ learned, learnedAt }: Verdict, { units, zone }: SiteConfig['site']): string[] {
+  if (learnedAt === null) return [];
+  const atMs = Date.parse(learnedAt);
+  const head = `learned of this plant, as the daemon kept it on ${localDate(zone, atMs)} at ${localClock(zone, atMs)}`;
+  const lines = learned.map(
+    ({ name, value, sd, unit }) =>
+      `  ${name.padEnd(24)} ${shownText(value, unit, units)} ± ${shownText(sd, unit, units)}`,
+  );
+  return [head, ...lines, ''];
 }

@@ -9,6 +9,7 @@ import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
 import type { NightSheet } from '../../src/reports/night-schema.ts';
 import { renderText } from '../../src/reports/render-text.ts';
 import { HOUR_MS, MINUTE_MS, noonOf } from '../../src/time.ts';
+import { lookAtStore } from '../../src/verbs/check-store.ts';
 import type { NightsView, NowAnswer } from '../../src/web/source.ts';
 import { hasChromium } from './chromium.ts';
 import { PASSPHRASE, startHouse, type House } from './house.ts';
@@ -210,6 +211,16 @@ describe.skipIf(!hasChromium)('the page on a real evening', () => {
     const { page } = viewer;
     await open('plant');
     expect(await viewer.text('main')).toContain('Heat leak of the bank');
+    // what `rimehold check` reads from the database was kept at most half an hour ago
+    const kept = lookAtStore(house.config).estimate;
+    const { learned, points } = await now();
+    expect(kept?.learned.map(({ name }) => name)).toEqual(learned.map(({ name }) => name));
+    expect(kept?.learned[0].value).toBeCloseTo(learned[0].value, 0);
+    const checked = points
+      .filter(({ errorAtIcePointK }) => errorAtIcePointK !== null)
+      .map(({ point }) => point);
+    const keptChecked = kept?.probes.filter(({ errorAtIcePointK }) => errorAtIcePointK !== null);
+    expect(checked).toEqual(expect.arrayContaining(keptChecked?.map(({ point }) => point) ?? []));
     await page.getByRole('button', { name: 'The bank is full' }).press('Enter');
     await page.getByText('The estimate goes to a full bank at once').waitFor();
     const before = (await now()).record?.iceOnHandKwh ?? 0;

@@ -121,7 +121,7 @@ describe.skipIf(!hasMosquitto)('mosquitto', () => {
     expect(err).toBe('Listening for PT2S …\n');
     expectNoInsides(out);
     expectNarrow(out);
-    expect(out).toMatch(/^ {2}leaving-water +4\.25 degC +\d+ s/m);
+    expect(out).toMatch(/^ {2}leaving-water +4\.25 °C +\d+ s/m);
     expect(out).toMatch(/^! chiller-power +nothing on juniper\/plugs\/machine$/m);
     expect(out).toMatch(/^\? pump-power +expected JSON/m);
     expect(out.replaceAll(/\s+/g, ' ')).toMatch(

@@ -1,6 +1,6 @@
 /** Every figure and time of the page becomes text here. Values come in SI and °C; times are the site's own. */
 import type { DisplayUnits } from '../../units.ts';
-import { fromInside, type Dimension } from '../../units.ts';
+import { fromInside, shownIn } from '../../units.ts';
 import type { ZoneOffset } from '../source.ts';
 import { strings } from './strings.ts';
 
@@ -82,28 +82,9 @@ export function countdown(ms: number): string {
   return hours > 0 ? `${hours}:${rest}` : rest;
 }
 
-/** What each point unit is and how it reads in SI and IP. */
-const UNITS: Readonly<
-  Record<string, { dimension: Dimension; SI: string; IP: string; digits: [number, number] }>
-> = {
-  degC: { dimension: 'temperature', SI: '°C', IP: '°F', digits: [1, 1] },
-  W: { dimension: 'power', SI: 'W', IP: 'W', digits: [0, 0] },
-  'L/min': { dimension: 'waterFlow', SI: 'L/min', IP: 'gal/min', digits: [1, 2] },
-  mm: { dimension: 'level', SI: 'mm', IP: 'in', digits: [0, 1] },
-  kg: { dimension: 'mass', SI: 'kg', IP: 'lb', digits: [1, 0] },
-  '%': { dimension: 'fraction', SI: '%', IP: '%', digits: [0, 0] },
-  K: { dimension: 'temperatureDifference', SI: 'K', IP: '°F', digits: [2, 2] },
-  'W/K': { dimension: 'conductance', SI: 'W/K', IP: 'BTU/(h degF)', digits: [1, 1] },
-};
-
 function shown(value: number, unit: string, units: DisplayUnits): { figure: string; unit: string } {
-  const known = UNITS[unit];
-  if (!known) return { figure: plain(value, Math.abs(value) < 10 ? 2 : 0), unit };
-  const figure = plain(
-    fromInside(value, known[units], known.dimension),
-    known.digits[units === 'SI' ? 0 : 1],
-  );
-  return { figure, unit: known[units].replace('degF', '°F') };
+  const as = shownIn(value, unit, units);
+  return { figure: plain(as.value, as.digits), unit: as.unit };
 }
 
 const offsetAt = (offsets: readonly ZoneOffset[], atMs: number): number =>
@@ -155,7 +136,7 @@ export function createFormat({ units, currency, offsets }: FormatSettings): Form
     temperatureFigure: (c) => shown(c, 'degC', units).figure,
     temperatureNumber: (c) => (units === 'SI' ? c : c * 1.8 + 32),
     energyNumber: (kwh) => kwh * energyFactor,
-    temperatureUnit: UNITS['degC'][units],
+    temperatureUnit: shownIn(0, 'degC', units).unit,
     difference: (k) => known(k, 'K'),
     energy: (kwh) => (kwh === null ? strings.unknown : `${energyFigure(kwh)} ${energyUnit}`),
     energyFigure,
