@@ -8,7 +8,6 @@
 import type { ActuatorConfig, SiteConfig } from '../config.ts';
 import { MACHINES, type ClearedCommand, type Machine } from '../order.ts';
 import { valueOf, type LivePoints } from '../points.ts';
-import { formatDuration } from '../time.ts';
 import type { Message } from './intake.ts';
 import type { Publication } from './link.ts';
 import { openPayload } from './payload.ts';
@@ -139,10 +138,13 @@ function stateOf(text: string, config: ActuatorConfig): boolean | null {
   return text === config.off || text === 'false' ? false : null;
 }
 
+const minutes = (ms: number): string =>
+  ms < 120_000 ? `${Math.round(ms / 1000)} s` : `${Math.round(ms / 60_000)} min`;
+
 function faultOf(state: State, live: LivePoints, nowMs: number): string | null {
   const { ordered, sinceMs, config } = state;
   if (ordered === null || sinceMs === null || nowMs - sinceMs < config.confirmWithinMs) return null;
-  const told = `The ${NAMES[state.machine]} was told to be ${ordered ? 'on' : 'off'} ${formatDuration(nowMs - sinceMs)} ago`;
+  const told = `The ${NAMES[state.machine]} was told to be ${ordered ? 'on' : 'off'} ${minutes(nowMs - sinceMs)} ago`;
   if (state.says !== null && state.says !== ordered) {
     return `${told} but says that it is ${state.says ? 'on' : 'off'}; look at ${config.topic}.`;
   }

@@ -86,7 +86,7 @@ describe('readback', () => {
       {
         machine: 'chiller',
         id: 'actuator-chiller',
-        sentence: 'The ice machine was told to be on PT2M ago but says that it is off; look at plug7/set.',
+        sentence: 'The ice machine was told to be on 2 min ago but says that it is off; look at plug7/set.',
       },
     ]);
     made.hear(say('ON'));
@@ -151,7 +151,7 @@ describe('confirmation by power', () => {
     const made = actuators(byPower);
     made.order(order(false), NOW_MS);
     expect(made.faults(drawing(551.6), NOW_MS + 10 * MINUTE)[0].sentence).toBe(
-      'The ice machine was told to be off PT10M ago but draws 552 W; look at plug7/set and at the machine.',
+      'The ice machine was told to be off 10 min ago but draws 552 W; look at plug7/set and at the machine.',
     );
   });
 
