@@ -40,6 +40,6 @@ svg .missing{fill:var(--caution)}
 section{margin-bottom:8px}
 p+table{margin-top:8px}
 footer{border-top:1px solid var(--ink);padding-top:4px;font-size:12px;line-height:1.25}
-@media (max-width:640px){main{padding:8px}body{overflow-wrap:anywhere}header{flex-direction:column}figure{overflow-x:auto}svg{min-width:700px}.columns{grid-template-columns:minmax(0,1fr)}table{font-size:13px}th,td{padding-left:6px}.block{font-size:13px}}
+@media (max-width:640px){main{padding:8px}header{flex-direction:column}figure,section{overflow-x:auto}svg{min-width:700px}.columns{grid-template-columns:minmax(0,1fr)}table,.block{font-size:12px}th,td{padding-left:4px}}
 @media print{html{background:none}body{font-size:10px;line-height:1.3}main{max-width:none;padding:0}h1{font-size:12px}.answer{font-size:14px}.block{font-size:10px}svg text{font-size:13px}footer{font-size:8.5px}}
 `.trim();

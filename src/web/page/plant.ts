@@ -119,7 +119,7 @@ function errorText({ errorAtIcePointK, errorSdK, errorDateMs }: PointRow, format
 
 function learnedTable(list: readonly LearnedFigure[], format: Format): HTMLTableElement {
   const rows = list.map((learned) => {
-    const what = h('span', {}, words.learnedNames[learned.name]?.what ?? learned.name);
+    const what = h('span', { class: 'phrase' }, words.learnedNames[learned.name]?.what ?? learned.name);
     const text = (value: number): string => learnedText(learned, value, format);
     return row(what, figure(learned.value, text(learned.value)), figure(learned.sd, text(learned.sd)));
   });
