@@ -61,24 +61,3 @@ function stepEnergy(energy: readonly EnergySlot[], overMs: number): Map<number, 
   }
   return steps;
 }
-
-/** What a mean power over one averaging step would add to the month's bill. */
-export function demandCostMoney(state: DemandState, meanKw: number): number {
-  return state.price * Math.max(0, meanKw - state.peakKw);
-}
-
-/** Which slots are measured for demand; all false without a demand charge. */
-export function demandMeasured(
-  config: SiteConfig,
-  startMs: number,
-  slotMs: number,
-  count: number,
-): boolean[] {
-  const demand = config.power.tariff?.demand;
-  const endMs = startMs + slotMs * count;
-  const measured = demand ? clockStretches(meterZone(config), demand.from, demand.to, startMs, endMs) : [];
-  return Array.from({ length: count }, (_, i) => {
-    const at = startMs + i * slotMs;
-    return measured.some((stretch) => stretch.startMs < at + slotMs && at < stretch.endMs);
-  });
-}

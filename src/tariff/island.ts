@@ -53,14 +53,6 @@ export function islandSlots(config: SiteConfig, outlook: IslandOutlook): IslandS
   return walks.map((walk, i) => slotOf(island, outlook, walk, later[i], quiet[i], i));
 }
 
-/** What a plant power costs over a slot; null when the slot cannot carry it. */
-export function islandCostMoney(slot: IslandSlot, plantW: number, slotMs: number): number | null {
-  if (!(plantW <= slot.mostW)) return null;
-  const paidKwh = (Math.max(0, plantW - slot.freeW) / 1000) * (slotMs / HOUR_MS);
-  if (paidKwh === 0) return 0;
-  return slot.buy === null ? null : paidKwh * slot.buy;
-}
-
 /** The battery without the ice plant: charged by what the house leaves, never below its floor. */
 function walkBattery(island: IslandConfig, outlook: IslandOutlook): Walk[] {
   const { battery } = island;

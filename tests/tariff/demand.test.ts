@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { HOUR_MS, MINUTE_MS } from '../../src/time.ts';
-import { demandCostMoney, demandMeasured, demandSoFar, monthAt } from '../../src/tariff/demand.ts';
+import { MINUTE_MS } from '../../src/time.ts';
+import { demandSoFar, monthAt } from '../../src/tariff/demand.ts';
 import { siteWith, utc } from './site.ts';
 
 const config = siteWith({
@@ -31,9 +31,6 @@ describe('demand', () => {
       untilMs: utc('2026-07-31T22:00Z'),
     });
     expect(state?.peakKw).toBeCloseTo(1.2, 12);
-    if (!state) return;
-    expect(demandCostMoney(state, 1.1)).toBe(0);
-    expect(demandCostMoney(state, 2.2)).toBeCloseTo(7.5, 12);
   });
 
   it('gathers shorter slots into one averaging step', () => {
@@ -46,11 +43,6 @@ describe('demand', () => {
   it('is absent without a demand charge and empty at the start of a month', () => {
     expect(demandSoFar(siteWith({ tariff: { default: 0.2 } }), [], utc('2026-07-08T00:00Z'))).toBeNull();
     expect(demandSoFar(config, [], utc('2026-07-08T00:00Z'))).toMatchObject({ peakKw: 0, peakAtMs: null });
-  });
-
-  it('marks the measured slots', () => {
-    const measured = demandMeasured(config, utc('2026-07-08T10:00Z'), HOUR_MS, 12);
-    expect(measured.map((yes, i) => (yes ? i + 12 : 0)).filter((hour) => hour > 0)).toEqual([16, 17, 18, 19]);
   });
 
   it("takes the month from the meter's clock", () => {
