@@ -7,6 +7,7 @@ import type { SiteConfig } from '../config.ts';
 import type { Mode } from '../commands.ts';
 import type { CycleRecord } from '../record.ts';
 import { formatInstant, type Night } from '../time.ts';
+import { culpritOf, type Culprit, type Evidence, type Step } from './culprit.ts';
 import type { Display } from './display.ts';
 import type { ProbeState } from './coverage.ts';
 import type { NightSheet } from './night-schema.ts';
@@ -20,10 +21,6 @@ const WATER_J_PER_L_K = 4205;
 const LARGE_PCT = 5;
 /** Below this throughput a percentage says nothing. */
 const LEAST_THROUGHPUT_KWH = 0.5;
-/** Difference of heard and recorded heat from which the flow or the pair of thermometers is suspected. */
-const FLOW_SUSPECT = 0.1;
-/** An error at the ice point from which a thermometer is the suspect: the one-wire class's own ±0.5 K (common practice). */
-const PROBE_SUSPECT_K = 0.5;
 
 export interface IceState {
   readonly kwh: number;
@@ -95,6 +92,7 @@ export interface BalanceInput {
   readonly start: IceState;
   readonly night: Night;
   readonly probes: readonly ProbeState[];
+  readonly learned: Evidence['learned'];
   readonly doubtfulMinutes: number;
   /** What the owner's word alone changed of the ice on hand. */
   readonly toldKwh: number;
@@ -113,11 +111,23 @@ export function balanceOf(input: BalanceInput): Balance {
   const throughput = Math.max(inKwh, outKwh + leakKwh);
   const residualPct = throughput >= LEAST_THROUGHPUT_KWH ? (residualKwh / throughput) * 100 : null;
   const uncertaintyKwh = Math.hypot(halfWidth(start), halfWidth(end));
-  const whileKwh = residualsByMode(spans, start, site);
+  const steps = stepsOf(spans, start, site);
+  const whileKwh = residualsByMode(steps);
   const heard = heardOut(spans);
   const verdict = verdictOf(residualPct, residualKwh, uncertaintyKwh);
   const culprit =
-    verdict === 'closes' || verdict === 'unknown' ? '' : culpritOf(residualKwh, whileKwh, heard, input);
+    verdict === 'closes' || verdict === 'unknown'
+      ? null
+      : culpritOf({
+          ...input,
+          residualKwh,
+          inKwh,
+          outKwh,
+          leakKwh,
+          parts: whileKwh,
+          steps,
+          heardOut: heard.kwh === null ? null : { heardKwh: heard.kwh, countedKwh: heard.recordedKwh },
+        });
   return {
     inKwh: rounded(inKwh, 3),
     outKwh: rounded(outKwh, 3),
@@ -136,7 +146,7 @@ export function balanceOf(input: BalanceInput): Balance {
     heardOutKwh: heard.kwh === null ? null : rounded(heard.kwh, 3),
     heardOutHoursPct: rounded(heard.hoursPct, 1),
     verdict,
-    culprit,
+    culprit: culprit?.words ?? '',
     sentence: sentenceFor(verdict, residualKwh, residualPct, uncertaintyKwh, culprit, input.show),
   };
 }
@@ -156,18 +166,25 @@ function sideOf(mode: Mode): 'charging' | 'discharging' | 'resting' {
   return mode === 'discharging' ? 'discharging' : 'resting';
 }
 
-/** Each step's own residual, gathered by what the plant did in it; steps over a gap apart. */
-function residualsByMode(spans: readonly Span[], start: IceState, site: SiteConfig): Residuals {
-  const out = { charging: 0, discharging: 0, resting: 0, gaps: 0 };
+/** Each step's own residual. */
+function stepsOf(spans: readonly Span[], start: IceState, site: SiteConfig): Step[] {
   let cold = start.kwh + start.pastUseKwh;
-  let endMs = spans[0].fromMs;
-  for (const span of spans) {
+  return spans.map((span) => {
     const fluxKwh = (netW(span.record) * span.hours) / 1000;
     const now = span.record.iceOnHandKwh + pastUseKwh(span.record, site);
-    const residual = fluxKwh - (now - cold);
-    const overGap = span.fromMs - endMs > span.record.spanMs;
-    out[overGap ? 'gaps' : sideOf(span.record.mode)] += residual;
+    const kwh = fluxKwh - (now - cold);
     cold = now;
+    return { span, kwh };
+  });
+}
+
+/** Gathered by what the plant did in each step; steps over a gap apart. */
+function residualsByMode(steps: readonly Step[]): Residuals {
+  const out = { charging: 0, discharging: 0, resting: 0, gaps: 0 };
+  let endMs = steps[0].span.fromMs;
+  for (const { span, kwh } of steps) {
+    const overGap = span.fromMs - endMs > span.record.spanMs;
+    out[overGap ? 'gaps' : sideOf(span.record.mode)] += kwh;
     endMs = span.toMs;
   }
   return out;
@@ -201,65 +218,23 @@ function heardOut(spans: readonly Span[]): Heard {
   };
 }
 
-/** The most likely culprit of a large residual, in words: what speaks plainly first, then where it arose. */
-function culpritOf(residualKwh: number, parts: Residuals, heard: Heard, input: BalanceInput): string {
-  const share = (part: number): number => part / residualKwh;
-  if (share(-input.toldKwh) > 0.5)
-    return 'what the owner told of the bank: the ice on hand was changed by that and by no heat';
-  if (input.doubtfulMinutes > 15) return 'the clock, which was doubtful part of the night';
-  if (share(parts.gaps) > 0.5) return 'the stretch without records, over which nothing was counted';
-  const probe = input.probes.find(
-    (one) => one.setAside !== null || Math.abs(one.errorAtIcePointK ?? 0) > PROBE_SUSPECT_K,
-  );
-  if (probe) {
-    return probe.setAside === null
-      ? `${probe.point}, which is ${probe.errorAtIcePointK?.toFixed(1)} K off at the ice point`
-      : `${probe.point}, which was set aside (${probe.setAside})`;
-  }
-  const flowSays = heard.kwh === null ? 0 : heard.kwh - heard.recordedKwh;
-  if (
-    heard.recordedKwh > 0 &&
-    Math.abs(flowSays) > FLOW_SUSPECT * heard.recordedKwh &&
-    flowSays * residualKwh > 0
-  ) {
-    return 'the loop: heard flow and temperatures tell another heat than was counted; look at the flow meter and the pair of thermometers';
-  }
-  return culpritByMode(residualKwh > 0, parts, share);
-}
-
-function culpritByMode(lost: boolean, parts: Residuals, share: (part: number) => number): string {
-  if (share(parts.charging) > 0.5) {
-    return lost
-      ? 'the ice machine, which makes less than is counted: dirty condenser, low refrigerant, or its plug reads high'
-      : 'the ice machine, which makes more than is counted, or its plug reads low';
-  }
-  if (share(parts.discharging) > 0.5) {
-    return lost
-      ? 'the loop, which brought more heat than is counted: flow above the set figure, or a thermometer beside the stream'
-      : 'the loop, which brought less heat than is counted: flow below the set figure, a tired pump or air in the loop';
-  }
-  if (share(parts.resting) > 0.5) {
-    return lost
-      ? 'the leak, larger than learned: lid, wet insulation, or a loop that creeps while the pump is off'
-      : 'the leak, smaller than learned, or bank-surround reads high';
-  }
-  return 'nothing single: it arose through the whole night, so the ice estimate itself; a full melt-out or freeze anchors it';
-}
-
 function sentenceFor(
   verdict: Balance['verdict'],
   residualKwh: number,
   pct: number | null,
   uncertaintyKwh: number,
-  culprit: string,
+  culprit: Culprit | null,
   show: Display,
 ): string {
   if (pct === null) return 'Too little heat moved for a balance.';
   const amount = `${show.heat(Math.abs(residualKwh))} ${show.heatUnit} (${Math.abs(pct).toFixed(1)} % of throughput)`;
   const what = `${amount} of cold ${residualKwh > 0 ? 'went unaccounted' : 'came unaccounted'}`;
-  if (verdict === 'closes') return `The balance closes to ${amount}.`;
-  if (verdict === 'within-estimate') {
-    return `${what}, within the ${show.heat(uncertaintyKwh)} ${show.heatUnit} that the ice estimate leaves open; first to look at: ${culprit}.`;
-  }
-  return `${what}; most likely ${culprit}.`;
+  if (verdict === 'closes' || culprit === null) return `The balance closes to ${amount}.`;
+  const within = `, within the ${show.heat(uncertaintyKwh)} ${show.heatUnit} that the ice estimate leaves open`;
+  const lead = culprit.named
+    ? verdict === 'within-estimate'
+      ? 'first to look at: '
+      : 'most likely '
+    : 'nothing single stands out: ';
+  return `${what}${verdict === 'within-estimate' ? within : ''}; ${lead}${culprit.words}.`;
 }

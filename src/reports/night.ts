@@ -7,7 +7,7 @@ import type { SiteConfig } from '../config.ts';
 import { RimeholdError } from '../errors.ts';
 import type { CycleRecord, PlanRecord } from '../record.ts';
 import { formatInstant, HOUR_MS, type Night } from '../time.ts';
-import { asIce, balanceOf, iceAtStart, iceOf } from './account.ts';
+import { asIce, balanceOf, iceAtStart, iceOf, type IceState } from './account.ts';
 import { CAUTION } from './caution.ts';
 import { likeForLike, type WayRun } from './compare.ts';
 import { coverageOf, probesOf, type ProbeState } from './coverage.ts';
@@ -60,8 +60,7 @@ export function nightSheet(input: NightInput): NightSheet {
   const coverage = coverageOf(spans, night, input.issuedMs, site.site.zone);
   const show = displayFor(site.site);
   const doubtfulMinutes = coverage.clockDoubtfulMinutes;
-  const told = toldKwh(input.told ?? []);
-  const balance = balanceOf({ site, spans, start, night, probes, show, doubtfulMinutes, toldKwh: told });
+  const balance = accountOf(input, spans, start, doubtfulMinutes);
   const ice = iceOf(spans, start, site);
   const electricity = electricityOf(site, spans);
   const worth = worthOfIce(site, spans, balance.inKwh);
@@ -103,6 +102,18 @@ export function nightSheet(input: NightInput): NightSheet {
     caution: CAUTION,
   } satisfies Omit<NightSheet, 'summary'>;
   return { ...figures, summary: summaryOf(figures, show) };
+}
+
+function accountOf(
+  input: NightInput,
+  spans: readonly Span[],
+  start: IceState,
+  doubtfulMinutes: number,
+): NightSheet['balance'] {
+  const { site, night, probes = [], learned = [] } = input;
+  const show = displayFor(site.site);
+  const told = toldKwh(input.told ?? []);
+  return balanceOf({ site, spans, start, night, probes, learned, show, doubtfulMinutes, toldKwh: told });
 }
 
 function headOf(site: SiteConfig): NightSheet['site'] {

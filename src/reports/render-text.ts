@@ -243,7 +243,9 @@ function commandLines(sheet: NightSheet, show: Display): string[] {
     ...sheet.wishes.flatMap((one) =>
       noted('wish', `${one.wish} from ${show.clock(one.from)} to ${show.clock(one.to)}`, MARGIN - 4),
     ),
-    ...toldWords(sheet, (instant) => show.clock(instant)).flatMap((words) => noted('told', words, MARGIN - 4)),
+    ...toldWords(sheet, (instant) => show.clock(instant)).flatMap((words) =>
+      noted('told', words, MARGIN - 4),
+    ),
     ...sheet.interlocks.flatMap((one) =>
       noted(
         'spoke',

@@ -88,6 +88,30 @@ describe('the energy account', () => {
     expect(clock.balance.culprit).toMatch(/clock/);
   });
 
+  it('says that nothing single stands out when the estimate was put right at once, and what is open', () => {
+    const at = JULY.startMs + 9 * HOUR_MS;
+    const records = tellNight({ zone: ZONE, night: JULY, stepMs: 60_000 }).map((record) =>
+      record.atMs < at ? record : { ...record, iceOnHandKwh: record.iceOnHandKwh - 1.8 },
+    );
+    const { balance } = toldSheet({}, { records, probes: [] });
+    expect(balance.residualKwh).toBeCloseTo(1.8, 2);
+    // all of it came while the loop ran, and yet the loop is not accused
+    expect(balance.whileKwh.discharging / balance.residualKwh).toBeGreaterThan(0.9);
+    expect(balance.sentence).toMatch(
+      /nothing single stands out: the estimate was put right by 1\.80 kWh by 21:/,
+    );
+    expect(balance.sentence).toMatch(/the heat of the loop by [\d.]+.*kWh either way/);
+    const ip = toldSheet({}, { records, probes: [], site: juniper('IP', 'USD') });
+    expect(ip.balance.sentence).toMatch(/put right by 6\.1 kBTU/);
+    expect(ip.balance.sentence).not.toMatch(/kWh/);
+  });
+
+  it('does not accuse a probe whose error it knows and takes out', () => {
+    const probe = { point: 'leaving-water' as const, sd: 0.03, atMs: JULY.startMs, setAside: null };
+    const known = toldSheet({ lostW: { charging: 300 } }, { probes: [{ ...probe, errorAtIcePointK: 0.8 }] });
+    expect(known.balance.culprit).toMatch(/ice machine/);
+  });
+
   it('goes on below zero where the water gets too warm to use, so that an emptied bank is no residual', () => {
     const told = tellNight({ zone: ZONE, night: JULY, stepMs: 60_000, startKwh: 7.5 });
     // 240 L of water warm by 1 K for each 0.2803 kWh (4.205 kJ/(L K)), from 10 degC where ice on hand is zero.
