@@ -288,7 +288,7 @@ describe.skipIf(!hasChromium)('the page on a real evening', () => {
     await page.emulateMedia({ colorScheme: null });
     // axe tries to look into the sheet's frame, which lets no script in; the browser says so.
     viewer.complaints = viewer.complaints.filter((line) => !line.startsWith('Blocked script execution'));
-  }, 60_000);
+  }, 120_000);
 
   describe('broken states say what to do', () => {
     it('a probe that has fallen silent', async () => {

@@ -45,12 +45,12 @@ export function leastUntilMs(now: NowAnswer, record: CycleRecord, nowMs: number)
 function headline(now: NowAnswer, record: CycleRecord, nowMs: number, format: Format): string {
   const words = strings.answer;
   if (!(record.iceOnHandHighKwh > PUDDLE_KWH)) return words.noIce;
-  const range = format.energy(record.iceOnHandHighKwh);
-  if (!(record.iceOnHandKwh > PUDDLE_KWH)) return words.hardlyAny(range);
+  const most = format.energy(record.iceOnHandHighKwh);
+  if (!(record.iceOnHandKwh > PUDDLE_KWH)) return words.hardlyAny(most);
   const untilMs = record.lastsUntilMs;
   const least = leastUntilMs(now, record, nowMs);
   const until = untilMs === null ? null : format.when(untilMs, nowMs);
-  if (least === nowMs) return words.perhapsNone(until, range);
+  if (least === nowMs) return words.perhapsNone(most);
   if (least !== null && (untilMs === null || least < untilMs))
     return words.perhapsOnly(until, format.when(least, nowMs));
   if (until === null || untilMs === null) return words.whole;

@@ -103,8 +103,7 @@ export const strings = {
     nothing: 'Nothing is measured yet.',
     noIce: 'No ice on hand.',
     hardlyAny: (most: string) => `Hardly any ice: ${most} at most.`,
-    perhapsNone: (until: string | null, most: string) =>
-      `Not sure of any ice: there may be none, there may be ${most}${until ? ` and last until ${until}` : ''}.`,
+    perhapsNone: (most: string) => `Not sure of any ice: from none to ${most} may be in the bank.`,
     perhapsOnly: (until: string | null, least: string) =>
       `Ice ${until ? `until ${until}` : 'for the whole night'}, perhaps only until ${least}.`,
     spare: (until: string, spare: string) => `Ice until ${until}, ${spare} to spare.`,
