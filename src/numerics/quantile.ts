@@ -32,7 +32,16 @@ function between(low: number, high: number, fraction: number): number {
  * or unequal lengths.
  */
 export function weightedQuantile(values: ArrayLike<number>, weights: ArrayLike<number>, p: number): number {
-  checkProbability(p);
+  return weightedQuantiles(values, weights, [p])[0];
+}
+
+/** Several of them at the price of one sort, in the order of `ps`. */
+export function weightedQuantiles(
+  values: ArrayLike<number>,
+  weights: ArrayLike<number>,
+  ps: readonly number[],
+): number[] {
+  ps.forEach(checkProbability);
   if (values.length !== weights.length) throw new RangeError('Expected as many weights as values.');
   const order = Array.from({ length: values.length }, (_, i) => i).filter((i) => weights[i] !== 0);
   if (order.length === 0 || !order.every((i) => weights[i] > 0 && !Number.isNaN(values[i]))) {
@@ -41,7 +50,17 @@ export function weightedQuantile(values: ArrayLike<number>, weights: ArrayLike<n
     );
   }
   order.sort((i, j) => values[i] - values[j]);
-  const target = p * order.reduce((sum, i) => sum + weights[i], 0);
+  const total = order.reduce((sum, i) => sum + weights[i], 0);
+  return ps.map((p) => atWeight(values, weights, order, p * total));
+}
+
+/** The value at a sum of weights, along the sorted `order`. */
+function atWeight(
+  values: ArrayLike<number>,
+  weights: ArrayLike<number>,
+  order: readonly number[],
+  target: number,
+): number {
   let before = 0;
   let lastAt = Number.NEGATIVE_INFINITY;
   let last = values[order[0]];

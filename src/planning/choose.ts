@@ -24,7 +24,9 @@ function offer(work: Work, to: number, after: number, money: number): void {
   const together = after % states.plain < states.off || work.problem.chiller.chargesWhileDischarging;
   const other = together ? (states.count + after) * cells : plain;
   for (let cell = 0; cell < cells; cell += 1) {
-    const best = Math.min(expected[plain + cell], expected[other + cell]) + money;
+    const held = expected[plain + cell];
+    const given = expected[other + cell];
+    const best = (held < given ? held : given) + money;
     if (best < value[to + cell]) value[to + cell] = best;
   }
 }

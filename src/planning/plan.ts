@@ -3,7 +3,7 @@
  * there is none, the owner's timetable. Nothing here throws into the cycle.
  */
 import { charges, commandFor, COMMANDS, type Command, type Strategy } from '../commands.ts';
-import { weightedQuantile } from '../numerics/quantile.ts';
+import { weightedQuantile, weightedQuantiles } from '../numerics/quantile.ts';
 import type { PlanOutcome, PlanStep } from '../record.ts';
 import { cheapest, DISCHARGES, weigh, type Standing } from './evaluate.ts';
 import {
@@ -207,24 +207,24 @@ function stepOf({ problem, classes }: Work, paths: Paths, t: number): PlanStep {
   const ice = paths.iceKwh.subarray(t * count, (t + 1) * count);
   const outdoor = Float64Array.from(problem.scenarios, (s) => s.outdoorC[t]);
   const load = Float64Array.from(problem.scenarios, (s) => s.loadW[t]);
-  const at = (values: Float64Array, p: number): number => weightedQuantile(values, weight, p);
+  const band = (values: Float64Array): number[] => weightedQuantiles(values, weight, [0.1, 0.5, 0.9]);
+  const [iceLowKwh, iceKwh, iceHighKwh] = band(ice);
+  const [outdoorLowC, outdoorC, outdoorHighC] = band(outdoor);
+  const [loadLowW, loadW, loadHighW] = band(load);
+  const commands = paths.command.subarray(t * count, (t + 1) * count);
   return {
     startMs: slotStartMs(problem, t),
-    command: commonCommand(
-      paths.command.subarray(t * count, (t + 1) * count),
-      weight,
-      problem.chiller.chargesWhileDischarging,
-    ),
-    iceKwh: at(ice, 0.5),
-    iceLowKwh: at(ice, 0.1),
-    iceHighKwh: at(ice, 0.9),
+    command: commonCommand(commands, weight, problem.chiller.chargesWhileDischarging),
+    iceKwh,
+    iceLowKwh,
+    iceHighKwh,
     priceMoneyPerKwh: buy ? buy[t] : 0,
-    outdoorC: at(outdoor, 0.5),
-    outdoorLowC: at(outdoor, 0.1),
-    outdoorHighC: at(outdoor, 0.9),
-    loadW: at(load, 0.5),
-    loadLowW: at(load, 0.1),
-    loadHighW: at(load, 0.9),
+    outdoorC,
+    outdoorLowC,
+    outdoorHighC,
+    loadW,
+    loadLowW,
+    loadHighW,
   };
 }
 
