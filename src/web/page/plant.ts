@@ -117,13 +117,18 @@ function errorText({ errorAtIcePointK, errorSdK, errorDateMs }: PointRow, format
   );
 }
 
-function learnedTable(list: readonly LearnedFigure[], format: Format): HTMLTableElement {
+function learnedTable(list: readonly LearnedFigure[], format: Format): HTMLElement {
   const rows = list.map((learned) => {
     const what = h('span', { class: 'phrase' }, words.learnedNames[learned.name]?.what ?? learned.name);
     const text = (value: number): string => learnedText(learned, value, format);
-    return row(what, figure(learned.value, text(learned.value)), figure(learned.sd, text(learned.sd)));
+    return row(
+      what,
+      figure(learned.value, text(learned.value)),
+      figure(learned.sd, text(learned.sd).replace(/ .*$/, '')),
+    );
   });
-  return table(words.learned, [words.figure, words.value, words.sd], [h('tbody', {}, ...rows)]);
+  const figures = table(words.learned, [words.figure, words.value, words.sd], [h('tbody', {}, ...rows)]);
+  return h('div', {}, figures, h('p', { class: 'quiet' }, words.sdMeans));
 }
 
 function learnedText({ name, unit }: LearnedFigure, value: number, format: Format): string {
