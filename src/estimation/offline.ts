@@ -24,7 +24,7 @@ export interface LogOptions {
 }
 
 /** A longer silence is passed over without rows: nothing is known of the ice after it (and one date may be absurd). */
-const LONGEST_SILENCE_MS = 3 * DAY_MS;
+export const LONGEST_SILENCE_MS = 3 * DAY_MS;
 
 /** End of the step that holds an instant; a step's own end belongs to it. */
 const stepEndMs = (atMs: number, stepMs: number): number => Math.floor(atMs / stepMs) * stepMs - 1 + stepMs;

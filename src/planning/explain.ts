@@ -244,7 +244,7 @@ function waitSentence(plan: Plan, problem: PlanProblem): string | null {
 /** What a little more ice is worth now; null when that is not known. */
 function worthSentence(plan: Plan, problem: PlanProblem): string | null {
   if (plan.worthOfIceMoneyPerKwh === null) return null;
-  const unit = problem.units === 'SI' ? 'kWh' : 'kWh (3,400 BTU)';
+  const unit = problem.units === 'SI' ? 'kWh' : 'kWh (3.4 kBTU)';
   return `One more ${unit} of ice would be worth ${priceText(problem, plan.worthOfIceMoneyPerKwh)}.`;
 }
 

@@ -26,11 +26,11 @@ export function moneyText(manner: Manner, money: number): string {
 
 const trimmed = (figure: string): string => figure.replace(/\.0$/, '');
 
-/** Ice or cooling: "6.1 kWh", "20,800 BTU". */
+/** Ice or cooling, as on the sheet: "6.1 kWh", "20.8 kBTU". */
 export function energyText(manner: Manner, kwh: number): string {
   if (manner.units === 'SI') return `${kwh.toFixed(1)} kWh`;
   const btu = fromInside(kwh, 'BTU', 'energy') ?? 0;
-  return `${(Math.round(btu / 100) * 100).toLocaleString('en-US')} BTU`;
+  return `${(btu / 1000).toFixed(1)} kBTU`;
 }
 
 /** The bare figure of `energyText`, where the unit was said just before. */

@@ -1,6 +1,6 @@
 /** How a site shows its figures: SI or the inch-pound units of the trade, money by currency, local time. */
 import { localClock, localDate, parseInstant, toWall } from '../time.ts';
-import { fromInside, type Dimension, type DisplayUnits } from '../units.ts';
+import { fromInside, shownIn as shownFigure, type Dimension, type DisplayUnits } from '../units.ts';
 
 export interface Display {
   /** Heat and cold; electricity stays in kWh whatever the units. */
@@ -16,6 +16,8 @@ export interface Display {
   degreeHours(kelvinHours: number): string;
   readonly conductanceUnit: string;
   conductance(wattsPerKelvin: number): string;
+  /** A learned figure in the site's units. */
+  figure(value: number, unit: string): { readonly value: number; readonly unit: string };
   readonly currency: string;
   money(amount: number): string;
   price(perKwh: number): string;
@@ -72,6 +74,7 @@ export function displayFor(site: { units: DisplayUnits; currency: string; zone: 
     conductanceUnit: ip ? 'BTU/(h \u00b0F)' : 'W/K',
     conductance: (wattsPerKelvin) =>
       fixed(ip ? shownIn(wattsPerKelvin, 'BTU/(h degF)', 'conductance') : wattsPerKelvin, 2),
+    figure: (value, unit) => shownFigure(value, unit, site.units),
     currency: site.currency,
     money: (amount) => fixed(amount, digits),
     price: (perKwh) => fixed(perKwh, digits + 1),

@@ -4,6 +4,7 @@ import { driftOf } from './drift.ts';
 import { grouped } from './grouped.ts';
 import type { NightSheet } from './night-schema.ts';
 import { rounded, roundedOrNull } from './spans.ts';
+import { watchOf, type Watch } from './watch.ts';
 
 export const LEDGER_SCHEMA = 'rimehold/ledger/1';
 
@@ -48,6 +49,8 @@ export interface LedgerSite {
   readonly rows: readonly LedgerRow[];
   readonly months: readonly LedgerTotal[];
   readonly drift: readonly DriftFinding[];
+  /** Each trouble, the figures it is read from, and why it is out of sight where it is. */
+  readonly watch: readonly Watch[];
 }
 
 export interface Ledger {
@@ -74,6 +77,7 @@ export function ledgerOf(sheets: readonly NightSheet[], range: { from?: string; 
       rows: shown.map((sheet) => rowOf(sheet, drift)),
       months: totalsOf(shown),
       drift,
+      watch: watchOf(nights),
     };
   });
   return { schema: LEDGER_SCHEMA, sites, together: togetherOf(sheets.filter(inRange), bySite.size) };
@@ -86,7 +90,7 @@ function savedOf(sheet: NightSheet): number | null {
 function rowOf(sheet: NightSheet, drift: readonly DriftFinding[]): LedgerRow {
   const notes = [
     ...(sheet.partialBecause === '' ? [] : [`partial: ${sheet.partialBecause}`]),
-    ...(sheet.balance.verdict === 'open' ? [`balance open: ${sheet.balance.culprit}`] : []),
+    ...(sheet.balance.verdict === 'open' ? [`balance open: ${sheet.balance.culprit.split(';')[0]}`] : []),
     ...drift.filter((one) => one.since === sheet.night.date).map((one) => one.note),
   ];
   return {

@@ -80,8 +80,21 @@ function cellsOf(line: Line, show: Display): string[] {
 }
 
 function driftLines(site: LedgerSite): string[] {
-  if (site.drift.length === 0) return ['Nothing drifts that these nights can tell.'];
-  return site.drift.flatMap((one) => wrapped(`${one.sentence} ${one.look}`));
+  const found =
+    site.drift.length === 0
+      ? ['Nothing drifts that these nights can tell.']
+      : site.drift.flatMap((one) => wrapped(`${one.sentence} ${one.look}`));
+  const hidden = site.watch.filter((one) => one.sight === 'out-of-sight');
+  const waiting = site.watch.filter((one) => one.sight === 'not-yet').map(nameOf);
+  return [
+    ...found,
+    ...(waiting.length === 0 ? [] : wrapped(`Not told by enough nights yet: ${waiting.join(', ')}.`)),
+    ...hidden.flatMap((one) => wrapped(`Out of sight: ${nameOf(one)}; ${one.because}.`)),
+  ];
+}
+
+function nameOf({ signature }: LedgerSite['watch'][number]): string {
+  return signature.replaceAll('-', ' ');
 }
 
 function togetherLines(ledger: Ledger): string[] {

@@ -288,10 +288,15 @@ function probeLines(sheet: NightSheet, show: Display): string[] {
           MARGIN,
         )),
   ];
-  const learned = sheet.learned.map((one) =>
-    `${one.name} ${one.value.toPrecision(3)}${one.sd === null ? '' : ` +- ${one.sd.toPrecision(2)}`} ${one.unit}`.trimEnd(),
-  );
+  const learned = sheet.learned.map((one) => learnedWords(one, show));
   return [...lines, ...(learned.length === 0 ? [] : noted('learned', learned.join(', '), MARGIN))];
+}
+
+/** "heat-leak 2.13 ± 0.10 W/K". */
+function learnedWords({ name, value, sd, unit }: NightSheet['learned'][number], show: Display): string {
+  const shown = show.figure(value, unit);
+  const within = sd === null ? '' : ` \u00b1 ${show.figure(sd, unit).value.toPrecision(2)}`;
+  return `${name.replaceAll('-', ' ')} ${shown.value.toPrecision(3)}${within} ${shown.unit}`.trimEnd();
 }
 
 function signed(text: string): string {

@@ -8,8 +8,10 @@ export interface Watch {
   readonly signature: Signature;
   /** Figures that it is read from, with the nights that each has. */
   readonly by: readonly { readonly figure: SeriesName; readonly nights: number }[];
-  /** Null while it is watched; else why it cannot be, or not yet. */
-  readonly unwatchedBecause: string | null;
+  /** Watched; to be watched once more nights have told its figure; or out of sight of these instruments. */
+  readonly sight: 'watched' | 'not-yet' | 'out-of-sight';
+  /** Why it is not watched; empty while it is. */
+  readonly because: string;
 }
 
 /** Figures of each trouble, and what an instrument set must have for them. */
@@ -57,13 +59,20 @@ export function watchOf(sheets: readonly NightSheet[]): Watch[] {
       )
       .filter((one) => one.nights.length > 0)
       .map((one) => ({ figure: one.name, nights: one.nights.length }));
-    return { signature, by, unwatchedBecause: reasonOf(by, needs, sheets) };
+    return { signature, by, ...sightOf(by, needs, sheets) };
   });
 }
 
-function reasonOf(by: Watch['by'], needs: string, sheets: readonly NightSheet[]): string | null {
+function sightOf(
+  by: Watch['by'],
+  needs: string,
+  sheets: readonly NightSheet[],
+): Pick<Watch, 'sight' | 'because'> {
   const most = Math.max(0, ...by.map((one) => one.nights));
-  if (most >= LEAST_NIGHTS) return null;
-  if (most === 0 && sheets.length >= LEAST_NIGHTS) return needs;
-  return `${most} of the ${LEAST_NIGHTS} nights that it needs have told it so far`;
+  if (most >= LEAST_NIGHTS) return { sight: 'watched', because: '' };
+  if (most === 0 && sheets.length >= LEAST_NIGHTS) return { sight: 'out-of-sight', because: needs };
+  return {
+    sight: 'not-yet',
+    because: `${most} of the ${LEAST_NIGHTS} nights that it needs have told it so far`,
+  };
 }

@@ -1,8 +1,8 @@
 /** `rimehold estimate`: ice on hand through a reading log, offline, by the same estimator. */
 import { EXIT } from '../errors.ts';
-import { estimateLog, type LogRow } from '../estimation/offline.ts';
+import { estimateLog, LONGEST_SILENCE_MS, type LogRow } from '../estimation/offline.ts';
 import type { Reading } from '../points.ts';
-import { formatInstant } from '../time.ts';
+import { DAY_MS, formatInstant } from '../time.ts';
 import { logWords, readLog } from './import.ts';
 import { loadSite, writeText } from './site.ts';
 
@@ -22,6 +22,7 @@ export async function estimate(options: {
   for (const words of logWords(summary)) console.error(words);
   readings.sort((a, b) => a.atMs - b.atMs);
   const rows = estimateLog(config, readings);
+  for (const words of silenceWords(rows)) console.error(words);
   const csv = `${[HEADER, ...rows.map(csvRow)].join('\r\n')}\r\n`;
   writeText(options.out, csv, 'the estimate', 'name another file with --out');
   const last = rows.at(-1) ?? null;
@@ -41,6 +42,19 @@ function csvRow(row: LogRow): string {
     iceKg.toFixed(3),
     inventoryPct.toFixed(3),
   ].join(',');
+}
+
+/** Says where the log was silent for so long that no row was made of it. */
+function silenceWords(rows: readonly LogRow[]): string[] {
+  const silences = rows.flatMap(({ atMs }, i) =>
+    i > 0 && atMs - rows[i - 1].atMs > LONGEST_SILENCE_MS ? [{ fromMs: rows[i - 1].atMs, toMs: atMs }] : [],
+  );
+  if (silences.length === 0) return [];
+  const longest = silences.reduce((a, b) => (b.toMs - b.fromMs > a.toMs - a.fromMs ? b : a));
+  const days = Math.round((longest.toMs - longest.fromMs) / DAY_MS);
+  return [
+    `Passed over ${silences.length === 1 ? 'a silence' : `${silences.length} silences`} of more than ${LONGEST_SILENCE_MS / DAY_MS} days, the longest from ${formatInstant(longest.fromMs)} to ${formatInstant(longest.toMs)} (${days} days); if the log was not silent, look for a wrong date there.`,
+  ];
 }
 
 function words(out: string, count: number, last: LogRow | null): string {

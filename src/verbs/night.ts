@@ -21,7 +21,7 @@ export function night(
     const sheet = revision === null ? newest : storedSheet(store, wanted, revision);
     if (sheet === null && newest !== null) {
       console.error(
-        `Expected a revision of the sheet of ${wanted} from 1 to ${newest.revision}, found --revision ${revision}.`,
+        `Expected a revision that the sheet of ${wanted} has, found --revision ${revision}; the newest is ${newest.revision}.`,
       );
       return EXIT.no;
     }

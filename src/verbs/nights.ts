@@ -22,6 +22,11 @@ export function nights(options: NightsOptions): number {
   const sites = options.config.map(loadSite);
   checkDate('--from', from, sites[0].site.zone);
   checkDate('--to', to, sites[0].site.zone);
+  if (from !== undefined && to !== undefined && from > to)
+    throw new RimeholdError(
+      'usage',
+      `Expected --from no later than --to, found ${from} and ${to}; swap them.`,
+    );
   const range = { ...(from === undefined ? {} : { from }), ...(to === undefined ? {} : { to }) };
   const read = sites.map(sheetsOf);
   const sheets = read.flatMap((one) => one.sheets);

@@ -176,8 +176,8 @@ function tally(
     into.delays.push(right);
     if (any !== null && right <= any) into.named++;
   }
-  into.outOfSight ??=
-    watchOf(sheets).find((watch) => watch.signature === signature)?.unwatchedBecause ?? null;
+  const watch = watchOf(sheets).find((one) => one.signature === signature);
+  if (watch !== undefined && watch.sight !== 'watched') into.outOfSight ??= watch.because;
 }
 
 function sheetsOf(records: readonly NightRecords[], { heard }: InstrumentSet): NightSheet[] {

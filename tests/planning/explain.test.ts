@@ -61,7 +61,7 @@ describe('words', () => {
     expect(moneyText(usd, 1.234)).toBe('1.23 USD');
     expect(energyText(eur, 6.12)).toBe('6.1 kWh');
     // 1 kWh = 3,412.14 BTU (International Table).
-    expect(energyText(usd, 6.12)).toBe('20,900 BTU');
+    expect(energyText(usd, 6.12)).toBe('20.9 kBTU');
     expect(temperatureText(usd, 25)).toBe('77 °F');
   });
 
@@ -123,7 +123,7 @@ describe('reasons', () => {
   it('speaks inch-pound and dollars where the site does', () => {
     const p = summer(20, { ...ice(7), units: 'IP', currency: 'USD' });
     expect(said(p)).toMatchInlineSnapshot(
-      `"Cooling with ice: the rest of the night may need 27,400 BTU; 23,900 are in the bank, which lasts until about 00:00, and more is made from 00:00."`,
+      `"Cooling with ice: the rest of the night may need 27.4 kBTU; 23.9 are in the bank, which lasts until about 00:00, and more is made from 00:00."`,
     );
   });
 

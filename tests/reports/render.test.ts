@@ -17,6 +17,15 @@ describe('text', () => {
     expect(renderText(toldSheet({ lostW: { charging: 80 } }))).toMatchSnapshot();
   });
 
+  it('shows nothing in SI on a sheet in inch-pound units, electricity apart', () => {
+    const ip = renderText(toldSheet({ lostW: { charging: 300 } }, { site: juniper('IP', 'USD') }));
+    const own = ip.slice(0, ip.indexOf('-- commands'));
+    const rest = ip.slice(ip.indexOf('-- probes'));
+    expect(own + rest).not.toMatch(/W\/K|L\/min|\d kg\b|, kg\b|\d K\b|°C/);
+    expect(own.match(/[\d.]+ kWh/g)).toEqual([expect.stringMatching(/^3\.\d+ kWh$/)]);
+    expect(rest).toMatch(/heat leak 4\.0\d ± 0\.19 BTU\/\(h °F\)/);
+  });
+
   it('never exceeds 80 columns, in either units, on a plain or a bad night', () => {
     for (const sheet of [
       toldSheet(),
