@@ -6,6 +6,8 @@ import type { CycleRecord } from '../record.ts';
 const [LEAST_DRIVE_K, MOST_LEAVING_C] = [8, 8];
 const AIR_J_PER_KG_K = 1006;
 const VAPOUR_J_PER_KG = 2.501e6;
+/** Alduchov & Eskridge 1996, Journal of Applied Meteorology 35(4). */
+const [MAGNUS_A, MAGNUS_C] = [17.625, 243.04];
 /** Molar mass of water over that of dry air. */
 const WATER_TO_AIR = 0.622;
 
@@ -36,9 +38,26 @@ function unitsFrom(greater: number, lesser: number): number | null {
   return share > 0.02 && share < 0.98 ? -Math.log(1 - share) : null;
 }
 
-/** Saturation pressure after Alduchov & Eskridge 1996, Journal of Applied Meteorology 35(4), within 0.4 % from −40 to 50 °C. */
+/**
+ * By how much the water stands above the room's dew point, K, 0 on a wet coil; null without humidity. A dry coil passes its heat
+ * through the water's side as easily as a wet one but has less to pass, so the two read some tenths apart.
+ */
+export function coilDryK({
+  enteringWaterC,
+  leavingWaterC,
+  roomC,
+  roomHumidityPct,
+}: CycleRecord): number | null {
+  if (enteringWaterC === null || leavingWaterC === null || roomC === null || roomHumidityPct === null)
+    return null;
+  const gamma = Math.log(Math.max(1, roomHumidityPct) / 100) + (MAGNUS_A * roomC) / (roomC + MAGNUS_C);
+  const dewPointC = (MAGNUS_C * gamma) / (MAGNUS_A - gamma);
+  return Math.max(0, (enteringWaterC + leavingWaterC) / 2 - dewPointC);
+}
+
+/** Saturation pressure after Alduchov & Eskridge, within 0.4 % from −40 to 50 °C. */
 function enthalpyJPerKg(atC: number, humidityPct: number, pressurePa: number): number {
-  const vapourPa = (humidityPct / 100) * 610.94 * Math.exp((17.625 * atC) / (atC + 243.04));
+  const vapourPa = (humidityPct / 100) * 610.94 * Math.exp((MAGNUS_A * atC) / (atC + MAGNUS_C));
   return AIR_J_PER_KG_K * atC + VAPOUR_J_PER_KG * ((WATER_TO_AIR * vapourPa) / (pressurePa - vapourPa));
 }
 

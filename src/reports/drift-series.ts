@@ -71,7 +71,11 @@ const SPECS: Readonly<Record<'machine-power' | 'coolant' | 'coil' | 'flow' | 'pu
     ],
     leastNoise: 0.015,
   },
-  coil: { figure: 'coilNtu', weather: () => [], leastNoise: 0.015 },
+  coil: {
+    figure: 'coilNtu',
+    weather: ({ conditions }) => [conditions.dischargeCoilDryK ?? 0],
+    leastNoise: 0.015,
+  },
   flow: { figure: 'flowLPerMin', weather: () => [], leastNoise: 0.02 },
   'pump-power': { figure: 'pumpPowerW', weather: () => [], leastNoise: 0.01 },
 };

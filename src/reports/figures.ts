@@ -7,7 +7,7 @@ import type { SiteConfig } from '../config.ts';
 import type { CycleRecord } from '../record.ts';
 import { MINUTE_MS } from '../time.ts';
 import { carnotAt } from './carnot.ts';
-import { coilTransferUnits } from './coil-figure.ts';
+import { coilDryK, coilTransferUnits } from './coil-figure.ts';
 import { loadPerDegree, roomFollowsPerH } from './house-figures.ts';
 import { machineFigures, type MachineFigures } from './machine-figures.ts';
 import type { FigureName, NightSheet } from './night-schema.ts';
@@ -148,6 +148,7 @@ function conditionsOf(
       meanOver(flowing, (record) => record.leavingWaterC),
       2,
     ),
+    dischargeCoilDryK: roundedOrNull(meanOver(flowing, coilDryK), 2),
     dischargeHumidityPct: roundedOrNull(
       meanOver(flowing, (record) => record.roomHumidityPct),
       1,

@@ -276,6 +276,7 @@ export const nightSheetSchema = z
         dischargeInventoryPct: maybe,
         dischargeLeavingC: maybe,
         dischargeHumidityPct: maybe,
+        dischargeCoilDryK: describe(maybe, 'water above the dew point of the room; 0 on a wet coil'),
       })
       .describe('under which the figures were found'),
     trace,

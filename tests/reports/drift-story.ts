@@ -88,6 +88,7 @@ function sheetOf(
       chargeCoolantC: -10 + 0.4 * Math.sin(night),
       dischargeLeavingC: 4 + Math.sin(0.7 * night),
       dischargeHumidityPct: 48 + 4 * Math.sin(1.3 * night),
+      dischargeCoilDryK: 0,
     },
     figures: {
       ...base.figures,
