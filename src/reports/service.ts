@@ -7,6 +7,9 @@ import { energyKwh, extreme, hoursOf, meanOver, rounded, roundedOrNull, type Spa
 /** Heat of condensation of water at 20 °C, 2454 kJ/kg (IAPWS-95). */
 const CONDENSATION_KWH_PER_KG = 2454 / 3600;
 
+/** Of the heat delivered, part for which the room's humidity must have been heard to speak for all of it. */
+const ENOUGH_HEARD = 0.8;
+
 export function deliveredOf(spans: readonly Span[]): NightSheet['delivered'] {
   const cooling = spans.filter(({ record }) => record.dischargingW > 0 || (record.deliveredW ?? 0) > 0);
   const known = cooling.filter(({ record }) => record.deliveredW !== null);
@@ -16,8 +19,7 @@ export function deliveredOf(spans: readonly Span[]): NightSheet['delivered'] {
     return { kwh: null, sensibleKwh: null, latentKwh: null, condensateKg: null, heardPct: 0 };
   }
   const kwh = energyKwh(known, (record) => record.deliveredW);
-  const latentKnown = known.every(({ record }) => record.latentW !== null);
-  const latentKwh = latentKnown ? energyKwh(known, (record) => record.latentW) : null;
+  const latentKwh = latentOf(known, kwh);
   return {
     kwh: rounded(kwh, 3),
     sensibleKwh: latentKwh === null ? null : rounded(kwh - latentKwh, 3),
@@ -25,6 +27,14 @@ export function deliveredOf(spans: readonly Span[]): NightSheet['delivered'] {
     condensateKg: latentKwh === null ? null : rounded(Math.max(0, latentKwh) / CONDENSATION_KWH_PER_KG, 2),
     heardPct: rounded(heardPct, 1),
   };
+}
+
+/** Moist part of the heat delivered, at its share while the humidity was heard; null when that was too seldom. */
+function latentOf(known: readonly Span[], kwh: number): number | null {
+  const heard = known.filter(({ record }) => record.latentW !== null);
+  const heardKwh = energyKwh(heard, (record) => record.deliveredW);
+  if (!(heardKwh >= ENOUGH_HEARD * kwh)) return null;
+  return heardKwh > 0 ? (energyKwh(heard, (record) => record.latentW) / heardKwh) * kwh : 0;
 }
 
 export function comfortOf(spans: readonly Span[]): NightSheet['comfort'] {

@@ -106,6 +106,23 @@ describe('the energy account', () => {
     expect(ip.balance.sentence).not.toMatch(/kWh/);
   });
 
+  it('splits the heat delivered by what was heard of the moisture, when that was most of the time', () => {
+    const records = tellNight({ zone: ZONE, night: JULY, stepMs: 60_000 });
+    const without = (part: number): number | null => {
+      const cooling = records.filter((record) => (record.deliveredW ?? 0) > 0).length;
+      let seen = 0;
+      const seldom = records.map((record) =>
+        (record.deliveredW ?? 0) > 0 && ++seen <= part * cooling ? { ...record, latentW: null } : record,
+      );
+      return toldSheet({}, { records: seldom }).delivered.latentKwh;
+    };
+    const all = without(0) ?? Number.NaN;
+    expect(all).toBeGreaterThan(1);
+    // the story's moist share is the same all evening
+    expect(without(0.1)).toBeCloseTo(all, 2);
+    expect(without(0.5)).toBeNull();
+  });
+
   it('does not accuse a probe whose error it knows and takes out', () => {
     const probe = { point: 'leaving-water' as const, sd: 0.03, atMs: JULY.startMs, setAside: null };
     const known = toldSheet({ lostW: { charging: 300 } }, { probes: [{ ...probe, errorAtIcePointK: 0.8 }] });
