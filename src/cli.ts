@@ -112,7 +112,7 @@ function program(): Command {
   cli
     .command('reference')
     .description('every key of the site file')
-    .option('--write', 'into config/reference.yaml and addon/options.schema.json')
+    .option('--write', 'into config/reference.yaml and the schemas in addon/')
     .option(...JSON_OUT)
     .action(ending(async () => (await import('./verbs/reference.ts')).reference));
   return cli;

@@ -6,6 +6,7 @@ import { tmpdir } from 'node:os';
 import { dirname, join } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import { parse } from 'yaml';
+import { nightSheetJsonSchema } from '../../src/reports/night-schema.ts';
 import { optionsSchema, referenceYaml } from '../../src/reference.ts';
 import { hasMosquitto, startMosquitto } from '../mqtt/mosquitto.ts';
 
@@ -75,6 +76,10 @@ describe('compose file', () => {
 describe('generated files', () => {
   it('config/reference.yaml is what the schema says (npm run reference)', () => {
     expect(read('config/reference.yaml')).toBe(referenceYaml());
+  });
+
+  it('addon/night-sheet.schema.json is what a sheet is (npm run reference)', () => {
+    expect(JSON.parse(read('addon/night-sheet.schema.json'))).toEqual(nightSheetJsonSchema());
   });
 
   it('addon/options.schema.json is what the schema says (npm run reference)', () => {
