@@ -11,6 +11,8 @@ export interface Notice {
   readonly todo: string;
 }
 
+/** More stale points than this are told together. */
+const FEW = 2;
 const FIRST_DAY_MS = 24 * 3_600_000;
 
 const notice = (kind: string, [what, todo]: readonly string[]): Notice => ({ kind, what, todo });
@@ -22,7 +24,9 @@ export function notices(now: NowAnswer, stale: Staleness, nowMs: number, format:
     const since = format.when(stale.sinceMs, nowMs);
     list.push(notice(stale.kind, stale.kind === 'lost' ? words.lost(since) : words.standstill(since)));
   }
-  list.push(...healthNotices(now, nowMs, format), ...heldNotices(now), ...pointNotices(now.points));
+  list.push(...healthNotices(now, nowMs, format), ...heldNotices(now));
+  // a broker that is away explains every silence
+  if (now.health.broker.state === 'connected') list.push(...pointNotices(now.points));
   const young = now.firstRecordMs === null || nowMs - now.firstRecordMs < FIRST_DAY_MS;
   if (young && now.nightsClosed === 0) list.push(notice('first-day', words.firstDay));
   return list;
@@ -51,13 +55,24 @@ function heldNotices({ record, interlocks }: NowAnswer): Notice[] {
   return [{ kind: `held ${record.heldBackBy}`, what, todo: sentences.join(' ') }];
 }
 
+const oneStale = ({ point, ageMs }: PointRow): Notice =>
+  notice(`stale ${point}`, strings.notices.pointStale(point, age(ageMs)));
+
+/** Several at once have one cause more often than several. */
+function manyStale(stale: readonly PointRow[]): Notice {
+  const names = stale.map(({ point }) => point).join(', ');
+  const longestMs = Math.max(...stale.map(({ ageMs }) => ageMs ?? 0));
+  return notice(`stale ${names}`, strings.notices.manyStale(stale.length, names, age(longestMs)));
+}
+
 /** Only points that have something to say: all of them silent is one notice, not ten. */
 function pointNotices(points: readonly PointRow[]): Notice[] {
   const words = strings.notices;
   if (points.every(({ heard }) => !heard)) return [notice('no-sensor', words.noSensor)];
-  return points.flatMap((row) => {
-    if (row.fresh) return [];
-    if (row.heard) return [notice(`stale ${row.point}`, words.pointStale(row.point, age(row.ageMs)))];
-    return row.required ? [notice(`silent ${row.point}`, words.pointSilent(row.point))] : [];
-  });
+  const stale = points.filter(({ fresh, heard }) => heard && !fresh);
+  const silent = points.filter(({ heard, required }) => required && !heard);
+  return [
+    ...(stale.length > FEW ? [manyStale(stale)] : stale.map(oneStale)),
+    ...silent.map(({ point }) => notice(`silent ${point}`, words.pointSilent(point))),
+  ];
 }

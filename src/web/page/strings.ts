@@ -90,7 +90,6 @@ export const strings = {
     notYet: 'not yet',
   },
   hold: 'Hold the page still',
-  goOn: 'Go on',
   heldAt: (clock: string) => `Held still at ${clock}; the plant goes on.`,
   units: 'Units',
   unitsSite: (units: string) => `as the site (${units})`,
@@ -137,7 +136,6 @@ export const strings = {
     after: 'Night after',
     tonight: 'Tonight',
     asTable: 'As a table',
-    asStrip: 'As a strip',
     thought: 'Lay over what it thought at noon',
     noThought: 'No plan was made near that noon.',
     label: 'Strip of the night: price, temperatures, ice on hand and what runs, noon to noon',
@@ -276,6 +274,10 @@ export const strings = {
     pointStale: (point: string, ago: string) => [
       `${point} was last heard ${ago} ago.`,
       'Its value is not used. Check its battery and its radio; the estimate goes on without it, less sure.',
+    ],
+    manyStale: (count: number, names: string, ago: string) => [
+      `${count} points have fallen silent, the first ${ago} ago: ${names}.`,
+      'Their values are not used. Look at what they share: a radio, a plug, a gateway.',
     ],
     held: (names: readonly string[]) => [`Held back by ${names.join(' and by ')}.`],
   },
