@@ -55,7 +55,7 @@ const SPECS: Readonly<Record<'machine-power' | 'coolant' | 'coil' | 'flow' | 'pu
     weather: ({ conditions, refill }) => {
       const mild = conditions.chargeOutdoorC !== null && conditions.chargeOutdoorC > COLD_BELOW_C;
       const outdoorC = mild ? conditions.chargeOutdoorC : null;
-      return refill === null ? [outdoorC] : [outdoorC, conditions.chargeCoolantC];
+      return (refill ?? null) === null ? [outdoorC] : [outdoorC, conditions.chargeCoolantC];
     },
     leastNoise: 0.01,
   },
