@@ -10,16 +10,17 @@ import { lateWords, nightsToClose, reviseSheet, writeSheet } from './nights.ts';
 import type { DaemonParts } from './ports.ts';
 import type { Tellings } from './telling.ts';
 
+type Parts = Pick<DaemonParts, 'store' | 'log' | 'config'> & {
+  readonly device: Pick<DaemonParts['device'], 'publishNight'>;
+};
+
 export class NightBook {
-  readonly #parts: Pick<DaemonParts, 'store' | 'device' | 'log' | 'config'>;
+  readonly #parts: Parts;
   readonly #tell: (sheet: NightSheet) => void;
   readonly #late: LateNights;
   #closedBefore = '';
 
-  constructor(
-    parts: Pick<DaemonParts, 'store' | 'device' | 'log' | 'config'>,
-    tell: (sheet: NightSheet) => void,
-  ) {
+  constructor(parts: Parts, tell: (sheet: NightSheet) => void) {
     this.#parts = parts;
     this.#tell = tell;
     this.#late = new LateNights(parts.config.site.zone);

@@ -19,6 +19,8 @@ export const ICE_KG_PER_KWH = 3.6e6 / 333_430;
 const WATER_J_PER_L_K = 4205;
 /** A residual above this share of the throughput is worth a culprit (common practice for heat balances, no source). */
 const LARGE_PCT = 5;
+/** A residual of a pound of ice is no matter, whatever the percentage of a night on which little happened. */
+const LEAST_RESIDUAL_KWH = 0.05;
 /** Below this throughput a percentage says nothing. */
 const LEAST_THROUGHPUT_KWH = 0.5;
 
@@ -157,7 +159,7 @@ function halfWidth(state: IceState): number {
 
 function verdictOf(pct: number | null, residualKwh: number, uncertaintyKwh: number): Balance['verdict'] {
   if (pct === null) return 'unknown';
-  if (Math.abs(pct) <= LARGE_PCT) return 'closes';
+  if (Math.abs(pct) <= LARGE_PCT || Math.abs(residualKwh) < LEAST_RESIDUAL_KWH) return 'closes';
   return Math.abs(residualKwh) <= uncertaintyKwh ? 'within-estimate' : 'open';
 }
 

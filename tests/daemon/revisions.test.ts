@@ -4,11 +4,14 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import type { SiteConfig } from '../../src/config.ts';
+import { NightBook } from '../../src/daemon/night-book.ts';
 import { LateNights, nightsSince } from '../../src/daemon/late-nights.ts';
 import { reviseSheet, storedSheet, writeSheet } from '../../src/daemon/nights.ts';
 import { relivedRecord, replay } from '../../src/daemon/rewind.ts';
+import { Tellings } from '../../src/daemon/telling.ts';
 import { createEstimator, type Estimator } from '../../src/estimation/estimator.ts';
 import type { Reading } from '../../src/points.ts';
+import type { NightSheet } from '../../src/reports/night-schema.ts';
 import type { CycleRecord } from '../../src/record.ts';
 import { parseSiteFile } from '../../src/site-file.ts';
 import { openStore, type Store } from '../../src/store/store.ts';
@@ -16,8 +19,8 @@ import { HOUR_MS, MINUTE_MS, nightOf } from '../../src/time.ts';
 import { baseRecord } from '../reports/night-story.ts';
 
 const NIGHT = nightOf('Europe/Madrid', '2026-07-14');
-const [CHARGE_FROM, CHARGE_TO] = [NIGHT.endMs - 9 * HOUR_MS, NIGHT.endMs - 7 * HOUR_MS];
-const CHECKPOINT_MS = NIGHT.endMs - 12 * HOUR_MS;
+const [CHARGE_FROM, CHARGE_TO] = [NIGHT.endMs - 4 * HOUR_MS, NIGHT.endMs - 2 * HOUR_MS];
+const CHECKPOINT_MS = NIGHT.endMs - 5 * HOUR_MS;
 const SEED = 1;
 const LATE_MS = NIGHT.endMs + HOUR_MS;
 
@@ -55,7 +58,7 @@ describe('a late reading for a closed night', () => {
   let inTime: Estimator;
   let late: LateNights;
 
-  /** The last twelve hours of a night, without the machine's power while it charged. */
+  /** The last five hours of a night, without the machine's power while it charged. */
   beforeEach(() => {
     folder = mkdtempSync(join(tmpdir(), 'rimehold-revisions-'));
     store = openStore(join(folder, 'late.db'), { siteId: 'juniper' });
@@ -120,6 +123,35 @@ describe('a late reading for a closed night', () => {
       true,
     );
     expect(late.take(LATE_MS + 20 * MINUTE_MS)).toBeNull();
+  });
+
+  it('is told by the book once, to the page and the broker, as the newest of the last night', () => {
+    const published: unknown[] = [];
+    const told: NightSheet[] = [];
+    const said: string[] = [];
+    const say = (_: object, sentence: string): void => void said.push(sentence);
+    const book = new NightBook(
+      {
+        config,
+        store,
+        device: { publishNight: ({ sheet }) => void published.push(sheet) },
+        log: { info: say, warn: say, error: say },
+      },
+      (sheet) => void told.push(sheet),
+    );
+    const tellings = new Tellings(null);
+    const late = backlog();
+    store.addReadings(late);
+    for (const reading of late) book.late(reading, LATE_MS);
+    book.revise(config, LATE_MS + MINUTE_MS, tellings);
+    expect(told).toEqual([]);
+    book.revise(config, LATE_MS + 6 * MINUTE_MS, tellings);
+    book.revise(config, LATE_MS + 20 * MINUTE_MS, tellings);
+    expect(told.map((sheet) => sheet.revision)).toEqual([2]);
+    expect(published).toEqual(told);
+    expect(said.join(' ')).toContain(
+      `sheet of 2026-07-14 has a revision 2: ${late.length} late readings of chiller-power`,
+    );
   });
 
   it('makes none when it changes nothing', () => {
