@@ -30,6 +30,9 @@ export interface Format {
   energyNumber(kwh: number): number;
   temperatureUnit: string;
   difference(k: number | null): string;
+  /** In the viewer's degrees, unrounded. */
+  degreeHours(kh: number): number;
+  degreeHourUnit: string;
   energy(kwh: number | null): string;
   energyFigure(kwh: number | null, digits?: number): string;
   energyUnit: string;
@@ -138,6 +141,8 @@ export function createFormat({ units, currency, offsets }: FormatSettings): Form
     energyNumber: (kwh) => kwh * energyFactor,
     temperatureUnit: shownIn(0, 'degC', units).unit,
     difference: (k) => known(k, 'K'),
+    degreeHours: (kh) => (units === 'SI' ? kh : kh * 1.8),
+    degreeHourUnit: units === 'SI' ? 'K·h' : '°F·h',
     energy: (kwh) => (kwh === null ? strings.unknown : `${energyFigure(kwh)} ${energyUnit}`),
     energyFigure,
     energyUnit,

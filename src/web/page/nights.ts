@@ -102,6 +102,9 @@ const fixed =
   (value: number | null): string =>
     value === null ? strings.none : plain(value, digits);
 
+const degreeHours = (value: number | null, format: Format): string =>
+  value === null ? strings.none : plain(format.degreeHours(value), 1);
+
 const COLUMNS: readonly Column[] = [
   { key: 'start', value: (row) => row.iceStartKwh, text: energy, total: null },
   { key: 'end', value: (row) => row.iceEndKwh, text: energy, total: null },
@@ -112,7 +115,7 @@ const COLUMNS: readonly Column[] = [
   { key: 'cop', value: (row) => row.cop, text: fixed(2), total: null },
   { key: 'cost', value: (row) => row.costMoney, text: fixed(2), total: 'sum' },
   { key: 'saved', value: (row) => row.savedMoney, text: fixed(2), total: 'sum' },
-  { key: 'warm', value: (row) => row.warmKh, text: fixed(1), total: 'sum' },
+  { key: 'warm', value: (row) => row.warmKh, text: degreeHours, total: 'sum' },
   { key: 'residual', value: (row) => row.residualPct, text: fixed(1), total: null },
 ];
 
@@ -121,7 +124,7 @@ function ledger(rows: readonly NightRow[], format: Format, currency: string): HT
   return h(
     'table',
     {},
-    h('caption', {}, h('span', {}, words.caption(format.energyUnit, currency))),
+    h('caption', {}, h('span', {}, words.caption(format.energyUnit, format.degreeHourUnit, currency))),
     h('thead', {}, h('tr', {}, ...heads.map((head) => h('th', { scope: 'col' }, head)))),
     ...months(rows).map((month) => monthBody(month, format)),
   );

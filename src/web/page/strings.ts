@@ -291,8 +291,8 @@ export const strings = {
     emptyRange: 'No night in this range.',
     drifts: 'What drifts',
     since: (day: string) => `since ${day}`,
-    caption: (energy: string, currency: string) =>
-      `Energy in ${energy}, money in ${currency}; one row a night, noon to noon`,
+    caption: (energy: string, degreeHours: string, currency: string) =>
+      `Heat in ${energy}, electricity in kWh, warm hours in ${degreeHours}, money in ${currency}; one row a night, noon to noon`,
     columns: {
       night: 'Night',
       start: 'Ice at start',
@@ -300,11 +300,11 @@ export const strings = {
       made: 'Made',
       melted: 'Melted',
       leaked: 'Leaked',
-      electricity: 'Electricity, kWh',
+      electricity: 'Electricity',
       cop: 'COP',
       cost: 'Cost',
       saved: 'Saved',
-      warm: 'Warm, K·h',
+      warm: 'Warm hours',
       residual: 'Residual, %',
       note: 'Notes',
     },
