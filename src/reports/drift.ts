@@ -4,6 +4,7 @@
  * normal. The sheet says what to look at, and leaves the judgement to whoever looks.
  */
 import { firstChange, type Change } from './change-point.ts';
+import { displayFor, type Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
 import { rounded } from './spans.ts';
 import { seriesOf, type Series, type SeriesName, type SeriesUnit } from './drift-series.ts';
@@ -29,7 +30,7 @@ export interface DriftFinding {
   readonly sinceLatest: string;
   /** Night whose sheet could first tell it. */
   readonly toldOn: string;
-  /** Change of the figure, in `unit`. */
+  /** Change of the figure, in `unit` whatever the site shows. */
   readonly change: number;
   readonly unit: SeriesUnit;
   /** Probability that the figure changed at all, 0 to 1. */
@@ -50,6 +51,8 @@ const TOGETHER_NIGHTS = 10;
 
 /** All changes in the nights of one plant that are trouble, or the end of one, in order of the night they set in. */
 export function driftOf(sheets: readonly NightSheet[]): DriftFinding[] {
+  if (sheets.length === 0) return [];
+  const show = displayFor(sheets[sheets.length - 1].site);
   const dates = sheets.map((sheet) => sheet.night.date);
   const changes = seriesOf(sheets.slice(SETTING_UP_NIGHTS)).flatMap(changesOf);
   const named = changes
@@ -57,7 +60,7 @@ export function driftOf(sheets: readonly NightSheet[]): DriftFinding[] {
     .map((one) => ({ ...one, signature: signatureOf(one) }));
   return firstOfEach(named, dates)
     .filter((one) => one.signature !== null || named.some((before) => ends(one, before)))
-    .map(findingOf)
+    .map((one) => findingOf(one, show))
     .toSorted((a, b) => (a.since < b.since ? -1 : 1));
 }
 
@@ -170,11 +173,11 @@ function signatureOf(one: Told): Signature | null {
 const FIGURE_WORDS: Readonly<Record<string, string>> = {
   leak: 'heat leak',
   'machine-power': 'machine power at its rating',
-  coolant: 'depth of the coolant below 0 \u00b0C',
+  coolant: 'depth of the coolant below freezing',
   coil: 'transfer units of the coil',
   flow: 'melt-water flow',
   'pump-power': 'pump power',
-  airing: 'share of the outdoor difference that the rooms take on in an hour',
+  airing: 'airing of the rooms in the evening',
 };
 
 const LOOK: Readonly<Record<Signature, string>> = {
@@ -188,22 +191,29 @@ const LOOK: Readonly<Record<Signature, string>> = {
   'open-door-habit': 'Look at doors, windows and vents in the evening, and whether more people are home.',
 };
 
+function probeWords(name: SeriesName): string {
+  const point = name.replace('probe ', '');
+  return `${point} ${point.startsWith('coolant') ? 'at rest' : 'beside ice'}`;
+}
+
 /** A step in the unit of its series; per cent of a logarithm, of a part, or as it is. */
 function amountOf({ unit, relative }: Series, step: number): number {
   if (unit !== '%') return rounded(step, 2);
   return rounded((relative ? Math.exp(step) - 1 : step) * 100, 1);
 }
 
-function findingOf(one: Named): DriftFinding {
+function sizeOf(amount: number, unit: SeriesUnit, show: Display): string {
+  const size = Math.abs(amount);
+  if (unit === '%') return `${size.toFixed(0)} %`;
+  return unit === 'K' ? `${show.difference(size)} ${show.differenceUnit}` : `${size.toFixed(2)} ${unit}`;
+}
+
+function findingOf(one: Named, show: Display): DriftFinding {
   const { series, change, signature } = one;
   const { unit } = series;
   const amount = amountOf(series, change.step);
-  const words =
-    FIGURE_WORDS[series.name] ?? `${series.name.replace('probe ', '')} where it should stand still`;
-  const size =
-    unit === 'per h'
-      ? Math.abs(amount).toFixed(2)
-      : `${Math.abs(amount).toFixed(unit === '%' ? 0 : 1)} ${unit}`;
+  const words = FIGURE_WORDS[series.name] ?? probeWords(series.name);
+  const size = sizeOf(amount, unit, show);
   const note = `${words} ${change.step > 0 ? 'up' : 'down'} ${size}`;
   const when =
     one.earliest === one.latest

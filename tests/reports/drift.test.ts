@@ -116,6 +116,14 @@ describe('signatures', () => {
     expect(JSON.stringify(found)).not.toMatch(/replac/i);
   });
 
+  it('speaks in the units of the site', () => {
+    const sheets = driftingSheets(story({ 'probe bank-bottom': 0.5 }));
+    const inPounds = sheets.map((sheet) => ({ ...sheet, site: { ...sheet.site, units: 'IP' as const } }));
+    expect(driftOf(sheets)[0].sentence).toMatch(/^Bank-bottom beside ice up 0\.5 K since/);
+    expect(driftOf(inPounds)[0].sentence).toMatch(/^Bank-bottom beside ice up 0\.9 °F since/);
+    expect(driftOf(inPounds)[0]).toMatchObject({ unit: 'K', change: driftOf(sheets)[0].change });
+  });
+
   it('tells a repair as a change that is no trouble, after the trouble', () => {
     const sheets = driftingSheets({
       ...story({ leak: Math.log(1.6) }),
