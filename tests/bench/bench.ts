@@ -4,6 +4,8 @@ export interface BenchOptions {
   readonly seed: number;
   /** A shorter run of the same thing, for a first look. */
   readonly quick: boolean;
+  /** Nights to live, for the benchmarks that live nights; their own number unless it is given. */
+  readonly nights?: number;
 }
 
 export interface BenchResult {

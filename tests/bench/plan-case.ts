@@ -17,7 +17,14 @@ import {
 } from './plan-deciders.ts';
 import { runLoop, type LoopOptions, type Outcome } from './plan-loop.ts';
 
-export const RUNS = ['foresight', 'planned', 'storage-priority', 'chiller-priority', 'timetable'] as const;
+export const RUNS = [
+  'foresight',
+  'planned',
+  'planned, true ice',
+  'storage-priority',
+  'chiller-priority',
+  'timetable',
+] as const;
 export type Run = (typeof RUNS)[number];
 
 /** Days that those who learn nothing live before they count: bank, battery and cabin forget how they began. */
@@ -62,7 +69,9 @@ export function runCase({ seed: baseSeed, index, nights, warmUpDays }: CaseOrder
   const learning = { ...options, startMs: countFromMs - warmUpDays * DAY_MS };
   const means: MeanForecasts = new Map();
   const problems: PlanProblem[] = [];
-  const planned = runLoop(learning, plannedDecider(learning, seed, means, problems));
+  const kept = { means, problems };
+  const planned = runLoop(learning, plannedDecider(learning, seed, kept, false));
+  const told = runLoop(learning, plannedDecider(learning, seed, { means: new Map(), problems: [] }, true));
   const storage = runLoop(
     { ...options, reachMs: endMs + 2 * DAY_MS },
     simpleDecider(options, means, 'storage-priority'),
@@ -77,6 +86,7 @@ export function runCase({ seed: baseSeed, index, nights, warmUpDays }: CaseOrder
   );
   const runs = {
     planned,
+    'planned, true ice': told,
     'storage-priority': storage,
     foresight: runLoop(options, foresightDecider(options, means, will)),
     'chiller-priority': runLoop(options, simpleDecider(options, means, 'chiller-priority')),

@@ -38,19 +38,22 @@ function atSetPoint(config: SiteConfig): SiteConfig {
   return { ...config, comfort: { ...comfort, limitC: under(comfort.limitC), sleepingLimitC } };
 }
 
-/** The plan as in life: real estimator, real forecaster; storage priority until counting begins. */
+/** The plan as in life: real estimator, unless the ice is told, real forecaster; storage priority until counting begins. */
 export function plannedDecider(
   o: LoopOptions,
   seed: number,
-  means: MeanForecasts,
-  problems: PlanProblem[],
+  kept: { means: MeanForecasts; problems: PlanProblem[] },
+  toldTheIce: boolean,
 ): Decider {
   const { config } = o.on;
+  const { means, problems } = kept;
   const estimator = createEstimator(config, { seed, startMs: o.startMs });
   const forecaster = createForecaster(atSetPoint(config), { seed });
+  const ice = ({ truth }: Sight): IceEstimate => (toldTheIce ? toldIce(truth, config) : estimator.estimate());
   return {
     strategy: 'planned',
-    senses: { estimator, forecaster },
+    estimator: toldTheIce ? null : estimator,
+    forecaster,
     decide: (sight) => {
       const { nowMs, state } = sight;
       const onTheHour = newHour(nowMs) || state.planned === null;
@@ -61,7 +64,7 @@ export function plannedDecider(
       if (!onTheHour) return goingOn(sight, config);
       const forecast = forecaster.forecast(nowMs, null);
       means.set(slotStart(nowMs, HOUR_MS), meanOf(forecast));
-      const planned = solved(problemOf(config, o.on, sight, forecast, estimator.estimate()), forecast);
+      const planned = solved(problemOf(config, o.on, sight, forecast, ice(sight)), forecast);
       problems.push(planned.problem);
       return planned;
     },
@@ -78,7 +81,8 @@ export function foresightDecider(
   const config = { ...o.on.config, planning: { ...o.on.config.planning, reserveKwh: 0 } };
   return {
     strategy: 'planned',
-    senses: null,
+    estimator: null,
+    forecaster: null,
     decide: (sight) => {
       const { nowMs, state } = sight;
       if (nowMs <= o.countFromMs) {
@@ -113,7 +117,8 @@ export function simpleDecider(
 ): Decider {
   return {
     strategy,
-    senses: null,
+    estimator: null,
+    forecaster: null,
     decide: (sight) => {
       const asked = sight.nowMs <= o.countFromMs ? 'storage-priority' : strategy;
       return simplePlanned(asked, o.on, sight, latest(means, sight.nowMs));
@@ -125,7 +130,8 @@ export function simpleDecider(
 export function idleDecider(o: LoopOptions, means: MeanForecasts): Decider {
   return {
     strategy: 'planned',
-    senses: null,
+    estimator: null,
+    forecaster: null,
     decide: (sight) => {
       const asked = sight.nowMs <= o.countFromMs ? 'storage-priority' : null;
       const planned = simplePlanned('storage-priority', o.on, sight, latest(means, sight.nowMs));

@@ -36,8 +36,9 @@ export interface Sight {
 
 export interface Decider {
   readonly strategy: Strategy;
-  /** Null: the true ice is told, and nothing is learned; all else is heard from the same faulty probes. */
-  readonly senses: { estimator: Estimator; forecaster: Forecaster } | null;
+  /** Null where the true ice is told, or nothing is learned of the weather; all else comes from the same faulty probes. */
+  readonly estimator: Estimator | null;
+  readonly forecaster: Forecaster | null;
   /** Asked at every quarter hour; null leaves the last decision in force. */
   decide(sight: Sight): Planned | null;
 }
@@ -101,8 +102,8 @@ class Loop {
     this.simulator = createSimulator({ site: this.config, seed, startMs, weather });
     this.before = this.simulator.truth();
     this.quarterFrom = this.before;
-    const senses = decider.senses ?? { estimator: this.told(), forecaster: nobody };
-    this.stages = stagesOf(this.config, senses.estimator, senses.forecaster);
+    const { estimator, forecaster } = decider;
+    this.stages = stagesOf(this.config, estimator ?? this.told(), forecaster ?? nobody);
     this.state = startState(startMs, null);
     this.nowMs = startMs;
   }

@@ -2,7 +2,8 @@
  * What planning is worth: the plan against itself with foresight and against the simple strategies, night after night
  * in the truth plant. The plan knows only what it would in life: it estimates the ice from faulty probes, forecasts
  * from what it has seen, and learns on the way. The others are told the true ice and foresee the plan's own mean;
- * foresight is told the weather and the load that will be.
+ * foresight is told the weather and the load that will be. The plan that is told the true ice shows what the estimate
+ * costs; whatever it is off by is weather.
  *
  * Ice (and battery) left at the end counts for everybody at the cheapest it can be made for.
  */
@@ -19,8 +20,8 @@ const WARM_UP_DAYS = 21;
 const CASES = [0, 1, 2, 3] as const;
 const PROCESSES = 2;
 
-export async function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
-  const nights = quick ? 2 : NIGHTS;
+export async function run({ seed, quick, nights: asked }: BenchOptions): Promise<BenchResult> {
+  const nights = asked ?? (quick ? 2 : NIGHTS);
   const warmUpDays = quick ? 5 : WARM_UP_DAYS;
   const results = await inProcesses(CASES.map((index) => ({ seed, index, nights, warmUpDays })));
   const gaps = await milpGaps(seed, quick ? 5 : 50);
@@ -101,10 +102,12 @@ function figuresOf(results: readonly CaseResult[]): Record<string, number> {
     results.reduce((sum, r) => sum + r.runs[name].warmKh / r.nights, 0) / results.length;
   return {
     costOverForesightPct: over('planned'),
+    trueIceOverForesightPct: over('planned, true ice'),
     storagePriorityOverForesightPct: over('storage-priority'),
     chillerPriorityOverForesightPct: over('chiller-priority'),
     timetableOverForesightPct: over('timetable'),
     warmHoursPerNight: warm('planned'),
+    trueIceWarmHoursPerNight: warm('planned, true ice'),
     foresightWarmHoursPerNight: warm('foresight'),
     storagePriorityWarmHoursPerNight: warm('storage-priority'),
     chillerPriorityWarmHoursPerNight: warm('chiller-priority'),

@@ -30,15 +30,20 @@ async function main(): Promise<void> {
     .option('--json', 'one object on one line')
     .option('--quick', 'a shorter run')
     .option('--seed <n>', 'base seed', '1')
+    .option('--nights <n>', 'nights to live (plan)')
     .parse();
   const name = program.args[0];
   if (!(NAMES as readonly string[]).includes(name)) {
     program.error(`Expected one of ${NAMES.join(', ')}, found "${name}".`, { exitCode: 2 });
   }
-  const options = program.opts<{ json?: boolean; quick?: boolean; seed: string }>();
+  const options = program.opts<{ json?: boolean; quick?: boolean; seed: string; nights?: string }>();
   const module = (await import(`./${name}.ts`)) as { run(o: BenchOptions): Promise<BenchResult> };
   const started = performance.now();
-  const result = await module.run({ seed: Number(options.seed), quick: options.quick === true });
+  const result = await module.run({
+    seed: Number(options.seed),
+    quick: options.quick === true,
+    ...(options.nights === undefined ? {} : { nights: Number(options.nights) }),
+  });
   const tookS = Math.round((performance.now() - started) / 100) / 10;
   if (options.json) {
     console.log(JSON.stringify({ bench: name, seed: Number(options.seed), tookS, ...result.figures }));
