@@ -60,7 +60,7 @@ export function firstChange(
   options: ChangeOptions,
 ): { change: Change; toldAt: number } | null {
   for (let end = LEAST_BEFORE + LEAST_AFTER; end <= series.length; end++) {
-    const change = scanUntil(series, end, options);
+    const change = scanUntil(series, end, options, options.leastStep);
     if (change === null || !tells(change, options)) continue;
     const later = scanUntil(series, Math.min(series.length, end + SETTLING), options);
     const settled = later !== null && tells(later, options) && later.step * change.step > 0 && later.at < end;
@@ -74,9 +74,14 @@ function tells(change: Change, options: ChangeOptions): boolean {
 }
 
 /** The scan of the last nights before `end`, in the series' own count. */
-function scanUntil(series: readonly NightValue[], end: number, options: ChangeOptions): Change | null {
+function scanUntil(
+  series: readonly NightValue[],
+  end: number,
+  options: ChangeOptions,
+  leastStep = 0,
+): Change | null {
   const offset = Math.max(0, end - WINDOW);
-  const change = scan(series.slice(offset, end), options);
+  const change = scan(series.slice(offset, end), options, leastStep);
   if (change === null) return null;
   return {
     ...change,
@@ -86,8 +91,11 @@ function scanUntil(series: readonly NightValue[], end: number, options: ChangeOp
   };
 }
 
-/** The most likely single change in a series, however unlikely; null when the series is too short. */
-export function scan(series: readonly NightValue[], options: ChangeOptions): Change | null {
+/**
+ * The most likely single change in a series, however unlikely; null when the series is too short, or the step smaller than
+ * the caller cares for.
+ */
+export function scan(series: readonly NightValue[], options: ChangeOptions, leastStep = 0): Change | null {
   const n = series.length;
   if (n < LEAST_BEFORE + LEAST_AFTER) return null;
   const basis = orthonormal(series);
@@ -99,6 +107,7 @@ export function scan(series: readonly NightValue[], options: ChangeOptions): Cha
   const steps = candidates(values, basis);
   if (steps.length === 0) return null;
   const best = steps.reduce((a, b) => (b.gain > a.gain ? b : a));
+  if (Math.abs(best.step) < leastStep) return null;
   const left = residuals(
     values.map((value, i) => (i >= best.at ? value - best.step : value)),
     basis,
