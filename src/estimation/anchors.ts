@@ -1,7 +1,7 @@
 /** Instruments that know the ice outright for a moment: thickness electrode, coolant and level of a full bank. */
 import type { Core } from './core.ts';
 import type { Moments } from './mixture.ts';
-import type { Drive } from './process.ts';
+import type { Drive } from './models.ts';
 import { marginal } from './report.ts';
 import { X } from './layout.ts';
 import type { Heard } from './update.ts';

@@ -11,7 +11,7 @@ import { PROBE_POINTS, priorsFor, STATES, type Priors, type ProbePoint } from '.
 import type { Moments } from './mixture.ts';
 import { newPlateauWatch, type PlateauWatch } from './plateau-end.ts';
 import { sensesOf, type Senses } from './observe.ts';
-import { newFlows, type Flows, type PlantModels } from './process.ts';
+import { newFlows, type Flows, type PlantModels } from './models.ts';
 import type { Nominal } from './report.ts';
 import { openBeliefs } from './start.ts';
 

@@ -4,7 +4,7 @@ import { judgeProbe } from './consistency.ts';
 import { correct, foresee, type Sense } from './filter.ts';
 import { X } from './layout.ts';
 import { varianceOf, type Alike } from './noise.ts';
-import { enteringCOf, loopWPerKOf, type Drive } from './process.ts';
+import { enteringCOf, loopWPerKOf, type Drive } from './models.ts';
 import { bestOf, type Circumstances } from './update.ts';
 
 const COIL: Alike = { fresh: 0.1, alike: 0.8, lastsS: 3600 };

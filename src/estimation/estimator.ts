@@ -16,7 +16,7 @@ import { isProbe, LAYERS, PROBE_OFFSET, PROBE_POINTS, X } from './layout.ts';
 import { remember, restoreInto } from './memory.ts';
 import { newHealth } from './consistency.ts';
 import { learned, marginal, onHand, phaseOf, probeStates } from './report.ts';
-import { openBeliefs, restate } from './start.ts';
+import { openBeliefs, restate, restateIce } from './start.ts';
 import type { Anchor, Estimator, EstimatorMemory, EstimatorOptions, IceEstimate } from './types.ts';
 import { bestOf } from './update.ts';
 
@@ -78,7 +78,7 @@ function anchor(core: Core, what: Anchor, point?: PointId): void {
     core.beliefs = openBeliefs(core.priors, bestOf(core.beliefs));
     for (const belief of core.beliefs) {
       restate(belief, X.levelZero, core.priors.mean[X.levelZero], core.priors.sd[X.levelZero]);
-      restate(belief, X.ice, 0.02, 0.1);
+      restateIce(belief, 0.02, 0.1);
       for (const layer of LAYERS) restate(belief, layer, 10, 8);
     }
     core.beliefs.length = 1;
@@ -86,7 +86,7 @@ function anchor(core: Core, what: Anchor, point?: PointId): void {
   }
   const belief = bestOf(core.beliefs);
   const full = core.capacity.mean / core.models.bank.mostIceKg;
-  restate(belief, X.ice, what === 'full' ? full : 0, what === 'full' ? 0.04 : 0.015);
+  restateIce(belief, what === 'full' ? full : 0, what === 'full' ? 0.04 : 0.015);
   core.beliefs = [belief];
 }
 

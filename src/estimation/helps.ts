@@ -3,7 +3,7 @@ import { POINTS, type PointName } from '../points.ts';
 import { levelRiseMm } from '../plant/bank.ts';
 import type { Belief } from './filter.ts';
 import { X } from './layout.ts';
-import { freezeWPerKOf, type PlantModels } from './process.ts';
+import { freezeWPerKOf, type PlantModels } from './models.ts';
 import { onHandSlopes, shared, type Slope } from './report.ts';
 
 interface Trial {

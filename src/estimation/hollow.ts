@@ -28,10 +28,11 @@ export function passWall(x: Float64Array, melted: number): void {
 }
 
 /** Water that stands between wall and ice as heat feels it when it melts, fraction of a full bank. */
-export function meltedThrough(x: Float64Array): number {
-  const open = Math.min(1, Math.max(0, 1 - x[X.rim] / RIM_ENDS));
-  return open * Math.max(0, x[X.hollow]);
-}
+export const meltedThrough = (x: Float64Array): number => throughRim(x, Math.max(0, x[X.hollow]));
+
+/** What is felt of the water behind a rim that still melts. */
+export const throughRim = (x: Float64Array, hollow: number): number =>
+  Math.min(1, Math.max(0, 1 - x[X.rim] / RIM_ENDS)) * hollow;
 
 /** Ice on the wall as coolant feels it when it freezes, fraction of a full bank. */
 export function iceOnWall(x: Float64Array): number {

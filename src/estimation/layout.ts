@@ -17,42 +17,62 @@ export const X = {
   /** Where ice melts from the wall it froze on: all within the old ice, and of it what has frozen anew on the wall. */
   hollow: 5,
   rim: 6,
-  cop: 7,
+  /** Ice of the first three layers of sealed containers less the mean of all four. */
+  firstLess: 7,
+  secondLess: 8,
+  thirdLess: 9,
+  cop: 10,
   /** Change of that gain for each 10 K outdoors above the rating. */
-  copOutdoor: 8,
+  copOutdoor: 11,
   /** Change of that gain from no ice to full. */
-  copIce: 9,
-  melt: 10,
-  meltExponent: 11,
-  meltBend: 12,
+  copIce: 12,
+  melt: 13,
+  meltExponent: 14,
+  meltBend: 15,
   /** What lopsided ice does to melting for some hours. */
-  meltNow: 13,
-  freeze: 14,
-  thickening: 15,
-  freezeNow: 16,
+  meltNow: 16,
+  freeze: 17,
+  thickening: 18,
+  freezeNow: 19,
   /** Logarithm of a full bank's ice section over the tube's: how the ice's resistance bends. */
-  growth: 17,
-  leak: 18,
-  flow: 19,
-  coil: 20,
+  growth: 20,
+  leak: 21,
+  flow: 22,
+  coil: 23,
   /** Half of the coolant's rise through the coil, for each watt, relative to its guess. */
-  span: 21,
-  power: 22,
-  powerIce: 23,
-  enteringOffset: 24,
+  span: 24,
+  power: 25,
+  powerIce: 26,
+  enteringOffset: 27,
   /** From here on nothing moves the bank: what instruments add. */
-  levelZero: 25,
-  leavingOffset: 26,
-  topOffset: 27,
-  middleOffset: 28,
-  bottomOffset: 29,
-  supplyOffset: 30,
-  returnOffset: 31,
+  levelZero: 28,
+  leavingOffset: 29,
+  topOffset: 30,
+  middleOffset: 31,
+  bottomOffset: 32,
+  supplyOffset: 33,
+  returnOffset: 34,
 } as const;
 
-export const STATES = 32;
+export const STATES = 35;
 /** The layers of water, from where it enters to where it leaves. */
 export const LAYERS = [X.top, X.upper, X.lower, X.out] as const;
+/** How the ice lies: between wall and old ice, and from layer to layer. Nothing of it where ice melts from outside. */
+export const LIE = [X.hollow, X.rim, X.firstLess, X.secondLess, X.thirdLess] as const;
+
+/** Ice of sealed containers by layer, each as a fraction of what a full layer holds. */
+export function containerIce(x: Float64Array): number[] {
+  const less = [x[X.firstLess], x[X.secondLess], x[X.thirdLess]];
+  return [...less, -less[0] - less[1] - less[2]].map((part) => x[X.ice] + part);
+}
+
+export function setContainerIce(x: Float64Array, ice: readonly number[]): void {
+  x[X.ice] = ice.reduce((sum, part) => sum + part, 0) / ice.length;
+  x[X.firstLess] = ice[0] - x[X.ice];
+  x[X.secondLess] = ice[1] - x[X.ice];
+  x[X.thirdLess] = ice[2] - x[X.ice];
+}
+
 /** States before this one drive the process; the others only show in readings. */
 export const DYNAMIC = X.levelZero;
 
@@ -100,13 +120,20 @@ function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [n
     out: [5, 5, SLOW_S],
     hollow: [0, 0, SLOW_S],
     rim: [0, 0, SLOW_S],
+    firstLess: [0, 0, SLOW_S],
+    secondLess: [0, 0, SLOW_S],
+    thirdLess: [0, 0, SLOW_S],
     cop: [0, 0.1, SLOW_S],
     copOutdoor: [0, 0.06, SLOW_S],
     copIce: [0, 0.1, SLOW_S],
     melt: [0, 0.35, SLOW_S],
     meltExponent: [bank.config.form === 'ice-on-coil-internal' ? 0.4 : bank.guess.meltExponent, 0.15, SLOW_S],
     meltBend: [0, 0.2, SLOW_S],
-    meltNow: [0, bank.config.form === 'ice-on-coil-internal' ? 0.2 : 0.08, HOURS_S],
+    meltNow: [
+      0,
+      bank.config.form === 'ice-on-coil-internal' || bank.config.form === 'sealed-containers' ? 0.2 : 0.08,
+      HOURS_S,
+    ],
     freeze: [0, 0.3, SLOW_S],
     thickening: [Math.log(bank.guess.freezeThickening), 0.6, SLOW_S],
     freezeNow: [0, 0.12, HOURS_S],

@@ -8,7 +8,7 @@ import type { Moments } from './mixture.ts';
 import type { EstimatorMemory } from './types.ts';
 
 /** Raised when the state's layout changes: an older memory is then left aside. */
-const VERSION = 2;
+const VERSION = 3;
 const TRIANGLE = (STATES * (STATES + 1)) / 2;
 
 interface StoredBelief {

@@ -2,8 +2,8 @@
  * How far model and instruments are trusted. Readings a few seconds apart err alike, because layers and lags outlast
  * them: an error of `alike` kelvin that lasts `lastsS` counts once in that time, not once in every step.
  */
-import { LAYERS, STATES, X } from './layout.ts';
-import { latentKwh, type Flows, type PlantModels } from './process.ts';
+import { LAYERS, LIE, STATES, X } from './layout.ts';
+import { latentKwh, type Flows, type PlantModels } from './models.ts';
 
 export interface Alike {
   /** Standard deviation of what is new in every step. */
@@ -51,6 +51,9 @@ const LAST_ICE = { below: 0.08, wander: 0.04 };
  */
 const WATER_WANDER_K = { flowing: 0.06, onIce: 0.05, resting: 0.006 };
 
+/** Wandering of how ice lies in containers, part of a full bank in a square-root hour; no source. */
+const LIE_WANDER = 0.02;
+
 /** Fills the noise variances of a step. `unknown` is power that may or may not have been at work, W. */
 export function processNoise(
   models: PlantModels,
@@ -70,6 +73,7 @@ export function processNoise(
   const iceWander = flows.loopW > 0 && ice < LAST_ICE.below ? LAST_ICE.wander : ICE_WANDER;
   into[X.ice] = part * part * Math.max(1, HEAT_LASTS_S / dtS) + (iceWander ** 2 * dtS) / 3600;
   for (const layer of LAYERS) into[layer] = (wander ** 2 * dtS) / 60;
+  if (models.sealed) for (const i of LIE) into[i] = (LIE_WANDER ** 2 * dtS) / 3600;
 }
 
 /** When readings keep contradicting the model, its ice and its melting are doubted; in a square-root minute. */

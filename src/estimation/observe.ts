@@ -2,7 +2,7 @@
 import { levelRiseMm } from '../plant/bank.ts';
 import type { Sense } from './filter.ts';
 import { COOLANT_RISE_K, LAYERS, PROBE_OFFSET, X, type ProbePoint } from './layout.ts';
-import { chargingWOf, facedC, freezeWPerKOf, type Drive, type PlantModels } from './process.ts';
+import { iceKgOf, chargingWOf, facedC, freezeWPerKOf, type Drive, type PlantModels } from './models.ts';
 
 const water = (point: ProbePoint, layers: readonly number[]): Sense => {
   const offset = PROBE_OFFSET[point];
@@ -22,7 +22,6 @@ export interface Senses {
 }
 
 export function sensesOf(models: PlantModels): Senses {
-  const mostKg = models.bank.mostIceKg;
   return {
     water: {
       'leaving-water': water('leaving-water', [X.out]),
@@ -31,8 +30,8 @@ export function sensesOf(models: PlantModels): Senses {
       'bank-bottom': water('bank-bottom', [models.internal ? X.top : X.out]),
     },
     level: {
-      states: [X.ice, X.levelZero],
-      predict: (x) => x[X.levelZero] + levelRiseMm(models.bank, Math.max(0, x[X.ice]) * mostKg),
+      states: [X.ice, X.firstLess, X.secondLess, X.thirdLess, X.levelZero],
+      predict: (x) => x[X.levelZero] + levelRiseMm(models.bank, iceKgOf(models, x)),
     },
     ice: { states: [X.ice], predict: (x) => x[X.ice] },
     flow: { states: [X.flow], predict: (x) => x[X.flow] },

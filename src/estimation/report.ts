@@ -6,7 +6,7 @@ import type { ProbeHealth } from './consistency.ts';
 import { sdOf, type Belief } from './filter.ts';
 import { LAYERS, PROBE_OFFSET, PROBE_POINTS, STATES, X, type ProbePoint } from './layout.ts';
 import { momentsOf, quantileOf, weightsOf, type Bell, type Moments } from './mixture.ts';
-import { onHandKwhOf, waterCOf, type PlantModels } from './process.ts';
+import { iceKgOf, onHandKwhOf, waterCOf, type PlantModels } from './models.ts';
 import type { Learned, ProbeState } from './types.ts';
 
 /**
@@ -72,7 +72,7 @@ export function onHand(models: PlantModels, beliefs: readonly Belief[]): OnHand 
     kwh,
     lowKwh: Math.min(kwh, limit(quantileOf(bells, 0.05))),
     highKwh: Math.max(kwh, limit(quantileOf(bells, 0.95))),
-    iceKg: mean((belief) => Math.max(0, belief.mean[X.ice])) * models.bank.mostIceKg,
+    iceKg: mean((belief) => iceKgOf(models, belief.mean)),
     waterC: mean((belief) => waterCOf(models, belief.mean)),
   };
 }

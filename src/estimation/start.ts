@@ -1,6 +1,6 @@
 /** Beliefs to start from, and what happens to them when the owner or a long silence says that all is open again. */
 import { beliefFrom, type Belief } from './filter.ts';
-import { LAYERS, STATES, X, type Priors } from './layout.ts';
+import { LAYERS, LIE, STATES, X, type Priors } from './layout.ts';
 
 /** Inventories that the first beliefs are centred on; the first of them is a bank without ice. */
 const START_ICE = [0, 0.15, 0.4, 0.65, 0.9];
@@ -12,7 +12,7 @@ export function openBeliefs(priors: Priors, slow: Belief | null): Belief[] {
     const belief = slow
       ? { logWeight: 0, mean: Float64Array.from(slow.mean), cov: Float64Array.from(slow.cov) }
       : beliefFrom(priors.mean, priors.sd);
-    restate(belief, X.ice, ice, ice === 0 ? 0.02 : START_SD);
+    restateIce(belief, ice, ice === 0 ? 0.02 : START_SD);
     for (const layer of LAYERS) restate(belief, layer, ice === 0 ? 8 : 0.3, ice === 0 ? 6 : 0.6);
     return belief;
   });
@@ -43,12 +43,12 @@ export function withIdea(
     cov: Float64Array.from(best.cov),
   };
   if (best.mean[X.ice] > NEARLY_EMPTY) {
-    restate(idea, X.ice, 0, 0.01);
+    restateIce(idea, 0, 0.01);
     for (const layer of LAYERS) restate(idea, layer, Math.max(0, leavingC), 1.5);
     // Ice in a coil's reach may be gone while the water beyond is still cold.
     if (internal) restate(idea, X.top, 2.5, 2.5);
   } else {
-    restate(idea, X.ice, 0.15, 0.1);
+    restateIce(idea, 0.15, 0.1);
     for (const layer of LAYERS) restate(idea, layer, Math.max(0, Math.min(leavingC, best.mean[layer])), 1.5);
   }
   return [...beliefs, idea];
@@ -62,6 +62,12 @@ export function restate(belief: Belief, i: number, mean: number, sd: number): vo
     belief.cov[j * STATES + i] = 0;
   }
   belief.cov[i * STATES + i] = sd * sd;
+}
+
+/** Sets the ice anew, and that it lies evenly. */
+export function restateIce(belief: Belief, mean: number, sd: number): void {
+  restate(belief, X.ice, mean, sd);
+  for (const i of LIE) restate(belief, i, 0, 0);
 }
 
 /** Keeps means where physics allows them and parameters within reach of their priors. */

@@ -9,7 +9,9 @@ import { LAYERS, METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layo
 import { tidy, weightsOf } from './mixture.ts';
 import { addDoubt, processNoise } from './noise.ts';
 import { newPlateauWatch, watchPlateau } from './plateau-end.ts';
-import { advance, loopWPerKOf, newFlows, type Drive } from './process.ts';
+import { loopWPerKOf, newFlows, type Drive } from './models.ts';
+import { advance } from './process.ts';
+import { SEALED_LEAST } from './sealed.ts';
 import { anchorsOf } from './anchors.ts';
 import { flowProbability, runningOf, type LeavingStory, type Running } from './running.ts';
 import { bound, restate, withIdea } from './start.ts';
@@ -58,7 +60,7 @@ export function advanceBank(core: Core, nowMs: number, ordered: Command | null):
   core.predictedLeavingC = drive.flowing > 0 ? expectedLeavingC(core) : null;
   judgeEntering(core, now);
   learn(learnerOf(core), core.beliefs, now);
-  for (const belief of core.beliefs) bound(belief, core.priors, core.models.sealed ? -0.4 : 0);
+  for (const belief of core.beliefs) bound(belief, core.priors, core.models.sealed ? SEALED_LEAST : 0);
   datePlateaus(core, nowMs);
   core.folder.close();
 }

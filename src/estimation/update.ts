@@ -14,7 +14,7 @@ import {
 import { PROBE_OFFSET, X, type ProbePoint, type WetPoint } from './layout.ts';
 import { NOISE, varianceOf, type Alike } from './noise.ts';
 import type { Senses } from './observe.ts';
-import { waterCOf, type Drive, type PlantModels } from './process.ts';
+import { waterCOf, type Drive, type PlantModels } from './models.ts';
 
 export interface Heard {
   readonly waterC: Readonly<Partial<Record<WetPoint, number>>>;
@@ -89,7 +89,7 @@ function restingOnIce(
   models: PlantModels,
 ): WaterRule | null {
   if (models.sealed) {
-    return point === 'leaving-water' ? null : { noise: NOISE.waterWarm, plateau: settledBath(trueC, now) };
+    return point === 'leaving-water' ? null : { noise: NOISE.waterLayered, plateau: settledBath(trueC, now) };
   }
   const layered = !models.bank.guess.iceHeld && point !== 'bank-top';
   if (Math.abs(trueC) > 0.8 || layered) {

@@ -12,7 +12,7 @@ export interface Pull {
   readonly enteringC: number;
   /** Conductance from each layer to what freezes or melts, and the temperature there. */
   readonly toIceWPerK: readonly number[];
-  readonly iceC: number;
+  readonly iceC: readonly number[];
   /** Heat from elsewhere into each layer, W. */
   readonly otherW: number;
   readonly dtS: number;
@@ -21,21 +21,20 @@ export interface Pull {
 export interface Passed {
   /** Heat that the loop brought in, W. */
   loopW: number;
-  /** What went on to the ice, J: exactly what came in and is not found in the water. */
-  toIceJ: number;
+  /** What went on to the ice from each layer, J: exactly what came in and is not found in the water. */
+  readonly toIceJ: number[];
 }
 
 /** Moves the layers on in place, each by its own exponential; heat is conserved whatever the step. */
 export function passLayers(x: Float64Array, pull: Pull, passed: Passed): void {
   const { layerJPerK, loopWPerK, dtS } = pull;
   let inC = pull.enteringC;
-  let storedK = 0;
   for (let k = 0; k < LAYERS.length; k++) {
     const i = LAYERS[k];
     const before = x[i];
     const ice = pull.toIceWPerK[k];
     const total = loopWPerK + ice;
-    const gainW = loopWPerK * inC + ice * pull.iceC + pull.otherW;
+    const gainW = loopWPerK * inC + ice * pull.iceC[k] + pull.otherW;
     let mean: number;
     if (total > 1e-9) {
       const rate = (total * dtS) / layerJPerK;
@@ -47,11 +46,10 @@ export function passLayers(x: Float64Array, pull: Pull, passed: Passed): void {
       x[i] = before + (gainW * dtS) / layerJPerK;
       mean = 0.5 * (before + x[i]);
     }
-    storedK += x[i] - before;
+    passed.toIceJ[k] = (loopWPerK * (inC - mean) + pull.otherW) * dtS - layerJPerK * (x[i] - before);
     inC = mean;
   }
   passed.loopW = loopWPerK * (pull.enteringC - inC);
-  passed.toIceJ = (passed.loopW + LAYERS.length * pull.otherW) * dtS - layerJPerK * storedK;
 }
 
 export function meanOf(x: Float64Array): number {
