@@ -40,6 +40,10 @@ const LEAST_FLUSH_REAL_MS = 1000;
 const URGENT_EVERY_MS = 1000;
 const URGENT_POINTS = new Set(['drip-tray-wet', 'high-pressure-trip', 'ice-at-electrode']);
 
+/** What a setting asks for, from least to most: each does all that stands before it. */
+const AFTER = ['cycle', 'plan', 'limit'] as const;
+export type After = (typeof AFTER)[number];
+
 export class Daemon {
   readonly owner: Owner;
   readonly tellings: Tellings;
@@ -63,7 +67,7 @@ export class Daemon {
   readonly #highWater = new HighWater();
   readonly #past = new Past();
   #startedMs = 0;
-  #soon: (() => void) | null = null;
+  #soon: After | null = null;
   #last: Ticked | null = null;
   #lastPlan: PlanRecord | null = null;
   #lastUrgentMs = 0;
@@ -278,17 +282,21 @@ export class Daemon {
     this.planAfresh();
   }
 
-  /** Does something a moment later; of several the last one is done. */
-  soon(work: () => void): void {
+  /** Takes over a setting a moment later; those of a burst are taken over together. */
+  soon(after: After): void {
     const { clock, clockRate } = this.#parts;
     if (this.#soon === null) this.#stops.push(clock.after(SOON_REAL_MS * clockRate, () => this.#doSoon()));
-    this.#soon = work;
+    if (this.#soon === null || AFTER.indexOf(after) > AFTER.indexOf(this.#soon)) this.#soon = after;
   }
 
   #doSoon(): void {
-    const work = this.#soon;
+    const after = this.#soon;
     this.#soon = null;
-    if (work !== null) this.#guarded('taking over a setting', work);
+    this.#guarded('taking over a setting', () => {
+      if (after === 'limit') this.limitChanged();
+      else if (after === 'plan') this.planAfresh();
+      else this.cycle();
+    });
   }
 
   /** Makes a new plan at once. */

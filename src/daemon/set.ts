@@ -3,7 +3,7 @@ import type { Strategy, Told, WishName } from '../commands.ts';
 import { sentenceOf } from '../errors.ts';
 import type { SettablePath } from '../mqtt/homie.ts';
 import type { Clock } from '../time.ts';
-import type { Daemon } from './daemon.ts';
+import type { After, Daemon } from './daemon.ts';
 
 /** Takes a setting; null when it is accepted, else why not. The effect comes a moment later: a burst of settings makes one plan. */
 export function setByOwner(
@@ -22,24 +22,24 @@ export function setByOwner(
   }
 }
 
-function take(daemon: Daemon, clock: Clock, path: SettablePath, value: number | string): (() => void) | null {
+function take(daemon: Daemon, clock: Clock, path: SettablePath, value: number | string): After | null {
   const nowMs = clock.nowMs();
   switch (path) {
     case 'plan/strategy':
       daemon.owner.strategy(value as Strategy);
-      return () => daemon.planAfresh();
+      return 'plan';
     case 'bank/told':
       if (value === 'nothing') daemon.takeBack();
       else daemon.tell(value as Told, null);
       return null;
     case 'dispatch/wish':
       daemon.owner.wish(value as WishName, daemon.owner.settings(nowMs).wishForMs, nowMs);
-      return () => daemon.cycle();
+      return 'cycle';
     case 'dispatch/wish-for':
       daemon.owner.wishFor(Number(value), nowMs);
-      return () => daemon.cycle();
+      return 'cycle';
     case 'comfort/limit':
       daemon.owner.limit(Number(value));
-      return () => daemon.limitChanged();
+      return 'limit';
   }
 }
