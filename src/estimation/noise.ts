@@ -3,7 +3,7 @@
  * them: an error of `alike` kelvin that lasts `lastsS` counts once in that time, not once in every step.
  */
 import { LAYERS, LIE, STATES, X } from './layout.ts';
-import { latentKwh, type Flows, type PlantModels } from './models.ts';
+import { latentKwh, type Drive, type Flows, type PlantModels } from './models.ts';
 
 export interface Alike {
   /** Standard deviation of what is new in every step. */
@@ -38,8 +38,11 @@ export function varianceOf({ fresh, alike, lastsS }: Alike, dtS: number): number
   return fresh ** 2 + alike ** 2 * Math.max(1, lastsS / dtS);
 }
 
-/** Part of every heat flow that is uncertain beyond its learned gain, and how long such an error lasts. */
-const HEAT_PART = 0.05;
+/**
+ * Part of a heat flow that is uncertain beyond its learned gain, where power or entering water is measured and where
+ * the model alone tells it; and how long such an error lasts. No source.
+ */
+const HEAT_PART = { measured: 0.05, modelled: 0.15 };
 const HEAT_LASTS_S = 5400;
 /** Wandering of the ice for reasons not modelled, part of a full bank in a square-root hour. */
 const ICE_WANDER = 0.002;
@@ -54,18 +57,24 @@ const WATER_WANDER_K = { flowing: 0.06, onIce: 0.05, resting: 0.006 };
 /** Wandering of how ice lies in containers, part of a full bank in a square-root hour; no source. */
 const LIE_WANDER = 0.02;
 
+const partOf = (measured: number | null): number =>
+  measured === null ? HEAT_PART.modelled : HEAT_PART.measured;
+
 /** Fills the noise variances of a step. `unknown` is power that may or may not have been at work, W. */
 export function processNoise(
   models: PlantModels,
   flows: Flows,
-  flowing: number,
+  drive: Pick<Drive, 'flowing' | 'chillerW' | 'enteringC' | 'dtS'>,
   ice: number,
   unknownW: number,
-  dtS: number,
   into: Float64Array,
 ): void {
   const fullJ = latentKwh(models) * 3.6e6;
-  const uncertainW = HEAT_PART * (Math.abs(flows.chargingW) + Math.abs(flows.loopW)) + 0.5 * unknownW;
+  const { dtS, flowing } = drive;
+  const uncertainW =
+    partOf(drive.chillerW) * Math.abs(flows.chargingW) +
+    partOf(drive.enteringC) * Math.abs(flows.loopW) +
+    0.5 * unknownW;
   const part = (uncertainW * dtS) / fullJ;
   const still = ice > 0.01 ? WATER_WANDER_K.onIce : WATER_WANDER_K.resting;
   const wander = flowing > 0 ? WATER_WANDER_K.flowing : still;

@@ -275,7 +275,7 @@ function move(core: Core, drive: Drive, running: Running, dtS: number): void {
   for (const belief of core.beliefs) {
     predict(belief, (x) => advance(core.models, x, drive, flows), ZERO, core.work);
     // The last evaluation of a prediction is at the belief's centre: its flows are the belief's.
-    processNoise(core.models, flows, running.flowing, belief.mean[X.ice], unknownW, dtS, core.noise);
+    processNoise(core.models, flows, drive, belief.mean[X.ice], unknownW, core.noise);
     if (doubted) addDoubt(core.noise, dtS);
     for (let i = 0; i < STATES; i++) belief.cov[i * STATES + i] += core.noise[i];
     if (belief === best) core.flows = { ...flows };
