@@ -25,8 +25,8 @@ export interface Series {
 const ENOUGH_PCT = 90;
 /** Steps of less than this are not worth a visit: half of the 15 % that must be found. */
 const LEAST_RELATIVE_STEP = 0.075;
-/** More than half of a one-wire thermometer's own tolerance of ±0.5 K (common practice, no source). */
-const LEAST_PROBE_STEP_K = 0.3;
+/** Near a one-wire thermometer's own tolerance of ±0.5 K (common practice, no source); less may be water beside a wall. */
+const LEAST_PROBE_STEP_K = 0.4;
 const PROBE_NOISE_K = 0.03;
 /** A shut cabin follows the outdoor air by some hundredths of the difference an hour; an open door by tenths. */
 const [LEAST_AIRING_STEP, AIRING_NOISE] = [0.1, 0.02];

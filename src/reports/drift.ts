@@ -117,12 +117,16 @@ const BROUGHT_ABOUT_BY: Readonly<Partial<Record<SeriesName, readonly SeriesName[
   coolant: ['probe coolant-supply'],
   'machine-power': ['probe coolant-supply'],
   leak: ['coolant', 'probe coolant-supply', 'flow'],
-  'probe bank-top': ['leak'],
-  'probe bank-middle': ['leak'],
-  'probe bank-bottom': ['leak'],
 };
 
+/** By at most this much a leak warms the water by the walls while ice is made. */
+const WARMED_BY_LEAK_K = 0.6;
+
 function explainedAway(one: Told, all: readonly Told[], dates: readonly string[]): boolean {
+  if (one.series.name.startsWith('probe bank-')) {
+    const { step } = one.change;
+    return step > 0 && step < WARMED_BY_LEAK_K && alongside(one, 'leak', all, dates) > 0;
+  }
   const causes = BROUGHT_ABOUT_BY[one.series.name] ?? [];
   return causes.some((name) => alongside(one, name, all, dates) !== 0);
 }
