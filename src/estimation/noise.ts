@@ -30,9 +30,10 @@ export const NOISE = {
   power: { fresh: 0.01, alike: 0.05, lastsS: 3600 },
   /** mm. */
   level: { fresh: 2, alike: 1, lastsS: 2400 },
-  /** Inventory as a fraction, at an anchor. */
-  anchor: { fresh: 0.02, alike: 0.05, lastsS: 3600 },
 } as const satisfies Record<string, Alike>;
+
+/** What an anchor may be off by, inventory as a fraction; it speaks once for each passing. No source. */
+export const ANCHOR_SD = 0.05;
 
 export function varianceOf({ fresh, alike, lastsS }: Alike, dtS: number): number {
   return fresh ** 2 + alike ** 2 * Math.max(1, lastsS / dtS);

@@ -149,7 +149,7 @@ function driveOf(core: Core, running: Running, nowMs: number): Drive {
   const air = roomC ?? ROOM_C;
   const needsCoil = running.flowing > 0 && enteringC === null;
   const leavingC = Math.max(0, bestOf(core.beliefs).mean[X.out]);
-  const flowLPerMin = running.flowLPerMin ?? config.delivery.flowLPerMin * (core.meterRatio ?? 1);
+  const flowLPerMin = running.flowLPerMin ?? unmeteredFlow(core, held('pump-power'));
   return {
     dtS: core.stepMs / 1000,
     charging: running.charging,
@@ -168,6 +168,21 @@ function driveOf(core: Core, running: Running, nowMs: number): Drive {
       : 1,
     pumpW: PUMP_HEAT_PART * (held('pump-power') ?? config.delivery.pumpW),
   };
+}
+
+/** A pump this far from its nameplate's power is no pump on a speed control. */
+const MOST_SPEED = 1.3;
+
+/**
+ * Flow without a meter, or while it is silent: the pump's power tells its speed, flow going as speed and power as its
+ * cube (affinity laws of centrifugal pumps). How the nameplate is off is learned on top of it.
+ */
+function unmeteredFlow(core: Core, pumpW: number | null): number {
+  const { flowLPerMin, pumpW: nominalW } = core.config.delivery;
+  if (core.meterRatio !== null) return flowLPerMin * core.meterRatio;
+  const running = pumpW !== null && nominalW > 0 && pumpW > core.config.delivery.runningAboveW;
+  const speed = running ? Math.cbrt(pumpW / nominalW) : 1;
+  return flowLPerMin * Math.min(MOST_SPEED, Math.max(1 / MOST_SPEED, speed));
 }
 
 function surroundOf(core: Core, roomC: number | null, outdoorC: number): number {

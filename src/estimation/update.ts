@@ -12,7 +12,7 @@ import {
   type Workspace,
 } from './filter.ts';
 import { PROBE_OFFSET, X, type ProbePoint, type WetPoint } from './layout.ts';
-import { NOISE, varianceOf, type Alike } from './noise.ts';
+import { ANCHOR_SD, NOISE, varianceOf, type Alike } from './noise.ts';
 import type { Senses } from './observe.ts';
 import { waterCOf, type Drive, type PlantModels } from './models.ts';
 
@@ -204,15 +204,13 @@ function learnMachine(learner: Learner, beliefs: readonly Belief[], now: Circums
 }
 
 function learnAnchors(learner: Learner, beliefs: readonly Belief[], now: Circumstances): void {
-  const softness = Math.hypot(NOISE.anchor.fresh, NOISE.anchor.alike);
   for (const { ice, side } of now.heard.anchors) {
     for (const belief of beliefs) {
       if (side !== 'at') {
-        weigh(belief, truncate(belief, X.ice, ice, side, softness));
+        weigh(belief, truncate(belief, X.ice, ice, side, ANCHOR_SD));
         continue;
       }
-      const noise = varianceOf(NOISE.anchor, now.drive.dtS);
-      weigh(belief, logDensity(correct(belief, learner.senses.ice, ice, noise, learner.work)));
+      weigh(belief, logDensity(correct(belief, learner.senses.ice, ice, ANCHOR_SD ** 2, learner.work)));
     }
   }
 }
