@@ -106,12 +106,14 @@ const HOURS_S = 3 * 3600;
 /**
  * [mean, standard deviation, forgetting time]. Spreads are what a nameplate is worth (common practice, no source):
  * COP ±15 %, leak ±40 %, flow ±20 %, probes ±0.5 K at their limits; conductances known to a third.
- * An internal-melt bank gives its cold more freely near full than a power law says (published conductance polynomial of
- * Henze & Krarti 2002, and the measured tank): its bend starts above nothing.
+ * Where ice melts from the wall it froze on, melting follows what has melted since (`hollow.ts`) and the inventory
+ * only by the coil that ice still covers; the measured tank strays from that by a fifth for hours.
  * The ice and the water's temperatures are no parameters: their rows are unused here.
  */
 function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [number, number, number]>> {
   const level = bank.config.emptyLevelMm;
+  const internal = bank.config.form === 'ice-on-coil-internal';
+  const fromWall = internal || bank.config.form === 'sealed-containers';
   return {
     ice: [0.5, 0.3, SLOW_S],
     top: [5, 5, SLOW_S],
@@ -127,13 +129,9 @@ function priorRows(bank: BankModel): Readonly<Record<keyof typeof X, readonly [n
     copOutdoor: [0, 0.06, SLOW_S],
     copIce: [0, 0.1, SLOW_S],
     melt: [0, 0.35, SLOW_S],
-    meltExponent: [bank.config.form === 'ice-on-coil-internal' ? 0.4 : bank.guess.meltExponent, 0.15, SLOW_S],
+    meltExponent: [internal ? 0.4 : bank.guess.meltExponent, 0.15, SLOW_S],
     meltBend: [0, 0.2, SLOW_S],
-    meltNow: [
-      0,
-      bank.config.form === 'ice-on-coil-internal' || bank.config.form === 'sealed-containers' ? 0.2 : 0.08,
-      HOURS_S,
-    ],
+    meltNow: [0, fromWall ? 0.2 : 0.08, HOURS_S],
     freeze: [0, 0.3, SLOW_S],
     thickening: [Math.log(bank.guess.freezeThickening), 0.6, SLOW_S],
     freezeNow: [0, 0.12, HOURS_S],
