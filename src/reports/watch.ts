@@ -40,8 +40,7 @@ const READ_FROM: Readonly<Record<Signature, { figures: readonly string[]; needs:
   },
   'lying-probe': {
     figures: ['probe '],
-    needs:
-      'without a probe in the bank or the coolant none has a place where it must stand still',
+    needs: 'without a probe in the bank or the coolant none has a place where it must stand still',
   },
   'open-door-habit': {
     figures: ['airing'],
