@@ -1,5 +1,6 @@
 /** A bank whose brine melts the ice from within the tube that froze it. */
 import {
+  COIL,
   freezeWPerKOf,
   meltWPerKOf,
   enteringCOf,
@@ -17,8 +18,6 @@ import { X } from './layout.ts';
 const COIL_CONTENT_S = 90;
 /** Least melt conductance of an internal-melt coil with ice round it, of that at half inventory; measured tank: a half. */
 const LEAST_SHARE = 0.45;
-/** A coil that warms or cools water alone does so by natural convection: part of the start of freezing. No source. */
-const BARE_PART = 0.6;
 
 /** Coolant in a coil within ice or water. Colder coolant than the bank freezes. Gives the heat brought in, W. */
 export function advanceInternal(models: PlantModels, x: Float64Array, drive: Drive, leakW: number): number {
@@ -52,7 +51,7 @@ function throughCoil(models: PlantModels, x: Float64Array, drive: Drive, dt: num
 }
 
 function coilConductanceWPerK(models: PlantModels, x: Float64Array, freezing: boolean): number {
-  const bare = BARE_PART * freezeWPerKOf(models, x);
+  const bare = COIL.barePart * freezeWPerKOf(models, x);
   if (!(x[X.ice] > 0)) return bare;
   return freezing ? freezeWPerKOf(models, x) : Math.max(0.5 * bare, meltFromWithinWPerK(models, x));
 }

@@ -3,7 +3,16 @@
  * them: an error of `alike` kelvin that lasts `lastsS` counts once in that time, not once in every step.
  */
 import { LAYERS, LIE, STATES, X } from './layout.ts';
-import { latentKwh, type Drive, type Flows, type PlantModels } from './models.ts';
+import type { Belief } from './filter.ts';
+import {
+  fullJ,
+  latentKwh,
+  liquidJPerK,
+  waterCOf,
+  type Drive,
+  type Flows,
+  type PlantModels,
+} from './models.ts';
 
 export interface Alike {
   /** Standard deviation of what is new in every step. */
@@ -92,4 +101,22 @@ const DOUBT = { ice: 0.012, meltNow: 0.04 };
 export function addDoubt(noise: Float64Array, dtS: number): void {
   noise[X.ice] += (DOUBT.ice ** 2 * dtS) / 60;
   noise[X.meltNow] += (DOUBT.meltNow ** 2 * dtS) / 60;
+}
+
+/** How far water and young ice share a charge otherwise than expected, K of the water in a square-root minute. */
+const SHARE_K = 0.25;
+const YOUNG = { iceBelow: 0.3, waterAboveC: 0.5 };
+
+/**
+ * A fresh charge freezes on the coil or cools the water first, whether crystals are left or not; nobody sees which.
+ * Noise in which the one's gain is the other's loss, so that warm water is no news of the machine.
+ */
+export function addShare(models: PlantModels, belief: Belief, dtS: number): void {
+  const { mean, cov } = belief;
+  if (models.sealed || mean[X.ice] > YOUNG.iceBelow || waterCOf(models, mean) < YOUNG.waterAboveC) return;
+  const icePerK = liquidJPerK(models, mean[X.ice]) / fullJ(models);
+  const along: [number, number][] = (models.internal ? [X.top] : LAYERS).map((layer) => [layer, 1]);
+  along.push([X.ice, icePerK]);
+  const q = (SHARE_K ** 2 * dtS) / 60;
+  for (const [i, u] of along) for (const [j, v] of along) cov[i * STATES + j] += q * u * v;
 }

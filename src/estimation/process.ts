@@ -7,6 +7,7 @@ import { passWall } from './hollow.ts';
 import { advanceInternal } from './internal.ts';
 import { X } from './layout.ts';
 import {
+  COIL,
   chargingWOf,
   fullJ,
   liquidJPerK,
@@ -83,10 +84,10 @@ function spread(models: PlantModels, x: Float64Array, total: number): readonly n
   return parts.map((part) => (total * part) / sum);
 }
 
-/** Takes the machine's heat out: from the ice when there is some, from warm water first when there is little. */
+/** Takes the machine's heat out: from warm water as long as there is little ice, else from what freezes. */
 function charge(models: PlantModels, x: Float64Array, heatJ: number): void {
   if (!(heatJ > 0)) return;
-  const warm = Math.min(1, Math.max(0, waterCOf(models, x) / 4));
+  const warm = Math.min(1, Math.max(0, (waterCOf(models, x) - COIL.freezesBelowC + 1) / 2));
   const scarce = 1 - Math.min(1, Math.max(0, x[X.ice] / 0.05));
   const fromWaterJ = heatJ * (x[X.ice] > 0 ? warm * scarce : 1);
   const cooler = fromWaterJ / liquidJPerK(models, x[X.ice]);

@@ -7,7 +7,7 @@ import { DOUBTED_ABOVE, newHealth, watchSwap } from './consistency.ts';
 import { forget, predict, type Belief } from './filter.ts';
 import { LAYERS, METER_SD, PROBE_OFFSET, STATES, X, type WetPoint } from './layout.ts';
 import { tidy, weightsOf } from './mixture.ts';
-import { addDoubt, processNoise } from './noise.ts';
+import { addDoubt, addShare, processNoise } from './noise.ts';
 import { newPlateauWatch, watchPlateau } from './plateau-end.ts';
 import { loopWPerKOf, newFlows, type Drive } from './models.ts';
 import { advance } from './process.ts';
@@ -292,6 +292,7 @@ function move(core: Core, drive: Drive, running: Running, dtS: number): void {
     // The last evaluation of a prediction is at the belief's centre: its flows are the belief's.
     processNoise(core.models, flows, drive, belief.mean[X.ice], unknownW, core.noise);
     if (doubted) addDoubt(core.noise, dtS);
+    if (drive.charging > 0) addShare(core.models, belief, dtS);
     for (let i = 0; i < STATES; i++) belief.cov[i * STATES + i] += core.noise[i];
     if (belief === best) core.flows = { ...flows };
   }

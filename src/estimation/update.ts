@@ -184,8 +184,18 @@ function learnScalar(
   }
 }
 
+/**
+ * At the start of a fresh charge the coil may face ice that has just begun or the water that is still warm: nobody
+ * knows which, and what coolant and power say then would be put down to the coil's conductance.
+ */
+const FRESH = { iceBelow: 0.1, waterAboveC: 1 };
+
+function isFresh({ models }: Learner, { mean }: Belief): boolean {
+  return !models.sealed && mean[X.ice] < FRESH.iceBelow && waterCOf(models, mean) > FRESH.waterAboveC;
+}
+
 function learnMachine(learner: Learner, beliefs: readonly Belief[], now: Circumstances): void {
-  if (now.drive.charging < 1 || now.chargingS < SETTLED_S) return;
+  if (now.drive.charging < 1 || now.chargingS < SETTLED_S || isFresh(learner, bestOf(beliefs))) return;
   const { heard, drive } = now;
   const { senses } = learner;
   const noise = learner.models.internal ? NOISE.coolantHidden : NOISE.coolant;
