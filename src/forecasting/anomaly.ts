@@ -10,12 +10,15 @@ import { addRow, normalEquations, solveNormal } from './normal-equations.ts';
 const TRAIN_HOURS = 45 * 24;
 /** Neighbouring hours tell nearly the same: one row counts as this part of an independent one. */
 const ROW_WEIGHT = 1 / 8;
-/** The prior counts as this many independent rows: two days. */
-const PRIOR_ROWS = 16;
-/** How an offset fades before anything is learned: that of the last hour, per hour, and the day's mean, h. */
+/** How an offset fades before anything is learned. */
 export interface Fading {
+  /** Of the last hour, per hour, and of the day's mean, h. */
   readonly quick: number;
   readonly slowHours: number;
+  /** Part of it that fades so; the rest is gone at once. */
+  readonly share: number;
+  /** Counts as this many independent rows; eight are a day. */
+  readonly rows: number;
 }
 
 /** Keeps the prior of a feature that never moved from vanishing. */
@@ -162,10 +165,10 @@ function rowOf(known: Known, target: number): number[] {
 }
 
 const priorOf = (fading: Fading, lead: number): number[] => [
-  fading.quick ** lead,
-  Math.exp(-lead / fading.slowHours),
+  fading.share * fading.quick ** lead,
+  fading.share * Math.exp(-lead / fading.slowHours),
   0,
-  0.4 * Math.exp(-lead / fading.slowHours),
+  0.4 * fading.share * Math.exp(-lead / fading.slowHours),
   0,
   0,
   0,
@@ -193,7 +196,7 @@ function fitLead(
   const prior = priorOf(fading, lead);
   const equations = normalEquations(
     prior,
-    scale.map((variance) => PRIOR_ROWS * variance),
+    scale.map((variance) => fading.rows * variance),
   );
   for (let i = Math.max(0, offsets.length - TRAIN_HOURS); i + lead < offsets.length; i += 1) {
     const state = known[i];

@@ -4,7 +4,8 @@ import { BIN_DAYS, type HourSeries } from './bins.ts';
 import type { CabinHour } from './cabin-track.ts';
 import { USUAL_CLEARNESS } from './design-weather.ts';
 import type { HourLine } from './hour-line.ts';
-import { clearnessOf, panelScale } from './sky.ts';
+import { learnPanels, panelClearness, stillStands, type Panels } from './panels.ts';
+import { rangeClearness, SunTable } from './sky.ts';
 
 /** Hours that are kept. */
 const MOST_HOURS = BIN_DAYS * 24;
@@ -23,18 +24,25 @@ export class Book {
   readonly lines: readonly HourLine[];
   private readonly config: SiteConfig;
   private clearness: readonly (number | null)[] | null = null;
-  private scale: Float64Array | null | undefined = undefined;
   private hours: readonly CabinHour[] | null = null;
   private readonly series = new Map<number, WeatherSeries>();
 
-  constructor(config: SiteConfig, lines: readonly HourLine[]) {
+  /** The panels as they are known; null when no panel was ever heard and none is named. */
+  readonly panels: Panels | null;
+  readonly sun: SunTable;
+
+  constructor(config: SiteConfig, lines: readonly HourLine[], before: Book | null = null) {
     this.config = config;
     this.lines = lines;
+    this.sun = before?.sun ?? new SunTable(config);
+    const known = before?.panels ?? null;
+    this.panels =
+      known && stillStands(known, this.last?.hour ?? 0) ? known : learnPanels(config, lines, this.sun);
   }
 
   with(line: HourLine): Book {
     const kept = this.lines.filter((old) => old.hour > line.hour - MOST_HOURS && old.hour < line.hour);
-    return new Book(this.config, [...kept, line]);
+    return new Book(this.config, [...kept, line], this);
   }
 
   get last(): HourLine | null {
@@ -51,12 +59,6 @@ export class Book {
     return this.lines.filter((line) => line.outdoorC !== null).length / 24;
   }
 
-  /** Panel power by clear sunshine, see `panelScale`. */
-  get panelScale(): Float64Array | null {
-    if (this.scale === undefined) this.scale = panelScale(this.config, this.lines);
-    return this.scale;
-  }
-
   /** Weather up to an hour, one value an hour, null where there is none. */
   weatherTo(toHour: number): WeatherSeries {
     const known = this.series.get(toHour) ?? this.readWeather(toHour);
@@ -71,7 +73,11 @@ export class Book {
   }
 
   private get clearnessByLine(): readonly (number | null)[] {
-    this.clearness ??= clearnessOf(this.config, this.lines);
+    const { panels, lines, sun } = this;
+    const heard = panels !== null && lines.some((line) => line.panelW !== null);
+    this.clearness ??= heard
+      ? panelClearness(panels, lines, sun)
+      : rangeClearness(lines, this.config.site.longitudeDeg);
     return this.clearness;
   }
 

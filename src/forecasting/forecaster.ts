@@ -81,8 +81,8 @@ export function createForecaster(
       const leads = leadsFor(grid, lastHour);
       const ahead = weather.predict(book, lastHour, leads);
       const hubC = external ? hubByLead(external, lastHour, leads) : null;
-      const past = lookBack(book, issues, lastHour, leads, cabin.track(book).unexplainedW);
-      issues = keepIssue(issues, issueOf(lastHour, ahead, hubC, book.panelScale));
+      const past = lookBack(book, issues, lastHour, leads, cabin.track(book).unexplainedW, ahead.sky);
+      issues = keepIssue(issues, issueOf(lastHour, ahead, hubC));
       const frame = scenarioFrame(config, plant, book, cabin, grid, lastHour, seen, nowMs);
       const scenarios = drawScenarios(config, options.seed, frame, ahead, hubC, past);
       return {
@@ -95,7 +95,7 @@ export function createForecaster(
           book.daysOfWeather,
           hubC === null ? null : blendAt(past.blends, 24),
           cabin.memory,
-          frame.hasPanels,
+          frame.panels !== null,
         ),
       };
     },

@@ -13,9 +13,8 @@ export interface HourLine {
   readonly roomW: number | null;
   /** null too while a full island battery may hold the panels back. */
   readonly panelW: number | null;
-  /** Sunshine of a cloudless sky, on the level and on the plane of the panels. */
+  /** Sunshine of a cloudless sky on the level. */
   readonly clearWPerM2: number;
-  readonly clearOnPanelsWPerM2: number;
   /** Sensible heat that machines brought into the room less what the coil took out of it. */
   readonly machineHeatW: number | null;
   /** Sensible and latent cooling that the coil gave. */

@@ -128,7 +128,7 @@ export class HourGatherer {
       roomEndC: means.room.value === null ? null : this.roomEndC,
       roomW: means.roomW.value,
       panelW: means.panel.value,
-      ...clearSkyOf(this.config, hour),
+      clearWPerM2: clearSkyOf(this.config, hour),
       machineHeatW: means.machine.value,
       sensibleW: means.sensible.valueOrZero,
       latentW: means.latent.value,

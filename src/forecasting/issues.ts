@@ -2,7 +2,6 @@
  * Past forecasts as they were issued, kept to learn how wrong they turn out: the hub's bias and spread by lead, how to
  * blend it with the own one, and whole error trajectories from which scenarios are drawn.
  */
-import { hourOfDay } from './bins.ts';
 import type { HoursAhead } from './own-weather.ts';
 
 /** Hours between issues that are kept, and how long they are: errors of last season would be too wide or too narrow. */
@@ -14,11 +13,8 @@ export interface Issue {
   readonly hour: number;
   readonly outdoorC: readonly number[];
   readonly dewC: readonly number[];
-  /**
-   * Clearness times the panels' scale at issue (the scale moves with the season, so clearness alone would not compare);
-   * clearness alone without panels.
-   */
-  readonly sunYield: readonly number[];
+  /** Score of clearness among what the hour of the day had lately (`sky-score.ts`). */
+  readonly skyScore: readonly number[];
   /** The hub's temperatures for the same leads; null where it gave none. */
   readonly hubC: readonly (number | null)[] | null;
 }
@@ -28,26 +24,15 @@ const round = (value: number, digits: number): number => Number(value.toFixed(di
 const rounded = (values: Float64Array, digits: number): number[] =>
   Array.from(values, (value) => round(value, digits));
 
-export function issueOf(
-  hour: number,
-  ahead: HoursAhead,
-  hubC: readonly (number | null)[] | null,
-  scale: Float64Array | null,
-): Issue {
+export function issueOf(hour: number, ahead: HoursAhead, hubC: readonly (number | null)[] | null): Issue {
   return {
     hour,
     outdoorC: rounded(ahead.outdoorC, 2),
     dewC: rounded(ahead.dewC, 1),
-    sunYield: rounded(
-      ahead.clearness.map((value, i) => value * scaleAt(scale, hour + i + 1)),
-      4,
-    ),
+    skyScore: rounded(ahead.skyScore, 3),
     hubC: hubC?.map((value) => (value === null ? null : round(value, 2))) ?? null,
   };
 }
-
-/** Panel scale of an hour since the epoch; 1 without panels. */
-export const scaleAt = (scale: Float64Array | null, hour: number): number => scale?.[hourOfDay(hour)] ?? 1;
 
 /** Drops issues that are too old; keeps a new one when the last is `ISSUE_EVERY_HOURS` old. */
 export function keepIssue(issues: readonly Issue[], issue: Issue): Issue[] {

@@ -11,7 +11,7 @@ export interface ForecasterMemory {
   readonly cabin: CabinMemory | null;
 }
 
-const FORM = 1;
+const FORM = 2;
 
 /** The fields of a line in the order that they are kept in, with the digits kept of each. */
 const FIELDS = [
@@ -23,7 +23,6 @@ const FIELDS = [
   ['roomW', 5],
   ['panelW', 1],
   ['clearWPerM2', 1],
-  ['clearOnPanelsWPerM2', 1],
   ['machineHeatW', 1],
   ['sensibleW', 1],
   ['latentW', 1],
@@ -66,7 +65,6 @@ function lineOf(row: readonly (number | null)[]): HourLine {
     roomW,
     panelW,
     clear,
-    clearOnPanels,
     machineHeatW,
     sensibleW,
     latentW,
@@ -81,7 +79,6 @@ function lineOf(row: readonly (number | null)[]): HourLine {
     roomW,
     panelW,
     clearWPerM2: clear ?? 0,
-    clearOnPanelsWPerM2: clearOnPanels ?? 0,
     machineHeatW,
     sensibleW: sensibleW ?? 0,
     latentW,
@@ -101,8 +98,8 @@ const isIssue = (issue: unknown): boolean =>
   Array.isArray(issue.outdoorC) &&
   'dewC' in issue &&
   Array.isArray(issue.dewC) &&
-  'sunYield' in issue &&
-  Array.isArray(issue.sunYield) &&
+  'skyScore' in issue &&
+  Array.isArray(issue.skyScore) &&
   'hubC' in issue;
 const isCabin = (cabin: unknown): boolean =>
   cabin === null || (typeof cabin === 'object' && 'parameters' in cabin && 'refusedDays' in cabin);

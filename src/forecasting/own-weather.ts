@@ -3,14 +3,16 @@ import type { SiteConfig } from '../config.ts';
 import { fitAnomaly, predictAnomaly, type AnomalyModel } from './anomaly.ts';
 import type { HourSeries } from './bins.ts';
 import type { Book, WeatherSeries } from './book.ts';
-import { designBinsC, seasonK, USUAL_CLEARNESS } from './design-weather.ts';
-import { MOST_CLEARNESS } from './sky.ts';
+import { designBinsC, seasonK } from './design-weather.ts';
+import { scored, skyScores, type SkyScores } from './sky-score.ts';
 
 /** One value for each hour of lead, from 1: the hour after the last whole one. */
 export interface HoursAhead {
   readonly outdoorC: Float64Array;
   readonly dewC: Float64Array;
-  readonly clearness: Float64Array;
+  readonly skyScore: Float64Array;
+  /** What the scores mean. */
+  readonly sky: SkyScores;
 }
 
 export interface OwnWeather {
@@ -22,15 +24,17 @@ export interface OwnWeather {
 const TRAIN_EVERY_HOURS = 12;
 
 /** A mass of air stays for days, clouds for hours (from experience, no source; learned from there). */
-const AIR_FADING = { quick: 0.85, slowHours: 60 } as const;
-const CLOUD_FADING = { quick: 0.75, slowHours: 24 } as const;
+const AIR_FADING = { quick: 0.85, slowHours: 60, share: 1, rows: 16 } as const;
+/** Of a day of clouds less is to be learned than of a day of air: half of its hours are dark. */
+const CLOUD_FADING = { quick: 0.75, slowHours: 24, share: 0.5, rows: 64 } as const;
 
 interface Trained {
   readonly atHour: number;
   readonly leads: number;
   readonly outdoor: AnomalyModel;
   readonly dew: AnomalyModel;
-  readonly clearness: AnomalyModel;
+  readonly skyScore: AnomalyModel;
+  readonly sky: SkyScores;
 }
 
 export function createOwnWeather(config: SiteConfig): OwnWeather {
@@ -51,12 +55,14 @@ const flat = (value: number): number[] => Array.from({ length: 24 }, () => value
 function train(config: SiteConfig, book: Book, atHour: number, leads: number): Trained {
   const { outdoorC, dewC, clearness } = seasonless(config, book.weatherTo(atHour));
   const prior = designBinsC(config);
+  const sky = skyScores(clearness);
   return {
     atHour,
     leads,
     outdoor: fitAnomaly(outdoorC, prior, dewC, AIR_FADING, leads),
     dew: fitAnomaly(dewC, flat(Math.min(...prior)), null, AIR_FADING, leads),
-    clearness: fitAnomaly(clearness, flat(USUAL_CLEARNESS), null, CLOUD_FADING, leads),
+    skyScore: fitAnomaly(scored(clearness, sky), flat(0), null, CLOUD_FADING, leads),
+    sky,
   };
 }
 
@@ -69,11 +75,11 @@ function predictFrom(
   const series = seasonless(config, measured);
   const seasonal = (values: Float64Array): Float64Array =>
     values.map((value, i) => value + seasonK(config, lastHour + i + 1));
-  const clearness = predictAnomaly(trained.clearness, series.clearness, null);
   return {
     outdoorC: seasonal(predictAnomaly(trained.outdoor, series.outdoorC, series.dewC)),
     dewC: seasonal(predictAnomaly(trained.dew, series.dewC, null)),
-    clearness: clearness.map((value) => Math.min(MOST_CLEARNESS, Math.max(0, value))),
+    skyScore: predictAnomaly(trained.skyScore, scored(series.clearness, trained.sky), null),
+    sky: trained.sky,
   };
 }
 

@@ -1,8 +1,9 @@
 /** What came of the forecasts issued so far: how to blend, and how wrong they turned out. */
 import { blended, learnBlends, type Blend } from './blend.ts';
 import type { Book } from './book.ts';
-import { scaleAt, type Issue } from './issues.ts';
+import type { Issue } from './issues.ts';
 import { unexplainedAhead } from './own-cabin.ts';
+import type { SkyScores } from './sky-score.ts';
 import type { Happened } from './trajectories.ts';
 
 export interface Past {
@@ -20,10 +21,10 @@ export function lookBack(
   lastHour: number,
   leads: number,
   unexplainedW: readonly (number | null)[],
+  sky: SkyScores,
 ): Past {
   const series = book.weatherTo(lastHour);
   const first = series.outdoorC.firstHour;
-  const scale = book.panelScale;
   const trackFirst = book.last ? book.firstHour : lastHour;
   const outdoorC = (hour: number): number | null => series.outdoorC.values[hour - first] ?? null;
   const blends = learnBlends(issues, outdoorC, leads);
@@ -44,9 +45,10 @@ export function lookBack(
           blended(blends, lead, issue.outdoorC[lead - 1], issue.hubC?.[lead - 1] ?? null),
         ),
       dew: (issue, lead) => less(series.dewC.values[issue.hour + lead - first], issue.dewC[lead - 1]),
-      clearness: (issue, lead) => {
+      skyScore: (issue, lead) => {
         const hour = issue.hour + lead;
-        return less(series.clearness.values[hour - first], issue.sunYield[lead - 1] / scaleAt(scale, hour));
+        const clearness = series.clearness.values[hour - first] ?? null;
+        return less(clearness === null ? null : sky.scoreOf(hour, clearness), issue.skyScore[lead - 1]);
       },
       disturbance: (issue, lead) =>
         less(unexplainedW[issue.hour + lead - trackFirst], expectedW(issue.hour)[lead - 1]),

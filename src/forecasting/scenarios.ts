@@ -12,7 +12,8 @@ import type { OwnCabin } from './own-cabin.ts';
 import { gainAt } from './own-cabin.ts';
 import type { HoursAhead } from './own-weather.ts';
 import { saturationAt, type Saturation } from './saturation.ts';
-import { clearSkyOf, MOST_CLEARNESS } from './sky.ts';
+import { clearOnPanels, type Panels } from './panels.ts';
+import { sunHourOf, type SunHour } from './sky.ts';
 import { onSlots, slotLimits, slotMiddleMs, type SlotGrid } from './slots.ts';
 import type { Trajectory } from './trajectories.ts';
 import { latentScale } from './latent.ts';
@@ -50,9 +51,9 @@ export interface ScenarioFrame {
   readonly start: RoomState;
   readonly saturation: Saturation;
   readonly clearWPerM2: Float64Array;
-  /** Panel power under a cloudless sky. */
-  readonly clearPanelW: Float64Array;
-  readonly hasPanels: boolean;
+  /** Sun by slot, for the panels. */
+  readonly sun: readonly SunHour[];
+  readonly panels: Panels | null;
 }
 
 /** What the site file alone says about how the room is cooled. */
@@ -96,9 +97,8 @@ export function scenarioFrame(
   const fabricC =
     (last ? cabin.track(book).fabricC : null) ?? restingFabricC(p, airC, last?.outdoorC ?? airC, 0);
   const { coil, dryAir } = plant;
-  const scale = book.panelScale;
   const sky = Array.from({ length: grid.count }, (_, i) =>
-    clearSkyOf(config, slotMiddleMs(grid, i) / HOUR_MS - 0.5),
+    sunHourOf(config, slotMiddleMs(grid, i) / HOUR_MS - 0.5),
   );
   return {
     grid,
@@ -108,11 +108,9 @@ export function scenarioFrame(
     last,
     start: { airC, fabricC, ratio: last?.roomW ?? USUAL_RATIO },
     saturation: plant.saturation,
-    clearWPerM2: Float64Array.from(sky, (at) => at.clearWPerM2),
-    clearPanelW: Float64Array.from(sky, (at, i) =>
-      scale ? at.clearOnPanelsWPerM2 * scale[hourOfDay(Math.floor(slotMiddleMs(grid, i) / HOUR_MS))] : 0,
-    ),
-    hasPanels: scale !== null,
+    clearWPerM2: Float64Array.from(sky, (at) => at.sky.globalHorizontalWPerM2),
+    sun: sky,
+    panels: book.panels,
     load: {
       slotMs: grid.slotMs,
       cabin: p,
@@ -141,9 +139,11 @@ export function runScenario(
     onSlots(grid, lastHour, lastValue ?? byLead[0], byLead);
   const outdoorC = nowcast(frame, slots(sum(expected.outdoorC, error.outdoorC), last?.outdoorC));
   const dewC = slots(sum(expected.dewC, error.dewC), last?.dewC);
-  const clearness = slots(sum(expected.clearness, error.clearness), null).map((value) =>
-    Math.min(MOST_CLEARNESS, Math.max(0.03, value)),
+  const scores = sum(expected.skyScore, error.skyScore);
+  const clearnessByLead = Float64Array.from(scores, (score, i) =>
+    expected.sky.clearnessOf(lastHour + i + 1, score),
   );
+  const clearness = byHour(grid, lastHour, clearnessByLead);
   const sunWPerM2 = frame.clearWPerM2.map((clear, i) => clear * clearness[i]);
   const weather = {
     outdoorC,
@@ -158,9 +158,27 @@ export function runScenario(
     sunWPerM2,
     loadW: load.loadW,
     latentW: load.latentW,
-    panelW: frame.clearPanelW.map((clear, i) => clear * clearness[i]),
+    panelW: panelPower(frame, clearness, outdoorC),
     warmKhPerKwh: warmKhPerKwh(frame.load, frame.start, weather, load),
   };
+}
+
+/** Clouds come and go: the mean of an hour spread evenly keeps its extremes, one drawn to its neighbours would not. */
+function byHour(grid: SlotGrid, lastHour: number, byLead: Float64Array): Float64Array {
+  return Float64Array.from({ length: grid.count }, (_, i) => {
+    const lead = Math.floor(slotMiddleMs(grid, i) / HOUR_MS) - lastHour;
+    return byLead[Math.min(byLead.length, Math.max(1, lead)) - 1];
+  });
+}
+
+function panelPower(frame: ScenarioFrame, clearness: Float64Array, outdoorC: Float64Array): Float64Array {
+  const { grid, panels, sun } = frame;
+  if (!panels) return new Float64Array(grid.count);
+  const { plane, scale } = panels;
+  return clearness.map((share, i) => {
+    const hour = Math.floor(slotMiddleMs(grid, i) / HOUR_MS);
+    return share * scale[hourOfDay(hour)] * clearOnPanels(plane, sun[i], outdoorC[i]);
+  });
 }
 
 /** Bends the first hours to the reading of now. */

@@ -193,7 +193,7 @@ function baselines(
   return { yesterday: byHour[back], bins };
 }
 
-function walkPanels(days: number): Pair[] | null {
+export function walkPanels(days: number): Pair[] | null {
   const data = golden();
   if (!data) return null;
   const config = siteAt(data.place);
@@ -347,7 +347,11 @@ export function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
     rows.push(rowOf(`${file.name}: load, outdoor temperature known`, floors[i]));
     rows.push(rowOf(`${file.name}: load, made-up hub of 1.5 K`, hubs[i]));
   }
-  if (panels) rows.push(rowOf('Golden 2016: panels, W', panels));
+  if (panels) {
+    rows.push(rowOf('Golden 2016: panels, W', panels));
+    const half = panels.length >> 1;
+    rows.push(rowOf('  first half', panels.slice(0, half)), rowOf('  second half', panels.slice(half)));
+  }
   const all = walks.flatMap((walk) => walk.load);
   const total = all.length > 0 ? scoreOf(all) : null;
   const panelScore = panels && scoreOf(panels);
@@ -386,6 +390,7 @@ export function run({ seed, quick }: BenchOptions): Promise<BenchResult> {
       skillVsBinsPct: total?.skillVsBinsPct ?? 'no data',
       coverage80Pct: total?.coverage80Pct ?? 'no data',
       panelSkillVsYesterdayPct: panelScore?.skillVsYesterdayPct ?? 'no data',
+      panelSkillVsBinsPct: panelScore?.skillVsBinsPct ?? 'no data',
       panelCoverage80Pct: panelScore?.coverage80Pct ?? 'no data',
       loadCvRmseTemperatureKnownPct:
         quick || floors.length === 0 ? 'not run' : scoreOf(floors.flat()).cvRmsePct,

@@ -146,7 +146,6 @@ describe('the coil', () => {
       roomW: 0.012,
       panelW: null,
       clearWPerM2: 0,
-      clearOnPanelsWPerM2: 0,
       machineHeatW: -1000,
       sensibleW: 1000,
       latentW: (factor * 1000 * coil.latentMostW(26, 0.012)) / (coil.sensibleMostW(26) + coil.fanW),
