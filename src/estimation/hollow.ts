@@ -27,6 +27,14 @@ export function passWall(x: Float64Array, melted: number): void {
   }
 }
 
+/** Ice on a coil in a tub works loose within the hour after the machine has stopped, and floats up; no source. */
+const LOOSE_S = 3600;
+
+/** Ice on the coil of a tub: what this charge has made, not what floats above it. */
+export function passLoose(x: Float64Array, made: number, dtS: number): void {
+  x[X.rim] = made > 0 ? x[X.rim] + made : x[X.rim] * Math.exp(-dtS / LOOSE_S);
+}
+
 /** Water that stands between wall and ice as heat feels it when it melts, fraction of a full bank. */
 export const meltedThrough = (x: Float64Array): number => throughRim(x, Math.max(0, x[X.hollow]));
 

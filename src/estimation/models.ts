@@ -92,13 +92,18 @@ export function meltWPerKOf(models: PlantModels, x: Float64Array): number {
   );
 }
 
+function iceOnCoil(models: PlantModels, x: Float64Array): number {
+  if (!models.bank.guess.iceHeld) return Math.max(0, x[X.rim]);
+  return models.internal ? iceOnWall(x) : x[X.ice];
+}
+
 /** From coolant to the freezing front; where containers stand between, to the bath: half of the way. */
 export function freezeWPerKOf(models: PlantModels, x: Float64Array): number {
   const gain = x[X.freeze] + x[X.freezeNow];
   if (models.sealed) return 2 * freezeConductanceWPerK(models.bank, 0, 0, gain);
   return freezeConductanceWPerK(
     models.bank,
-    models.internal ? iceOnWall(x) : x[X.ice],
+    iceOnCoil(models, x),
     Math.exp(x[X.thickening]),
     gain,
     Math.exp(x[X.growth]),

@@ -3,7 +3,7 @@
  * found again in the water and the ice. Works in place on a state vector; called some fifty times for each step.
  */
 import { FUSION_J_PER_KG } from '../plant/bank.ts';
-import { passWall } from './hollow.ts';
+import { passLoose, passWall } from './hollow.ts';
 import { advanceInternal } from './internal.ts';
 import { X } from './layout.ts';
 import {
@@ -37,7 +37,9 @@ export function advance(models: PlantModels, x: Float64Array, drive: Drive, flow
     ? advanceInternal(models, x, drive, leakW)
     : advanceExternal(models, x, drive, leakW);
   charge(models, x, chargingW * drive.dtS);
-  if (models.internal) passWall(x, (-chargingW * drive.dtS) / fullJ(models));
+  const made = (chargingW * drive.dtS) / fullJ(models);
+  if (models.internal) passWall(x, -made);
+  else if (!models.bank.guess.iceHeld) passLoose(x, made, drive.dtS);
   settle(models, x);
 }
 

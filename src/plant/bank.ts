@@ -17,7 +17,8 @@ const WATER_DENSITY = 999.843;
  * Where the melt exponent and the ice's resistance start before they are learned.
  * `meltExponent` p: melt conductance goes as inventory^p. A least-squares line through the logarithms of the published
  * conductance polynomials of Henze & Krarti 2002 (DOE DE-FC-26-01NT41255) from 25 to 75 % inventory gives 0.5 for
- * external and 0.7 for internal melt; containers and tub: no source, taken between.
+ * external and 0.7 for internal melt. Loose pieces: 2/3 when a number of them shrinks, 1 when there are fewer of one
+ * size (geometry); between for the tub. Containers: no source.
  * `freezeThickening` b: resistance of a full bank's ice over that of the bare coil; ice on a tube adds it as
  * ln(1 + c·inventory) (quasi-steady conduction through a cylinder). A tube of 8 mm radius grown to 45 mm has c = 30;
  * its b is 0.3 on the measured tank of design figures and near 2 for a sparse coil: 1, to be learned.
@@ -35,7 +36,7 @@ const FORM_GUESSES: Readonly<Record<BankForm, FormGuess>> = {
   'ice-on-coil-external': { meltExponent: 0.5, freezeThickening: 1, restFactor: 0.35, iceHeld: true },
   'ice-on-coil-internal': { meltExponent: 0.7, freezeThickening: 1, restFactor: 0.5, iceHeld: true },
   'sealed-containers': { meltExponent: 0.5, freezeThickening: 2, restFactor: 0.5, iceHeld: true },
-  'open-tub': { meltExponent: 0.6, freezeThickening: 1, restFactor: 0.35, iceHeld: false },
+  'open-tub': { meltExponent: 0.85, freezeThickening: 1, restFactor: 0.35, iceHeld: false },
 };
 
 /** Heat exchange of an open water surface with room air, convection and moisture together, W/(m² K); no source. */
