@@ -74,4 +74,16 @@ describe('the sentence that the page opens with', () => {
       'Give or take 1.2 kWh; one more point, entering-water, would narrow that most.',
     );
   });
+
+  it('says what waiting costs and what would change its mind only while the plan’s own command runs', () => {
+    const plan = { asides: ['Waiting an hour would cost EUR 0.04.'] };
+    const step = base.plan?.steps.find(
+      ({ startMs }) => startMs <= NOW_MS && NOW_MS < startMs + (base.plan?.slotMs ?? 0),
+    );
+    const command = step?.command ?? 'hold';
+    const other = command === 'hold' ? 'discharge' : 'hold';
+    expect(answer(nowWith({ command }, plan), NOW_MS, format).asides).toBe(plan.asides[0]);
+    expect(answer(nowWith({ command: other }, plan), NOW_MS, format).asides).toBe('');
+    expect(answer(nowWith({ command }), NOW_MS, format).asides).toBe('');
+  });
 });

@@ -8,6 +8,8 @@ import { strings } from './strings.ts';
 export interface Answer {
   readonly headline: string;
   readonly why: string;
+  /** What waiting would cost, what ice is worth, what would change the plan's mind. */
+  readonly asides: string;
   readonly uncertain: string;
 }
 
@@ -16,10 +18,11 @@ const PUDDLE_KWH = 0.05;
 
 export function answer(now: NowAnswer, nowMs: number, format: Format): Answer {
   const { record, modeSinceMs } = now;
-  if (!record) return { headline: strings.answer.nothing, why: '', uncertain: '' };
+  if (!record) return { headline: strings.answer.nothing, why: '', asides: '', uncertain: '' };
   return {
     headline: headline(now, record, nowMs, format),
     why: why(record, modeSinceMs === null ? null : format.when(modeSinceMs, nowMs)),
+    asides: asides(now.plan, record, nowMs),
     uncertain: uncertain(now, record, format),
   };
 }
@@ -62,6 +65,12 @@ function headline(now: NowAnswer, record: CycleRecord, nowMs: number, format: Fo
 
 function why(record: CycleRecord, since: string | null): string {
   return [strings.answer.since(strings.doing(record.mode), since), record.reason].filter(Boolean).join(' ');
+}
+
+/** Only while the plan's own command runs: under a wish or an interlock they would speak of something else. */
+function asides(plan: PlanRecord | null, record: CycleRecord, nowMs: number): string {
+  const step = plan?.steps.find(({ startMs }) => startMs <= nowMs && nowMs < startMs + plan.slotMs);
+  return step?.command === record.command ? (plan?.asides ?? []).join(' ') : '';
 }
 
 function uncertain(now: NowAnswer, record: CycleRecord, format: Format): string {

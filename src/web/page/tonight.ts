@@ -16,6 +16,7 @@ export class Tonight implements View {
   readonly #tools: Tools;
   readonly #headline = h('h1', { class: 'answer' });
   readonly #why = h('p', { class: 'sentence' });
+  readonly #asides = h('p', { class: 'sentence' });
   readonly #uncertain = h('p', { class: 'sentence quiet' });
   readonly #list = h('ul', { class: 'notices' });
   readonly #attention = h('section', { 'aria-label': strings.notices.label, hidden: true }, this.#list);
@@ -38,7 +39,14 @@ export class Tonight implements View {
     const before = button(strings.strip.before, {}, () => this.#go(-1));
     const steps = h('p', { class: 'tools' }, before, this.#back, this.#after);
     const night = h('section', {}, h('div', { class: 'heading' }, this.#heading, steps), this.#strip.element);
-    const opening = [this.#headline, this.#why, this.#uncertain, this.#attention, this.#figures];
+    const opening = [
+      this.#headline,
+      this.#why,
+      this.#asides,
+      this.#uncertain,
+      this.#attention,
+      this.#figures,
+    ];
     this.element = h('div', {}, ...opening, night, this.#wishes.element);
     tools.live.onRecord((record) => this.#strip.take(record));
   }
@@ -51,6 +59,8 @@ export class Tonight implements View {
     const words = answer(now, nowMs, format);
     setText(this.#headline, words.headline);
     setText(this.#why, words.why);
+    setText(this.#asides, words.asides);
+    this.#asides.hidden = words.asides === '';
     setText(this.#uncertain, words.uncertain);
     this.#attend(shown);
     this.#figures.hidden = !now.record;
