@@ -15,4 +15,6 @@ export interface BenchResult {
   readonly columns: readonly string[];
   readonly rows: readonly (readonly (string | number)[])[];
   readonly figures: Readonly<Record<string, number | string>>;
+  /** A figure drawn with characters, line by line. */
+  readonly drawing?: readonly string[];
 }

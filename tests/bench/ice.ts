@@ -186,7 +186,27 @@ function report(
     ],
     rows,
     figures: figuresOf(scores),
+    drawing: drawingOf(scores),
   };
+}
+
+/** By sensor set: error of the estimate, half of its interval, and bookkeeping, as bars of one per cent a sign. */
+function drawingOf(scores: readonly Score[]): string[] {
+  const bar = (value: number, sign: string): string => sign.repeat(Math.round(value));
+  const heading =
+    '# error of the estimate, - half of its 90 % interval, + bookkeeping alone; RMSE, one sign 1 %';
+  return [
+    heading,
+    ...SENSOR_SETS.flatMap((set) => {
+      const own = scores.filter((score) => score.scenario.set === set);
+      if (own.length === 0) return [];
+      return [
+        `(${set}) ${bar(rms(own.flatMap((score) => score.errors)), '#')}`,
+        `    ${bar(mean(own.flatMap((score) => score.widths)) / 2, '-')}`,
+        `    ${bar(rms(own.flatMap((score) => score.bookErrors)), '+')}`,
+      ];
+    }),
+  ];
 }
 
 function emptyFigure(scores: readonly Score[]): Record<string, number> {

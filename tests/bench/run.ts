@@ -52,6 +52,7 @@ async function main(): Promise<void> {
   console.log(
     `${result.title}\n${result.budget}\nseed ${options.seed}, took ${tookS} s\n\n${table(result)}\n`,
   );
+  if (result.drawing) console.log(`${result.drawing.join('\n')}\n`);
   for (const [key, value] of Object.entries(result.figures)) console.log(`${key.padEnd(36)} ${shown(value)}`);
 }
 
