@@ -1,7 +1,7 @@
 #!/usr/bin/env node
 /** The verbs. Each ends with 0 (yes), 1 (the answer is no), 2 (wrong use) or 3 (could not run). */
 import './verbs/small-heap.ts';
-import { Command, CommanderError, InvalidArgumentError } from 'commander';
+import { Command, CommanderError, InvalidArgumentError, Option } from 'commander';
 import { EXIT, exitStatusOf, RimeholdError, sentenceOf, systemWords } from './errors.ts';
 import { VERSION } from './verbs/version.ts';
 
@@ -74,6 +74,9 @@ function program(): Command {
     .option(...CONFIG)
     .requiredOption('--readings <file>', 'reading log (CSV: time,point,value)')
     .requiredOption('--out <file>', 'CSV to write')
+    .addOption(
+      new Option('--begins <state>', 'what the bank was as the log begins').choices(['full', 'empty']),
+    )
     .option(...JSON_OUT)
     .action(ending(async () => (await import('./verbs/estimate.ts')).estimate));
   cli

@@ -12,6 +12,7 @@ export async function estimate(options: {
   config: string;
   readings: string;
   out: string;
+  begins?: 'full' | 'empty';
   json?: boolean;
 }): Promise<number> {
   const config = loadSite(options.config);
@@ -21,7 +22,8 @@ export async function estimate(options: {
   });
   for (const words of logWords(summary)) console.error(words);
   readings.sort((a, b) => a.atMs - b.atMs);
-  const rows = estimateLog(config, readings);
+  const { begins } = options;
+  const rows = estimateLog(config, readings, begins ? { begins } : {});
   for (const words of silenceWords(rows)) console.error(words);
   const csv = `${[HEADER, ...rows.map(csvRow)].join('\r\n')}\r\n`;
   writeText(options.out, csv, 'the estimate', 'name another file with --out');
