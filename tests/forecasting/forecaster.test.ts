@@ -174,6 +174,19 @@ describe('a hub', () => {
   });
 });
 
+describe('outdoor humidity', () => {
+  it('becomes moisture for the coil: the same heat costs more under moist air', () => {
+    const latentKwh = (outdoorHumidityPct: number): number => {
+      const forecaster = createForecaster(config, { seed: 1 });
+      const nowMs = live(forecaster, 3, weatherOf(6, 1), { outdoorHumidityPct, roomHumidityPct: 50 });
+      const { scenarios, slotMs } = forecaster.forecast(nowMs, null);
+      return (mean(scenarios.map((s) => mean(s.latentW) * s.latentW.length)) * slotMs) / HOUR_MS / 1000;
+    };
+    const [dry, moist] = [latentKwh(20), latentKwh(75)];
+    expect(moist).toBeGreaterThan(1.2 * dry);
+  });
+});
+
 describe('robustness', () => {
   it('learns nothing while the clock is doubtful', () => {
     const forecaster = createForecaster(config, { seed: 1 });
