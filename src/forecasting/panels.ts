@@ -48,7 +48,7 @@ interface Daylight {
   readonly sun: SunHour;
 }
 
-export const dayOf = (hour: number): number => Math.floor(hour / 24);
+const dayOf = (hour: number): number => Math.floor(hour / 24);
 
 /** What a plane takes under a cloudless sky, less what heat takes from it, W/m². */
 export function clearOnPanels(plane: Plane, { sun, sky }: SunHour, airC: number): number {
@@ -62,10 +62,12 @@ export function learnPanels(config: SiteConfig, lines: readonly HourLine[], tabl
   const { island } = config.power;
   const daylight = daylightOf(lines, table);
   if (daylight.length === 0 && !island) return null;
-  const plane = learnPlane(daylight, filePlane(config));
   const rated = island ? (island.panelsW / 1000) * USUAL_YIELD : null;
-  const ratios = daylight.map((at) => ratioOf(plane, at));
   const nextHour = (lines.at(-1)?.hour ?? -1) + 1;
+  // Whole days only: a restart in the middle of one finds the same plane.
+  const whole = daylight.filter(({ hour }) => dayOf(hour) < dayOf(nextHour));
+  const plane = learnPlane(whole, filePlane(config));
+  const ratios = daylight.map((at) => ratioOf(plane, at));
   const scaleBefore = (hour: number): PanelScale =>
     scaleAt(daylight, ratios, Math.min(hour, nextHour), rated);
   const [firstDay, day] = [dayOf(lines[0]?.hour ?? 0), dayOf(nextHour)];
