@@ -95,7 +95,7 @@ export function createForecaster(
           book.daysOfWeather,
           hubC === null ? null : blendAt(past.blends, 24),
           cabin.memory,
-          frame.panels !== null,
+          frame.hasPanels,
         ),
       };
     },

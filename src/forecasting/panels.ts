@@ -50,12 +50,17 @@ interface Daylight {
 
 const dayOf = (hour: number): number => Math.floor(hour / 24);
 
-/** What a plane takes under a cloudless sky, less what heat takes from it, W/m². */
-export function clearOnPanels(plane: Plane, { sun, sky }: SunHour, airC: number): number {
-  if (!(sky.globalHorizontalWPerM2 > 0)) return 0;
-  const onPlane = Math.max(0, planeOfArray(sun, sky, plane));
-  return onPlane * (1 - LOSS_PER_K * (airC + WARMING_K_M2_PER_W * onPlane - RATED_AT_C));
+/** What a cloudless sky puts on a plane, W/m². */
+export function clearOnPlane(plane: Plane, { sun, sky }: SunHour): number {
+  return sky.globalHorizontalWPerM2 > 0 ? Math.max(0, planeOfArray(sun, sky, plane)) : 0;
 }
+
+/** The part of it that is left when heat has taken its share, W/m². */
+export const lessHeat = (onPlaneWPerM2: number, airC: number): number =>
+  onPlaneWPerM2 * (1 - LOSS_PER_K * (airC + WARMING_K_M2_PER_W * onPlaneWPerM2 - RATED_AT_C));
+
+export const clearOnPanels = (plane: Plane, at: SunHour, airC: number): number =>
+  lessHeat(clearOnPlane(plane, at), airC);
 
 /** null when no panel was ever heard and none is named. */
 export function learnPanels(config: SiteConfig, lines: readonly HourLine[], table: SunTable): Panels | null {

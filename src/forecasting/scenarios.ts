@@ -12,8 +12,8 @@ import type { OwnCabin } from './own-cabin.ts';
 import { gainAt } from './own-cabin.ts';
 import type { HoursAhead } from './own-weather.ts';
 import { saturationAt, type Saturation } from './saturation.ts';
-import { clearOnPanels, type Panels } from './panels.ts';
-import { sunHourOf, type SunHour } from './sky.ts';
+import { clearOnPlane, lessHeat } from './panels.ts';
+import { sunHourOf } from './sky.ts';
 import { onSlots, slotLimits, slotMiddleMs, type SlotGrid } from './slots.ts';
 import type { Trajectory } from './trajectories.ts';
 import { latentScale } from './latent.ts';
@@ -51,9 +51,11 @@ export interface ScenarioFrame {
   readonly start: RoomState;
   readonly saturation: Saturation;
   readonly clearWPerM2: Float64Array;
-  /** Sun by slot, for the panels. */
-  readonly sun: readonly SunHour[];
-  readonly panels: Panels | null;
+  /** Clear sky on the plane of the panels. */
+  readonly clearOnPlaneWPerM2: Float64Array;
+  /** W for each W/m² on the plane, by slot. */
+  readonly panelScale: Float64Array;
+  readonly hasPanels: boolean;
 }
 
 /** What the site file alone says about how the room is cooled. */
@@ -97,6 +99,7 @@ export function scenarioFrame(
   const fabricC =
     (last ? cabin.track(book).fabricC : null) ?? restingFabricC(p, airC, last?.outdoorC ?? airC, 0);
   const { coil, dryAir } = plant;
+  const { panels } = book;
   const sky = Array.from({ length: grid.count }, (_, i) =>
     sunHourOf(config, slotMiddleMs(grid, i) / HOUR_MS - 0.5),
   );
@@ -109,8 +112,9 @@ export function scenarioFrame(
     start: { airC, fabricC, ratio: last?.roomW ?? USUAL_RATIO },
     saturation: plant.saturation,
     clearWPerM2: Float64Array.from(sky, (at) => at.sky.globalHorizontalWPerM2),
-    sun: sky,
-    panels: book.panels,
+    clearOnPlaneWPerM2: Float64Array.from(sky, (at) => (panels ? clearOnPlane(panels.plane, at) : 0)),
+    panelScale: Float64Array.from(sky, (_, i) => panels?.scale[hourOfDay(slotHour(grid, i))] ?? 0),
+    hasPanels: panels !== null,
     load: {
       slotMs: grid.slotMs,
       cabin: p,
@@ -158,26 +162,20 @@ export function runScenario(
     sunWPerM2,
     loadW: load.loadW,
     latentW: load.latentW,
-    panelW: panelPower(frame, clearness, outdoorC),
+    panelW: clearness.map(
+      (share, i) => share * frame.panelScale[i] * lessHeat(frame.clearOnPlaneWPerM2[i], outdoorC[i]),
+    ),
     warmKhPerKwh: warmKhPerKwh(frame.load, frame.start, weather, load),
   };
 }
 
+const slotHour = (grid: SlotGrid, i: number): number => Math.floor(slotMiddleMs(grid, i) / HOUR_MS);
+
 /** Clouds come and go: the mean of an hour spread evenly keeps its extremes, one drawn to its neighbours would not. */
 function byHour(grid: SlotGrid, lastHour: number, byLead: Float64Array): Float64Array {
   return Float64Array.from({ length: grid.count }, (_, i) => {
-    const lead = Math.floor(slotMiddleMs(grid, i) / HOUR_MS) - lastHour;
+    const lead = slotHour(grid, i) - lastHour;
     return byLead[Math.min(byLead.length, Math.max(1, lead)) - 1];
-  });
-}
-
-function panelPower(frame: ScenarioFrame, clearness: Float64Array, outdoorC: Float64Array): Float64Array {
-  const { grid, panels, sun } = frame;
-  if (!panels) return new Float64Array(grid.count);
-  const { plane, scale } = panels;
-  return clearness.map((share, i) => {
-    const hour = Math.floor(slotMiddleMs(grid, i) / HOUR_MS);
-    return share * scale[hourOfDay(hour)] * clearOnPanels(plane, sun[i], outdoorC[i]);
   });
 }
 
