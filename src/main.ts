@@ -150,6 +150,7 @@ function build(
     },
     nowMs: () => clock.nowMs(),
     onSet: (path, value) => setByOwner(daemon, clock, path, value),
+    onRefused: (sentence) => log.warn({}, sentence),
   });
   const parts: DaemonParts = {
     config,

@@ -2,7 +2,7 @@
 import { STRATEGIES, WISHES, type Strategy, type Wish, type WishName } from '../commands.ts';
 import type { SiteConfig } from '../config.ts';
 import { RimeholdError } from '../errors.ts';
-import { HOUR_MS, MINUTE_MS } from '../time.ts';
+import { formatDuration, HOUR_MS, MINUTE_MS } from '../time.ts';
 
 export interface OwnerSettings {
   readonly wish: Wish;
@@ -43,20 +43,15 @@ export class Owner {
 
   /** Takes a wish for a time; `none` gives back. Throws `usage` outside five minutes to a day. */
   wish(name: WishName, durationMs: number, nowMs: number): Wish {
-    if (name !== 'none' && !(durationMs >= LEAST_WISH_MS && durationMs <= MOST_WISH_MS)) {
-      throw new RimeholdError(
-        'usage',
-        'Expected a wish for 5 minutes to 24 hours; choose a time in between.',
-        { durationMs },
-      );
-    }
+    if (name !== 'none') checkWishTime(durationMs);
     const wish = name === 'none' ? NO_WISH : { name, untilMs: nowMs + durationMs };
     this.#settings = { ...this.#settings, wish };
     return wish;
   }
 
-  /** How long the next wish holds; a wish that holds now is counted anew from now. */
+  /** How long the next wish holds; a wish that holds now is counted anew from now. Throws `usage` outside five minutes to a day. */
   wishFor(durationMs: number, nowMs: number): void {
+    checkWishTime(durationMs);
     const { wish } = this.settings(nowMs);
     if (wish.name !== 'none') this.wish(wish.name, durationMs, nowMs);
     this.#settings = { ...this.#settings, wishForMs: durationMs };
@@ -84,6 +79,15 @@ export class Owner {
   }
 }
 
+function checkWishTime(durationMs: number): void {
+  if (durationMs >= LEAST_WISH_MS && durationMs <= MOST_WISH_MS) return;
+  throw new RimeholdError(
+    'usage',
+    `Expected a wish for 5 minutes to 24 hours (PT5M to PT24H), found ${formatDuration(durationMs)}; choose a time in between.`,
+    { durationMs },
+  );
+}
+
 /** What can be read of remembered settings; a damaged memory is as good as none. */
 function readable(remembered: string): Partial<OwnerSettings> {
   const value = parsed(remembered);
@@ -95,7 +99,9 @@ function readable(remembered: string): Partial<OwnerSettings> {
       ? { strategy: value['strategy'] as Strategy }
       : {}),
     ...(typeof value['limitC'] === 'number' ? { limitC: value['limitC'] } : {}),
-    ...(typeof value['wishForMs'] === 'number' ? { wishForMs: value['wishForMs'] } : {}),
+    ...(typeof value['wishForMs'] === 'number' && value['wishForMs'] <= MOST_WISH_MS
+      ? { wishForMs: value['wishForMs'] }
+      : {}),
   };
 }
 

@@ -40,6 +40,8 @@ export interface HomieDeviceOptions {
   readonly nowMs: () => number;
   /** Takes a setting; returns null when it is accepted, else one sentence why not. */
   readonly onSet: (path: SettablePath, value: number | string) => string | null;
+  /** Takes the sentence about a setting that was not taken; the same one is told once in a while only. */
+  readonly onRefused: (sentence: string) => void;
 }
 
 /**
@@ -58,6 +60,7 @@ export class HomieDevice {
   readonly #root: string;
   readonly #properties: ReadonlyMap<Path, Property>;
   readonly #voice: LogVoice;
+  readonly #refusals: LogVoice;
   readonly #values = new Map<Path, Value>();
   /** What was published on this connection. */
   readonly #published = new Map<Path, Value>();
@@ -81,6 +84,7 @@ export class HomieDevice {
     this.#root = deviceTopic(options.config);
     this.#properties = propertiesOf(options.config);
     this.#voice = new LogVoice(options.config.announce.logLevel, options.nowMs);
+    this.#refusals = new LogVoice('warn', options.nowMs);
     this.#cycled = new Promise((resolve) => (this.#firstCycle = resolve));
     this.#store(settingValues(options.settings));
     this.#store({ 'plan/schedule': {}, 'night/sheet': {} });
@@ -202,9 +206,20 @@ export class HomieDevice {
     const property = this.#property(path);
     const parsed = parseSet(property, Buffer.from(payload).toString());
     const refusal = parsed.ok ? this.#options.onSet(path, parsed.value) : parsed.fault;
-    if (!parsed.ok || refusal !== null) return this.log('warn', `${path} was not set: ${refusal}.`);
+    if (!parsed.ok || refusal !== null) return this.#refuse(path, refusal ?? '');
     this.#values.set(path, parsed.value);
     this.#targets.set(path, payload);
+    this.#published.delete(path);
+    if (this.#announced) this.#publishValue(path);
+  }
+
+  /** Says why, and publishes the value that stands once more: whoever sent the other one sees it unchanged. */
+  #refuse(path: SettablePath, why: string): void {
+    const stands = formatValue(this.#property(path), this.#values.get(path) ?? null);
+    const fault = why.replace(/\.$/, '');
+    const sentence = `${this.#root}/${path} was not set: ${fault}. It stays ${stands}; send a value that is expected.`;
+    this.log('warn', sentence);
+    if (this.#refusals.mayTell('warn', sentence)) this.#options.onRefused(sentence);
     this.#published.delete(path);
     if (this.#announced) this.#publishValue(path);
   }

@@ -61,10 +61,10 @@ export function parseSet(property: Property, payload: string): Parsed {
     case 'enum':
       return property.format?.split(',').includes(payload)
         ? { ok: true, value: payload }
-        : refused(`one of ${property.format}`, payload);
+        : refused(`one of ${property.format?.replaceAll(',', ', ')}`, payload);
     case 'duration': {
       const ms = DURATION.test(payload) ? parseDuration(payload) : null;
-      return ms === null ? refused('a duration such as PT2H30M', payload) : { ok: true, value: ms };
+      return ms === null ? refused('a duration such as PT2H or PT30M', payload) : { ok: true, value: ms };
     }
     case 'string':
       return { ok: true, value: payload === EMPTY ? '' : payload };
@@ -84,7 +84,10 @@ function intoRange(property: Property, value: number, payload: string): Parsed {
   // a step of 0.1 has no exact binary form; twelve digits are beyond any step and within any double
   const rounded = Number(stepped.toPrecision(12));
   const inside = rounded >= (low ?? -Infinity) && rounded <= (high ?? Infinity);
-  return inside ? { ok: true, value: rounded } : refused(`a number within ${property.format}`, payload);
+  const range = [low === null ? '' : `from ${low}`, high === null ? '' : `to ${high}`]
+    .filter(Boolean)
+    .join(' ');
+  return inside ? { ok: true, value: rounded } : refused(`a number ${range}`, payload);
 }
 
 function refused(expected: string, payload: string): Parsed {

@@ -77,7 +77,8 @@ const NODES = {
       order: json('Order', { type: 'object' }),
       'held-back-by': text('Held back by'),
       wish: settable(oneOf('Wish', WISHES)),
-      'wish-for': settable({ name: 'Wish holds for', datatype: 'duration' }),
+      // Homie 5 has no format for a duration, so its name says the range
+      'wish-for': settable({ name: 'Wish holds for, PT5M to PT24H', datatype: 'duration' }),
     },
   },
   comfort: {

@@ -24,6 +24,7 @@ const device = new HomieDevice({
   settings: { strategy: 'planned', wish: 'none', wishForMs: 7_200_000, limitC: 26, told: null },
   nowMs: () => NOW_MS,
   onSet: () => null,
+  onRefused: () => undefined,
 });
 await client.start();
 device.publishOrder(pretendCleared());

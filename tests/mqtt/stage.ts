@@ -37,6 +37,8 @@ export interface Rig {
   readonly sets: [SettablePath, number | string][];
   /** What the owner's settings answer; null accepts. */
   refuse: string | null;
+  /** What the log was told of settings that were not taken. */
+  readonly refused: string[];
 }
 
 export class Stage {
@@ -124,6 +126,7 @@ export class Stage {
       client,
       sets,
       refuse: null,
+      refused: [],
       device: (made.device = new HomieDevice({
         config,
         publisher: client,
@@ -133,6 +136,7 @@ export class Stage {
           sets.push([path, value]);
           return rig.refuse;
         },
+        onRefused: (sentence) => rig.refused.push(sentence),
       })),
     };
     this.onEnd(() => client.stop());
