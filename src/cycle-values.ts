@@ -25,6 +25,8 @@ export interface Stages {
 /** What is known from outside at a moment. */
 export interface Moment {
   readonly nowMs: number;
+  /** Time that nobody sets; absent where the clock is never set. */
+  readonly steadyMs?: number;
   readonly live: LivePoints;
   readonly clock: ClockVerdict;
   readonly brokerConnected: boolean;

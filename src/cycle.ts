@@ -94,13 +94,14 @@ export function tick(
   readings: readonly Reading[],
 ): Ticked {
   const { config, limits, estimator, forecaster } = stages;
-  const { nowMs, live, clock, brokerConnected } = moment;
+  const { nowMs, steadyMs, live, clock, brokerConnected } = moment;
   estimator.advance(nowMs, readings, state.order?.command ?? null);
   const estimate = estimator.estimate();
   const wish = wishNow(wanted.wish, nowMs);
   const request = requestOf(stages, state, moment, wish, estimate);
   const view: PlantView = {
     nowMs,
+    ...(steadyMs === undefined ? {} : { steadyMs }),
     live,
     inventoryPct: estimate.inventoryPct,
     clock: clock.state,

@@ -13,6 +13,8 @@ export const DAY_MS = 86_400_000;
 /** Where "now" and waiting come from: the real clock, or a lapse clock. Constructed only at the edge. */
 export interface Clock {
   nowMs(): number;
+  /** Time that nobody sets, ms from an origin of its own; absent where `nowMs` is never set. */
+  steadyMs?(): number;
   /** Calls back every `periodMs` of this clock's time until the returned function is called. */
   every(periodMs: number, callback: () => void): () => void;
   /** Calls back once after `delayMs` of this clock's time unless the returned function is called first. */

@@ -153,10 +153,12 @@ const silent = (what: string, so: string): string =>
 
 /** What this cycle's points change in the memory, before anything is decided. Rows with a latch have it here. */
 export function observe(remembered: DispatchMemory, view: PlantView, limits: Limits): DispatchMemory {
-  const memory = withoutFuture(remembered, view.nowMs);
+  const memory = withoutFuture(withoutStep(remembered, view), view.nowMs);
   const tripped = isTrue(view, 'high-pressure-trip');
   return {
     ...memory,
+    lastMs: view.nowMs,
+    lastSteadyMs: view.steadyMs ?? null,
     ...chillerSeen(memory, view, limits),
     overFrozen: overFrozen(memory.overFrozen, view, limits),
     coilCold: latch(memory.coilCold, below(valueOf(view.live, 'leaving-water'), limits.coilFreezeC), 1.5),
@@ -168,6 +170,27 @@ export function observe(remembered: DispatchMemory, view: PlantView, limits: Lim
     batteryLow: batteryLow(memory.batteryLow, view, limits),
     dryUntilMs: ranDry(memory, view, limits) ? view.nowMs + DRY_REST_MS : memory.dryUntilMs,
     trippedUntilMs: tripped ? view.nowMs + TRIP_REST_MS : memory.trippedUntilMs,
+  };
+}
+
+/** Less than this between two clocks is jitter, ms. */
+const LEAST_STEP_MS = 1000;
+
+/** A clock that was set forward must not shorten any time: what is remembered moves along with it. */
+function withoutStep(memory: DispatchMemory, { nowMs, steadyMs }: PlantView): DispatchMemory {
+  const { lastMs = null, lastSteadyMs = null } = memory;
+  if (steadyMs === undefined || lastMs === null || lastSteadyMs === null || steadyMs < lastSteadyMs)
+    return memory;
+  const stepMs = nowMs - lastMs - (steadyMs - lastSteadyMs);
+  if (!(stepMs > LEAST_STEP_MS)) return memory;
+  const along = (atMs: number | null): number | null => (atMs === null ? null : atMs + stepMs);
+  return {
+    ...memory,
+    chillerSinceMs: memory.chillerSinceMs + stepMs,
+    chillerSeenMs: along(memory.chillerSeenMs),
+    pumpOnSinceMs: along(memory.pumpOnSinceMs),
+    dryUntilMs: along(memory.dryUntilMs),
+    trippedUntilMs: along(memory.trippedUntilMs),
   };
 }
 
@@ -205,7 +228,13 @@ function latch(was: boolean, past: number | null, band: number): boolean {
   return was ? past > -band : past > 0;
 }
 
-/** Full by inventory, coolant temperature, level or electrode: whichever speaks first. */
+/** Whether a point that the plant has is not heard now: it may be the one that said full. */
+function isMute(view: PlantView, point: 'coolant-supply' | 'bank-level' | 'ice-at-electrode'): boolean {
+  const heard = view.live[point];
+  return heard !== undefined && heard.value === null && heard.reason !== 'not-configured';
+}
+
+/** Full by inventory, coolant temperature, level or electrode: whichever speaks first. A silent one keeps what was. */
 function overFrozen(was: boolean, view: PlantView, limits: Limits): boolean {
   const signs = [
     latchOrNull(was, above(view.inventoryPct, 100), 3),
@@ -220,7 +249,11 @@ function overFrozen(was: boolean, view: PlantView, limits: Limits): boolean {
       : null,
   ];
   const heard = signs.filter((sign) => sign !== null);
-  return heard.length === 0 ? was : heard.includes(true);
+  const mute =
+    (limits.fullCoolantC !== null && isMute(view, 'coolant-supply')) ||
+    (limits.fullLevelMm !== null && isMute(view, 'bank-level')) ||
+    (limits.electrodeMeansFull && isMute(view, 'ice-at-electrode'));
+  return heard.includes(true) || (was && (mute || heard.length === 0));
 }
 
 function latchOrNull(was: boolean, past: number | null, band: number): boolean | null {
@@ -337,6 +370,7 @@ function ordered(memory: DispatchMemory, view: PlantView, order: ClearedCommand)
   const chillerOn = order.switches.chiller;
   return {
     chillerOn,
+    chillerKnown: true,
     chillerSinceMs: chillerOn === memory.chillerOn ? memory.chillerSinceMs : view.nowMs,
     pumpOnSinceMs: order.switches.pump ? (memory.pumpOnSinceMs ?? view.nowMs) : null,
   };

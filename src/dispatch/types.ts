@@ -16,6 +16,8 @@ export interface Request {
 /** What is known of the plant right now. */
 export interface PlantView {
   readonly nowMs: number;
+  /** Time that nobody sets; absent where the clock is never set. */
+  readonly steadyMs?: number;
   readonly live: LivePoints;
   /** Estimated ice inventory; null before the first estimate. */
   readonly inventoryPct: number | null;
@@ -30,7 +32,10 @@ export interface DispatchMemory {
   readonly chillerSinceMs: number;
   /** When its power last showed it running; null before that. */
   readonly chillerSeenMs: number | null;
-  /** False until its power was first heard: a chiller found running at the start is taken over, not cut off. */
+  /**
+   * False until its power was first heard or an order was given: a chiller found running before that is taken over, not
+   * cut off. After an order to stop, power that still shows is no reason to start it again.
+   */
   readonly chillerKnown: boolean;
   /** Since when the pump is ordered on; null while off. */
   readonly pumpOnSinceMs: number | null;
@@ -42,6 +47,9 @@ export interface DispatchMemory {
   readonly dryUntilMs: number | null;
   /** Until when the chiller rests after its high-pressure cut-out tripped. */
   readonly trippedUntilMs: number | null;
+  /** Both clocks at the last cycle: what they disagree by is a step of the wall clock, and no time has passed in it. */
+  readonly lastMs?: number | null;
+  readonly lastSteadyMs?: number | null;
 }
 
 /** Limits from the site file, in the units of the points. */

@@ -7,6 +7,8 @@ const MOST_TIMER_MS = 2 ** 31 - 1;
 export function systemClock(): Clock {
   return {
     nowMs: () => Date.now(),
+    // Monotonic since boot, so that it also spans a restart of this program.
+    steadyMs: () => Number(process.hrtime.bigint() / 1_000_000n),
     every: (periodMs, callback) => {
       const timer = setInterval(callback, Math.min(periodMs, MOST_TIMER_MS));
       return () => clearInterval(timer);
