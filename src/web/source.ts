@@ -146,8 +146,10 @@ export interface NightsView {
 
 export interface WishPreview {
   readonly sentence: string;
-  /** More than without the wish; negative when it saves. Null when it cannot be told. */
+  /** Power and ice more than without the wish; negative when it saves. Null when it cannot be told. */
   readonly costMoney: number | null;
+  /** Whether it drops cooling that the plan has: `sentence` says how much, `costMoney` leaves the warm rooms out. */
+  readonly coolsLess: boolean;
 }
 
 export type WebEvent =

@@ -125,6 +125,7 @@ export function createFakeSource(initial: FakeState = 'evening'): FakeSource {
     wishPreview: (_name, durationMs) => ({
       sentence: `Ice on hand would end ${Math.round(durationMs / HOUR_MS) * 20} minutes earlier.`,
       costMoney: 0.12,
+      coolsLess: false,
     }),
     subscribe: (listener) => {
       listeners.add(listener);

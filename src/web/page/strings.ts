@@ -1,5 +1,6 @@
-/** Every English word of the page. Sentences are short, plain, and say what to do. */
-import type { Mode, Strategy, Told, WishName } from '../../commands.ts';
+/** Every English word of the page, those of *Plant* beside it. Sentences are short, plain, and say what to do. */
+import type { Mode, Told, WishName } from '../../commands.ts';
+import { plantWords } from './strings-plant.ts';
 
 const plural = (count: number, one: string): string => `${count} ${one}${count === 1 ? '' : 's'}`;
 
@@ -9,13 +10,6 @@ const MODE_WORDS: Readonly<Record<Mode, string>> = {
   discharging: 'cooling from ice',
   'charging-while-discharging': 'making ice and cooling',
   'direct-cooling': 'cooling directly',
-};
-
-const STRATEGY_WORDS: Readonly<Record<Strategy, string>> = {
-  planned: 'planned: least cost',
-  'storage-priority': 'storage priority: ice first',
-  'chiller-priority': 'chiller priority: ice last',
-  timetable: 'timetable: your cron lines',
 };
 
 const WISH_WORDS: Readonly<Record<WishName, string>> = {
@@ -32,23 +26,6 @@ const WISH_MEANING: Readonly<Record<WishName, string>> = {
   'save-ice': 'keeps the ice for later; the rooms may get warm',
   'make-ice': 'runs the ice machine now, whatever power costs',
   'stand-down': 'leaves all machines off',
-};
-
-/** What the learned figures mean. Those in % are shares, or changes of a share. */
-const LEARNED_WORDS: Readonly<
-  Record<string, { readonly what: string; readonly as?: '%' | '% for 10 degrees' }>
-> = {
-  'heat-leak': { what: 'Heat leak of the bank' },
-  'charging-factor': { what: 'Ice making, of what the site file says', as: '%' },
-  'charging-by-outdoor': { what: 'Its change for each 10 degrees outdoors', as: '% for 10 degrees' },
-  'charging-by-inventory': { what: 'Its change from empty to full', as: '%' },
-  'machine-power-factor': { what: 'Power of the ice machine, of what the site file says', as: '%' },
-  'melt-conductance': { what: 'Conductance of melting, half full' },
-  'melt-exponent': { what: 'How it falls as ice is spent, exponent' },
-  'freeze-conductance': { what: 'Conductance of freezing' },
-  'pump-flow': { what: 'Flow of the pump' },
-  'coil-conductance': { what: 'Conductance of the fan coil' },
-  'useful-capacity': { what: 'Ice of a full bank' },
 };
 
 const TOLD_WORDS: Readonly<Record<Told, string>> = {
@@ -188,7 +165,9 @@ export const strings = {
     costing: 'Working out what it costs …',
     cost: (money: string) => `It costs about ${money} more.`,
     saves: (money: string) => `It saves about ${money}.`,
-    free: 'It costs nothing more.',
+    savesWarm: (money: string) => `In power and ice alone it spares about ${money}; the rooms pay for it.`,
+    free: 'It costs about nothing more.',
+    freeWarm: 'In power and ice it costs about nothing more.',
     passphrase: 'Passphrase',
     confirm: (name: string) => `Confirm: ${name.toLowerCase()}`,
     cancel: 'Leave it',
@@ -335,66 +314,5 @@ export const strings = {
     caption: 'The columns that a rehearsal will fill',
   },
 
-  plant: {
-    heading: 'Commissioning sheet',
-    points: 'Points',
-    places: {
-      bank: 'Bank',
-      loop: 'Melt-water loop',
-      machine: 'Ice machine',
-      rooms: 'Rooms',
-      outdoors: 'Outdoors',
-      power: 'Power',
-      other: 'Other',
-    },
-    columns: {
-      point: 'Point',
-      last: 'Last value',
-      age: 'Age',
-      heard: 'Heard',
-      error: 'Error at the ice point',
-      remark: 'Remark',
-      plausible: 'Plausible',
-    },
-    fresh: 'yes',
-    stale: 'stale',
-    never: 'never',
-    required: 'needed',
-    range: (low: string, high: string) => `${low} … ${high}`,
-    error: (error: string, sd: string | null, date: string) => `${error}${sd ? ` ± ${sd}` : ''}, ${date}`,
-    setAside: (why: string) => `Set aside: ${why}`,
-    learned: 'Learned of this plant',
-    learnedEmpty: 'Nothing is learned yet; the figures of the site file hold.',
-    figure: 'Figure',
-    value: 'Value',
-    sd: '±',
-    sdMeans: '± is one standard deviation, in the same unit.',
-    learnedNames: LEARNED_WORDS,
-    interlocks: 'Interlocks',
-    state: 'State',
-    says: 'What it says',
-    speaks: 'Holds back',
-    noneSpeaks: 'None holds anything back.',
-    quiet: (names: string) => `Quiet: ${names}.`,
-    settings: 'Settings',
-    strategy: 'Who decides',
-    strategies: STRATEGY_WORDS,
-    limit: (unit: string) => `Comfort limit, ${unit}`,
-    apply: 'Apply',
-    applied: 'Applied.',
-    parts: 'Parts',
-    part: 'Part',
-    broker: 'Broker',
-    clock: 'Clock',
-    store: 'Database',
-    words: {
-      connected: 'connected',
-      away: 'away',
-      set: 'set',
-      doubtful: 'doubtful',
-      ok: 'in order',
-      full: 'disk full',
-      broken: 'not usable',
-    },
-  },
+  plant: plantWords,
 } as const;

@@ -11,8 +11,8 @@ import type { Shown } from './view.ts';
 const words = strings.wish;
 /** ISO 8601. */
 export type Duration = keyof typeof words.durations;
-/** Below half of the smallest coin shown, a wish costs nothing. */
-const NOTHING = 0.005;
+/** Below two hundredths an amount says nothing: the estimate of ice alone is coarser. */
+const NOTHING = 0.02;
 
 export class WishForm {
   readonly element: HTMLFormElement;
@@ -104,10 +104,10 @@ export class WishForm {
   }
 }
 
-function costSentence({ sentence, costMoney }: WishPreview, format: Format | null): string {
+export function costSentence({ sentence, costMoney, coolsLess }: WishPreview, format: Format | null): string {
   if (costMoney === null || !format) return sentence;
   const money = format.money(Math.abs(costMoney));
-  const cost =
-    Math.abs(costMoney) < NOTHING ? words.free : costMoney > 0 ? words.cost(money) : words.saves(money);
-  return `${sentence} ${cost}`;
+  if (Math.abs(costMoney) < NOTHING) return `${sentence} ${coolsLess ? words.freeWarm : words.free}`;
+  if (costMoney > 0) return `${sentence} ${words.cost(money)}`;
+  return `${sentence} ${coolsLess ? words.savesWarm(money) : words.saves(money)}`;
 }
