@@ -119,6 +119,8 @@ function senmlReading(record: SenmlRecord, point: KnownPoint, arrivalMs: number)
   if (!(Math.abs(atMs) <= LAST_INSTANT_MS)) throw new Fault(`expected a time, found ${record.timeS} s`);
   if (record.ownTime) return toReading(record.value, unit, point, atMs, arrivalMs);
   // a relative time says how long before arrival it was measured, not when
+  if (!(atMs >= CLOCK_UNSET_BEFORE_MS))
+    throw new Fault(`expected a time relative to now, or absolute from 2020 on, found ${record.timeS} s`);
   return toReading(record.value, unit, point, null, atMs);
 }
 
@@ -129,8 +131,8 @@ function shortestUpdateMs(records: readonly SenmlRecord[]): number | null {
   return seconds.length === 0 ? null : Math.min(...seconds) * 1000;
 }
 
-/** A sensor that has lost its clock counts from 1970; such a time is no time. */
-const CLOCK_UNSET_BEFORE_MS = Date.UTC(2000, 0, 1);
+/** A sensor that has lost its clock counts from 1970, 2000 or its own making; such a time is no time. */
+const CLOCK_UNSET_BEFORE_MS = Date.UTC(2020, 0, 1);
 
 function toReading(
   raw: unknown,

@@ -5,7 +5,7 @@ import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import type { SiteConfig } from '../../src/config.ts';
 import { NightBook } from '../../src/daemon/night-book.ts';
-import { LateNights, nightsSince } from '../../src/daemon/late-nights.ts';
+import { LateNights, nightsSince, readWaits } from '../../src/daemon/late-nights.ts';
 import { reviseSheet, storedSheet, writeSheet } from '../../src/daemon/nights.ts';
 import { relivedRecord, replay } from '../../src/daemon/rewind.ts';
 import { Tellings } from '../../src/daemon/telling.ts';
@@ -186,6 +186,21 @@ describe('late readings', () => {
         LATE_MS + minute * MINUTE_MS,
       );
     expect(late.take(LATE_MS + 61 * MINUTE_MS)).toMatchObject({ count: 62, points: ['leaving-water'] });
+  });
+
+  it('asks for no revision when it claims to be older than two weeks', () => {
+    const old = { point: 'leaving-water' as const, value: 1 };
+    expect(late.heard({ ...old, atMs: Date.UTC(2020, 0, 2) }, LATE_MS)).toBe(false);
+    expect(late.take(LATE_MS + 61 * MINUTE_MS)).toBeNull();
+    expect(late.heard({ ...old, atMs: LATE_MS - 13 * 24 * HOUR_MS }, LATE_MS)).toBe(true);
+  });
+
+  it('waits on after a restart', () => {
+    const waits = { fromMs: NIGHT.startMs, count: 3, points: ['leaving-water' as const] };
+    const again = new LateNights('Europe/Madrid', readWaits(JSON.stringify(waits)));
+    expect(again.take(LATE_MS)).toMatchObject(waits);
+    expect(readWaits('{"fromMs":null}')).toBeNull();
+    expect(readWaits('{')).toBeNull();
   });
 
   it('knows the nights from then to now', () => {

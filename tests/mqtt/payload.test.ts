@@ -126,9 +126,13 @@ describe('JSON payloads', () => {
     expect(heard(`{"v":1,"time":${time}}`, point)).toMatchObject({ readings: [{ atMs, ownTime: true }] });
   });
 
-  test('a sensor whose clock counts from 1970 has no time of its own', () => {
+  test.each([
+    ['1970', '120'],
+    ['2000', '"2000-01-01T00:00:00Z"'],
+    ['the year 201', '"0201-07-14T18:29:30Z"'],
+  ])('a sensor whose clock counts from %s has no time of its own', (_, time) => {
     const point = knownPoint('leaving-water', { read: '/v', timePointer: '/time' });
-    expect(heard('{"v":1,"time":120}', point)).toMatchObject({
+    expect(heard(`{"v":1,"time":${time}}`, point)).toMatchObject({
       readings: [{ atMs: ARRIVAL_MS, ownTime: false }],
     });
   });
@@ -159,6 +163,11 @@ describe('SenML payloads', () => {
   test('a relative time counts from arrival and is not the own time', () => {
     const decoded = heard('[{"n":"a","t":-10,"v":4}]', knownPoint('leaving-water', { read: 'senml:a' }));
     expect(decoded).toMatchObject({ readings: [{ value: 4, atMs: ARRIVAL_MS - 10_000, ownTime: false }] });
+  });
+
+  test.each([-900_000_000, -57_000_000_000])('a relative time of %d s is no time', (t) => {
+    const decoded = heard(`[{"n":"a","t":${t},"v":4}]`, knownPoint('leaving-water', { read: 'senml:a' }));
+    expect(decoded).toMatchObject({ kind: 'fault' });
   });
 
   test.each([
