@@ -15,7 +15,7 @@ import { createForecaster } from '../forecasting/forecaster.ts';
 import type { Message } from '../mqtt/intake.ts';
 import type { PointId, Reading } from '../points.ts';
 import type { CycleRecord, PlanRecord } from '../record.ts';
-import { HOUR_MS, MINUTE_MS, nightAt } from '../time.ts';
+import { HOUR_MS, MINUTE_MS } from '../time.ts';
 import { AlertBoard } from './alert-board.ts';
 import { latchesOf, Memory } from './memory.ts';
 import { NightBook } from './night-book.ts';
@@ -266,13 +266,14 @@ export class Daemon {
     this.#told(`The owner told of the bank: ${what}${point === null ? '' : `, ${point}`}.`);
   }
 
-  /** Takes back what was told last: the estimate is as if it had never been told. Throws `usage` after an hour. */
+  /** Takes back what was told last: estimate and records are as if it had never been told. Throws `usage` after an hour. */
   takeBack(): void {
     const nowMs = this.#parts.clock.nowMs();
     const before = this.tellings.takeBack(nowMs);
-    this.#liveAgain(before, nowMs);
+    for (const record of this.#liveAgain(before, nowMs)) this.#parts.store.addRecord(record);
     this.#pending = [];
     this.#told('The owner took back what was told of the bank.');
+    this.#nights.takenBack(this.#config, before.atMs, nowMs, this.tellings);
   }
 
   #told(sentence: string): void {
@@ -318,17 +319,17 @@ export class Daemon {
     if (last !== null && last.atMs <= nowMs) this.#state = { ...this.#state, lastMs: last.atMs };
   }
 
-  #liveAgain(from: Checkpoint, nowMs: number): void {
+  #liveAgain(from: Checkpoint, nowMs: number): readonly CycleRecord[] {
     const { config, store, seed } = this.#parts;
     const told = this.tellings.between(from.atMs, nowMs);
-    const closedMs = nightAt(config.site.zone, nowMs).startMs;
     const relived: CycleRecord[] = [];
     const { estimator, checkpoints } = replay(config, store, from, nowMs, seed, told, (record, at) => {
-      if (record.atMs <= closedMs) relived.push(relivedRecord(record, at.estimate()));
+      relived.push(relivedRecord(record, at.estimate()));
     });
     this.#nights.relived(relived);
     this.#stages = { ...this.#stages, estimator };
     this.#past.relived(from, checkpoints);
+    return relived;
   }
 
   #rewind(nowMs: number): void {

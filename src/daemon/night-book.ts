@@ -31,7 +31,7 @@ export class NightBook {
     this.#late.heard(reading, nowMs);
   }
 
-  /** Takes records that the estimator lived through again; only those of closed nights matter. */
+  /** Takes records that the estimator lived through again; those of closed nights matter. */
   relived(records: Iterable<CycleRecord>): void {
     this.#late.relived(records);
   }
@@ -61,6 +61,25 @@ export class NightBook {
     if (late === null) return;
     for (const night of nightsSince(config.site.zone, late.fromMs, nowMs))
       this.#revise(config, night, nowMs, late, tellings);
+  }
+
+  /** A telling was taken back, and the records since `fromMs` are as if it had never been told: nights closed since then are written again. */
+  takenBack(config: SiteConfig, fromMs: number, nowMs: number, tellings: Tellings): void {
+    const { store } = this.#parts;
+    for (const night of nightsSince(config.site.zone, fromMs, nowMs)) {
+      if (store.sheet(night.date) === null) continue;
+      const told = tellings.all(night.startMs, night.endMs);
+      const sheet = writeSheet(
+        config,
+        store,
+        night,
+        nowMs,
+        null,
+        told,
+        'what was told of the bank was taken back',
+      );
+      if (sheet !== null) this.#publish(sheet);
+    }
   }
 
   #revise(config: SiteConfig, night: Night, nowMs: number, late: Late, tellings: Tellings): void {

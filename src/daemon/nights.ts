@@ -73,12 +73,13 @@ export function writeSheet(
   nowMs: number,
   end: NightEnd | null,
   told: readonly Telling[],
+  because = 'it was closed again',
 ): NightSheet | null {
   const fresh = sheetOf(config, store, night, nowMs, end, told);
   if (fresh === null) return null;
   const before = store.sheet(night.date);
   const written = before === null ? null : readSheet(before.body);
-  const sheet = written === null ? fresh : nextRevision(written, fresh, 'it was closed again');
+  const sheet = written === null ? fresh : nextRevision(written, fresh, because);
   if (sheet !== null) store.addSheet(night.date, JSON.stringify(sheet));
   return sheet;
 }

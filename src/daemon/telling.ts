@@ -1,7 +1,7 @@
 /**
  * What the owner has told of the bank: that it is empty or full, was refilled, or that a probe was moved. Kept with
  * its time, so that a restart or a late reading lives through it again where it belongs; for an hour it can be taken
- * back, and then the estimate is worked out again as if it had never been told.
+ * back, and then the estimate and the records since then are worked out again as if it had never been told.
  */
 import { TOLD, type Told } from '../commands.ts';
 import { RimeholdError } from '../errors.ts';
