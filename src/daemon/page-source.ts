@@ -1,6 +1,7 @@
 /** What the page shows, read from the daemon and its store. No figure is worked out a second time. */
 import type { ActuatorFault } from '../mqtt/actuators.ts';
 import type { PointStatus } from '../mqtt/intake.ts';
+import { whyNotKnown } from '../reports/not-known.ts';
 import { bankLimits } from '../plant/bank.ts';
 import { pointSpec, valueOf, type LivePoints } from '../points.ts';
 import { CAUTION } from '../reports/caution.ts';
@@ -216,6 +217,8 @@ function health(daemon: Daemon, { store }: DaemonParts): NowView['health'] {
 
 function nightRow(sheet: NightSheet): NightRow {
   const noStorage = sheet.comparisons.find((one) => one.strategy === 'no-storage');
+  const notKnown = whyNotKnown(sheet);
+  const notes = [sheet.partialBecause, notKnown === '' ? '' : `saved and residual not known: ${notKnown}`];
   return {
     date: sheet.night.date,
     partial: !sheet.whole,
@@ -227,10 +230,10 @@ function nightRow(sheet: NightSheet): NightRow {
     leakedKwh: sheet.leaked.kwh,
     electricityKwh: sheet.electricity.totalKwh,
     costMoney: sheet.electricity.money,
-    savedMoney: noStorage?.savedMoney ?? null,
+    savedMoney: notKnown === '' ? (noStorage?.savedMoney ?? null) : null,
     cop: sheet.cop.machine,
     warmKh: sheet.comfort.warmKh,
-    residualPct: sheet.balance.residualPct,
-    note: sheet.whole ? '' : sheet.partialBecause,
+    residualPct: notKnown === '' ? sheet.balance.residualPct : null,
+    note: notes.filter(Boolean).join('; '),
   };
 }

@@ -85,6 +85,11 @@ export function asIce(kwh: number): { kwh: number; kg: number } {
   return { kwh: rounded(kwh, 3), kg: rounded(kwh * ICE_KG_PER_KWH, 2) };
 }
 
+/** The mass of the ice itself: less than its cold would be as ice, because the water holds cold too. */
+export function iceItself({ ice }: Pick<NightSheet, 'ice'>, show: Display): string {
+  return `Ice itself: ${show.mass(ice.startKg)} ${show.massUnit} at the start, ${show.mass(ice.endKg)} at the end; the rest is cold water.`;
+}
+
 type Balance = NightSheet['balance'];
 type Residuals = Balance['whileKwh'];
 

@@ -94,7 +94,7 @@ function msOf(instant: string): number {
 }
 
 /** Decimals of a currency: two for most, none for yen. */
-function minorDigits(currency: string): number {
+export function minorDigits(currency: string): number {
   return (
     new Intl.NumberFormat('en', { style: 'currency', currency }).resolvedOptions().maximumFractionDigits ?? 2
   );

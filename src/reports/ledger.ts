@@ -1,8 +1,10 @@
 /** The ledger: a row a night, a total a month, what drifts, for one site or for several side by side. */
 import type { DriftFinding } from './drift.ts';
 import { driftOf } from './drift.ts';
+import { minorDigits } from './display.ts';
 import { grouped } from './grouped.ts';
 import type { NightSheet } from './night-schema.ts';
+import { whyNotKnown } from './not-known.ts';
 import { rounded, roundedOrNull } from './spans.ts';
 import { watchOf, type Watch } from './watch.ts';
 
@@ -84,13 +86,18 @@ export function ledgerOf(sheets: readonly NightSheet[], range: { from?: string; 
 }
 
 function savedOf(sheet: NightSheet): number | null {
+  if (whyNotKnown(sheet) !== '') return null;
   return sheet.comparisons.find((one) => one.strategy === 'no-storage')?.savedMoney ?? null;
 }
 
 function rowOf(sheet: NightSheet, drift: readonly DriftFinding[]): LedgerRow {
+  const notKnown = whyNotKnown(sheet);
   const notes = [
     ...(sheet.partialBecause === '' ? [] : [`partial: ${sheet.partialBecause}`]),
-    ...(sheet.balance.verdict === 'open' ? [`balance open: ${sheet.balance.culprit.split(';')[0]}`] : []),
+    ...(notKnown === '' ? [] : [`saved and residual not known: ${notKnown}`]),
+    ...(notKnown === '' && sheet.balance.verdict === 'open'
+      ? [`balance open: ${sheet.balance.culprit.split(';')[0]}`]
+      : []),
     ...drift.filter((one) => one.since === sheet.night.date).map((one) => one.note),
   ];
   return {
@@ -106,9 +113,14 @@ function rowOf(sheet: NightSheet, drift: readonly DriftFinding[]): LedgerRow {
     savedMoney: savedOf(sheet),
     cop: sheet.cop.machine,
     warmKh: sheet.comfort.warmKh,
-    residualPct: sheet.balance.residualPct,
+    residualPct: notKnown === '' ? sheet.balance.residualPct : null,
     notes,
   };
+}
+
+/** Rounded as each row shows it, so that a total is the sum of its rows. */
+function inCents({ site }: NightSheet, money: number): number {
+  return rounded(money, minorDigits(site.currency));
 }
 
 function totalsOf(sheets: readonly NightSheet[]): LedgerTotal[] {
@@ -121,12 +133,19 @@ function totalsOf(sheets: readonly NightSheet[]): LedgerTotal[] {
 function totalOf(month: string, nights: readonly NightSheet[]): LedgerTotal {
   const sum = (pick: (sheet: NightSheet) => number): number =>
     nights.reduce((total, one) => total + pick(one), 0);
-  const saved = nights.flatMap((sheet) => savedOf(sheet) ?? []);
+  const saved = nights.flatMap((sheet) => {
+    const one = savedOf(sheet);
+    return one === null ? [] : [inCents(sheet, one)];
+  });
   const machineKwh = sum((sheet) => (sheet.cop.machine === null ? 0 : sheet.electricity.machineKwh));
-  const madeKwh = sum((sheet) => (sheet.cop.machine === null ? 0 : sheet.balance.inKwh));
+  // what was made while the power was heard, as in the COP of each night
+  const madeKwh = sum((sheet) => (sheet.cop.machine ?? 0) * sheet.electricity.machineKwh);
+  const balanced = nights.filter((sheet) => whyNotKnown(sheet) === '').map((sheet) => sheet.balance);
+  const over = (pick: (balance: NightSheet['balance']) => number): number =>
+    balanced.reduce((total, one) => total + pick(one), 0);
   const throughput = Math.max(
-    sum((one) => one.balance.inKwh),
-    sum((one) => one.balance.outKwh + one.balance.leakKwh),
+    over((one) => one.inKwh),
+    over((one) => one.outKwh + one.leakKwh),
   );
   return {
     month,
@@ -149,7 +168,7 @@ function totalOf(month: string, nights: readonly NightSheet[]): LedgerTotal {
       3,
     ),
     money: rounded(
-      sum((sheet) => sheet.electricity.money),
+      sum((sheet) => inCents(sheet, sheet.electricity.money)),
       4,
     ),
     savedMoney:
@@ -165,7 +184,7 @@ function totalOf(month: string, nights: readonly NightSheet[]): LedgerTotal {
       3,
     ),
     residualPct: roundedOrNull(
-      throughput > 1 ? (sum((one) => one.balance.residualKwh) / throughput) * 100 : null,
+      throughput > 1 ? (over((one) => one.residualKwh) / throughput) * 100 : null,
       2,
     ),
   };

@@ -15,6 +15,7 @@ import { copOf, electricityOf, machineMoney, supplyOf } from './electricity.ts';
 import { displayFor } from './display.ts';
 import { forecastOf, noonPlan } from './forecast-check.ts';
 import { NIGHT_SHEET_SCHEMA, type NightSheet } from './night-schema.ts';
+import { balanceAsKnown, whyNotKnown } from './not-known.ts';
 import { commandsOf, interlocksOf, toldKwh, toldOf, wishesOf, type Told } from './orders.ts';
 import { plantFigures } from './plant-figures.ts';
 import { comfortOf, deliveredOf, weatherOf } from './service.ts';
@@ -60,8 +61,10 @@ export function nightSheet(input: NightInput): NightSheet {
   const coverage = coverageOf(spans, night, input.issuedMs, site.site.zone);
   const show = displayFor(site.site);
   const doubtfulMinutes = coverage.clockDoubtfulMinutes;
-  const balance = accountOf(input, spans, start, doubtfulMinutes);
   const ice = iceOf(spans, start, site);
+  const ground = { whole: coverage.whole, ice };
+  const balance = balanceAsKnown(accountOf(input, spans, start, doubtfulMinutes), ground);
+  const ways = whyNotKnown(ground) === '' ? (input.ways ?? []) : [];
   const electricity = electricityOf(site, spans);
   const worth = worthOfIce(site, spans, balance.inKwh);
   const figures = {
@@ -80,7 +83,7 @@ export function nightSheet(input: NightInput): NightSheet {
     balance,
     electricity,
     supply: supplyOf(spans),
-    comparisons: (input.ways ?? []).map((way) => likeForLike(way, electricity.money, ice.endKwh, worth)),
+    comparisons: ways.map((way) => likeForLike(way, electricity.money, ice.endKwh, worth)),
     iceWorthMoneyPerKwh: roundedOrNull(worth, 5),
     cop: copOf(site, spans, night),
     delivered: deliveredOf(spans),

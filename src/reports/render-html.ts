@@ -2,15 +2,19 @@
  * The night sheet as one self-contained page: no script, no request, prints on one sheet of A4 or Letter. System fonts, hairline
  * rules, the title block of a drawing at the top right, the caution at the foot.
  */
+import { asIce } from './account.ts';
 import { displayFor, fixed, type Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
+import { whyNotKnown } from './not-known.ts';
 import { toldWords } from './orders.ts';
 import { escaped, plotsOf } from './plots.ts';
 import { SHEET_STYLE } from './sheet-style.ts';
 import { revisedWords } from './summary.ts';
 
 const MOST_COMMANDS = 7;
+/** As many as one page holds; what is left out is counted. */
 const MOST_HOURS = 12;
+const MOST_TOLD = 3;
 const MOST_REASON = 125;
 
 export function renderHtml(sheet: NightSheet): string {
@@ -87,27 +91,27 @@ function ruled(caption: string, head: Row, rows: readonly Row[], total = -1): st
 
 function iceTable(sheet: NightSheet, show: Display): string {
   const { ice, made, melted, leaked, balance } = sheet;
+  const mass = (kwh: number): string => show.mass(asIce(kwh).kg);
   const within = (low: number, high: number): string => `${show.heat(low)} to ${show.heat(high)}`;
   const rows = [
-    [
-      'at the start',
-      show.heat(ice.startKwh),
-      show.mass(ice.startKg),
-      within(ice.startLowKwh, ice.startHighKwh),
-    ],
-    ['+ made', show.heat(made.kwh), show.mass(made.kg), ''],
-    ['\u2212 melted for the rooms', show.heat(melted.kwh), show.mass(melted.kg), ''],
-    ['\u2212 leaked', show.heat(leaked.kwh), show.mass(leaked.kg), ''],
+    ['at the start', show.heat(ice.startKwh), mass(ice.startKwh), within(ice.startLowKwh, ice.startHighKwh)],
+    ['+ made', show.heat(made.kwh), mass(made.kwh), ''],
+    ['\u2212 melted for the rooms', show.heat(melted.kwh), mass(melted.kwh), ''],
+    ['\u2212 leaked', show.heat(leaked.kwh), mass(leaked.kwh), ''],
     [
       '\u2212 residual',
       show.heat(balance.residualKwh),
-      '',
-      balance.residualPct === null ? '' : `${fixed(balance.residualPct, 1)} %`,
+      mass(balance.residualKwh),
+      whyNotKnown(sheet) !== ''
+        ? 'not known'
+        : balance.residualPct === null
+          ? ''
+          : `${fixed(balance.residualPct, 1)} %`,
     ],
     ...(Math.abs(balance.warmedPastUseKwh) < 0.005
       ? []
-      : [['+ water past use', show.heat(balance.warmedPastUseKwh), '', '']]),
-    ['= at the end', show.heat(ice.endKwh), show.mass(ice.endKg), within(ice.endLowKwh, ice.endHighKwh)],
+      : [['+ water past use', show.heat(balance.warmedPastUseKwh), mass(balance.warmedPastUseKwh), '']]),
+    ['= at the end', show.heat(ice.endKwh), mass(ice.endKwh), within(ice.endLowKwh, ice.endHighKwh)],
   ];
   const table = ruled(
     'Ice on hand',
@@ -140,9 +144,12 @@ function moneyTable(sheet: NightSheet, show: Display): string {
     [...periods, together],
     periods.length,
   );
+  const notKnown = whyNotKnown(sheet);
   const second =
-    comparisons.length === 0
-      ? ''
+    comparisons.length === 0 || notKnown !== ''
+      ? notKnown === ''
+        ? ''
+        : `<p>Saved: not known, ${escaped(notKnown)}.</p>`
       : ruled(
           'The same night with',
           ['', `${show.currency}, like for like`, 'saved', `unmet ${show.heatUnit}`],
@@ -153,13 +160,14 @@ function moneyTable(sheet: NightSheet, show: Display): string {
             show.heat(one.unmetKwh),
           ]),
         );
+  const later = Math.max(0, cop.byHour.length - MOST_HOURS);
   const hours = cop.byHour
     .slice(0, MOST_HOURS)
     .map((one) => `${show.clock(one.at).slice(0, 2)}\u202fh\u00a0${fixed(one.cop, 2)}`);
   const overall =
     cop.machine === null || cop.withPumpAndFan === null
       ? 'The machine did not run.'
-      : `COP ${fixed(cop.machine, 2)}, with pump and fan ${fixed(cop.withPumpAndFan, 2)}. By hour: ${hours.join(', ')}.`;
+      : `COP ${fixed(cop.machine, 2)}, with pump and fan ${fixed(cop.withPumpAndFan, 2)}. By hour: ${hours.join(', ')}${later > 0 ? `; ${later} later hours are in the text form` : ''}.`;
   return `${first}${second}<p>${escaped(overall)}</p>`;
 }
 
@@ -227,13 +235,18 @@ function notes(sheet: NightSheet, show: Display): string[] {
   const wishes = sheet.wishes
     .slice(0, 3)
     .map((one) => `${one.wish} ${show.clock(one.from)} to ${show.clock(one.to)}`);
+  const told = toldWords(sheet, (instant) => show.clock(instant));
+  const earlier = Math.max(0, told.length - MOST_TOLD);
   const silent = sheet.probes.filter((one) => one.staleMinutes >= 1).slice(0, 4);
   const checked = sheet.probes.filter((one) => one.errorAtIcePointK !== null).slice(0, 4);
   const aside = sheet.probes.filter((one) => one.setAside !== null).slice(0, 3);
   return [
     listed('Held back', held),
     listed('Wishes', wishes),
-    listed('Told', toldWords(sheet, (instant) => show.clock(instant)).slice(-3)),
+    listed('Told', [
+      ...(earlier > 0 ? [`${earlier} earlier, in the text form`] : []),
+      ...told.slice(-MOST_TOLD),
+    ]),
     listed(
       'Silent',
       silent.map((one) => `${one.point} ${Math.round(one.staleMinutes)} min`),

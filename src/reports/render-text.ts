@@ -1,6 +1,8 @@
 /** The night sheet for a terminal, 80 columns. */
+import { asIce, iceItself } from './account.ts';
 import { displayFor, fixed, type Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
+import { whyNotKnown } from './not-known.ts';
 import { toldWords } from './orders.ts';
 import { bothEnds, heading, noted, rule, table, wrapped } from './paper.ts';
 import { stripOf } from './strip.ts';
@@ -58,34 +60,37 @@ function titleBlock(sheet: NightSheet, show: Display): string[] {
 
 function iceLines(sheet: NightSheet, show: Display): string[] {
   const { ice, balance, made, melted, leaked } = sheet;
+  const mass = (kwh: number): string => show.mass(asIce(kwh).kg);
   const within = (low: number, high: number): string => `${show.heat(low)} to ${show.heat(high)}`;
   const rows = [
     ['', show.heatUnit, `as ice, ${show.massUnit}`, '90 % interval'],
     [
       'on hand at the start',
       show.heat(ice.startKwh),
-      show.mass(ice.startKg),
+      mass(ice.startKwh),
       within(ice.startLowKwh, ice.startHighKwh),
     ],
-    ['+ made', show.heat(made.kwh), show.mass(made.kg), ''],
-    ['- melted for the rooms', show.heat(melted.kwh), show.mass(melted.kg), ''],
-    ['- leaked', show.heat(leaked.kwh), show.mass(leaked.kg), ''],
-    ['- residual', show.heat(balance.residualKwh), '', residualShare(sheet)],
+    ['+ made', show.heat(made.kwh), mass(made.kwh), ''],
+    ['- melted for the rooms', show.heat(melted.kwh), mass(melted.kwh), ''],
+    ['- leaked', show.heat(leaked.kwh), mass(leaked.kwh), ''],
+    ['- residual', show.heat(balance.residualKwh), mass(balance.residualKwh), residualShare(sheet)],
     ...(Math.abs(balance.warmedPastUseKwh) < 0.005
       ? []
-      : [['+ water past use', show.heat(balance.warmedPastUseKwh), '', '']]),
-    [
-      '= on hand at the end',
-      show.heat(ice.endKwh),
-      show.mass(ice.endKg),
-      within(ice.endLowKwh, ice.endHighKwh),
-    ],
+      : [['+ water past use', show.heat(balance.warmedPastUseKwh), mass(balance.warmedPastUseKwh), '']]),
+    ['= on hand at the end', show.heat(ice.endKwh), mass(ice.endKwh), within(ice.endLowKwh, ice.endHighKwh)],
   ];
-  return [...table(rows), ...wrapped(balance.sentence), ...heardOutLine(sheet, show)];
+  return [
+    ...table(rows),
+    ...wrapped(iceItself(sheet, show)),
+    ...wrapped(balance.sentence),
+    ...heardOutLine(sheet, show),
+  ];
 }
 
 function residualShare(sheet: NightSheet): string {
   const { residualPct } = sheet.balance;
+  const why = whyNotKnown(sheet);
+  if (why !== '') return 'share not known';
   return residualPct === null ? '' : `${fixed(residualPct, 1)} % of throughput`;
 }
 
@@ -146,7 +151,7 @@ function electricityNotes(sheet: NightSheet): string[] {
 }
 
 function comparisonLines(sheet: NightSheet, show: Display): string[] {
-  if (sheet.comparisons.length === 0) return [];
+  if (sheet.comparisons.length === 0) return notKnownLines(sheet);
   return table([
     ['the same night with', `${show.currency}, like for like`, 'saved', `unmet ${show.heatUnit}`],
     ...sheet.comparisons.map((one) => [
@@ -156,6 +161,11 @@ function comparisonLines(sheet: NightSheet, show: Display): string[] {
       show.heat(one.unmetKwh),
     ]),
   ]);
+}
+
+function notKnownLines(sheet: NightSheet): string[] {
+  const why = whyNotKnown(sheet);
+  return why === '' ? [] : noted('saved', `not known: ${why}`, MARGIN);
 }
 
 function copLines(cop: NightSheet['cop'], show: Display): string[] {

@@ -1,6 +1,7 @@
 /** The sheet in two or three sentences: what an owner or installer reads first. */
 import type { Display } from './display.ts';
 import type { NightSheet } from './night-schema.ts';
+import { whyNotKnown } from './not-known.ts';
 
 type Figures = Omit<NightSheet, 'summary'>;
 
@@ -20,6 +21,8 @@ function moneySentence(sheet: Figures, show: Display): string {
   const { electricity, comparisons } = sheet;
   const spent = `${electricity.totalKwh.toFixed(2)} kWh of electricity for ${show.money(electricity.money)} ${show.currency}`;
   const against = comparisons.find((one) => one.strategy === 'no-storage') ?? comparisons.at(0);
+  const notKnown = whyNotKnown(sheet);
+  if (notKnown !== '') return `${spent}; what the bank saved is not known: ${notKnown}.`;
   if (!against) return `${spent}.`;
   const name = against.strategy === 'no-storage' ? 'no storage' : against.strategy;
   const amount = `${show.money(Math.abs(against.savedMoney))} ${show.currency}`;
@@ -35,8 +38,8 @@ function comfortSentence(sheet: Figures, show: Display): string {
   if (comfort.warmestC === null || comfort.warmestAt === null)
     return 'No room temperature was heard while somebody was home.';
   const warmest = `at most ${show.temperature(comfort.warmestC)} ${show.temperatureUnit} at ${show.clock(comfort.warmestAt)}`;
-  if (!(comfort.warmKh > 0)) return `Rooms stayed within the limit, ${warmest}.`;
-  return `${show.degreeHours(comfort.warmKh)} ${show.degreeHourUnit} above the limit in ${Math.round(comfort.warmMinutes)} minutes, ${warmest}.`;
+  if (!(comfort.warmKh > 0)) return `Rooms stayed within the limit while somebody was home, ${warmest}.`;
+  return `${show.degreeHours(comfort.warmKh)} ${show.degreeHourUnit} above the limit in ${Math.round(comfort.warmMinutes)} minutes while somebody was home, ${warmest}.`;
 }
 
 /** What a sheet that was written again says of that. */
