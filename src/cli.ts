@@ -50,7 +50,7 @@ function program(): Command {
     .action(ending(async () => (await import('./verbs/run.ts')).run));
   cli
     .command('demo')
-    .description('a simulated plant, one evening in two minutes, and its night sheet')
+    .description('a simulated plant, one evening in about three minutes, and its night sheet')
     .option('--stay', 'keep running after the night sheet')
     .option('--seed <n>', 'weather and probes of another draw', wholeNumber, '1')
     .action(ending(async () => (await import('./verbs/demo.ts')).demo));

@@ -102,7 +102,7 @@ function csvOf(config: SiteConfig, made: Bill): string {
     what,
     line?.quantity ?? null,
     line?.unit ?? null,
-    line?.price ?? null,
+    line === null ? null : Number(line.price.toFixed(6)),
     currency,
     amount,
   ];

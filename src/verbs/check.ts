@@ -18,7 +18,7 @@ import {
 import { shownIn, type DisplayUnits } from '../units.ts';
 import { brokerOptions } from './broker.ts';
 import { lookAtStore, type StoreLook } from './check-store.ts';
-import { loadSite } from './site.ts';
+import { loadSite, secret } from './site.ts';
 import { VERSION } from './version.ts';
 
 interface PointLine {
@@ -73,6 +73,7 @@ export async function check(options: { config: string; listen: string; json?: bo
     .status()
     .map((status) => pointLine(status, heard.intake, estimate?.probes ?? []));
   const missing = config.broker.embedded ? [] : points.filter((point) => point.required && !point.fresh);
+  const locked = passphraseFault(config);
   const verdict: Verdict = {
     site: `${config.site.name} (${config.site.id})`,
     version: VERSION,
@@ -83,9 +84,10 @@ export async function check(options: { config: string; listen: string; json?: bo
     learnedAt: estimate === null ? null : formatInstant(estimate.atMs),
     learned: estimate?.learned ?? [],
     warnings: warningsOf(config),
-    mayRun: sound && heard.connected && heard.refused.length === 0 && missing.length === 0,
+    mayRun: sound && locked === null && heard.connected && heard.refused.length === 0 && missing.length === 0,
   };
   const obstacles = [
+    ...(locked === null ? [] : [`the page's passphrase must be readable (${locked})`]),
     ...(sound ? [] : ['the database must be usable']),
     ...(heard.connected ? [] : ['the broker must be reached']),
     ...(heard.refused.length === 0 ? [] : [`the broker must let this user read ${heard.refused.join(', ')}`]),
@@ -95,6 +97,16 @@ export async function check(options: { config: string; listen: string; json?: bo
   ];
   console.log(options.json ? JSON.stringify(verdict) : text(verdict, heard.connected, obstacles, config));
   return verdict.mayRun ? EXIT.yes : EXIT.no;
+}
+
+/** Why the passphrase of the page cannot be read: `run` refuses to start then. */
+function passphraseFault({ web }: SiteConfig): string | null {
+  try {
+    secret('the passphrase', 'web.passphrase', web.passphraseFile, web.passphraseEnv);
+    return null;
+  } catch (error) {
+    return sentenceOf(error).replace(/\.$/, '');
+  }
 }
 
 function unheard(config: SiteConfig): Heard {

@@ -1,4 +1,4 @@
-/** `rimehold demo`: embedded broker, simulated Juniper and daemon; one evening in two minutes, then its night sheet. */
+/** `rimehold demo`: embedded broker, simulated Juniper and daemon; one evening in about three minutes, then its night sheet. */
 import { mkdtempSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';

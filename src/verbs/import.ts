@@ -94,7 +94,7 @@ export async function importLog(file: string, options: { config: string; json?: 
   if (options.json) console.log(JSON.stringify({ file, ...summary }));
   else
     console.log(
-      `${counted(summary.readings, 'reading')} from ${file} taken into ${config.store.file}; ${counted(summary.faulty, 'faulty line')} left out.`,
+      `${counted(summary.readings, 'reading')} from ${file} taken into ${config.store.file}; ${counted(summary.faulty, 'faulty line')} left out. Imported readings make no night sheet, for nothing was decided by them; \`rimehold estimate\` tells the ice through a log.`,
     );
   return summary.faulty === 0 ? EXIT.yes : EXIT.no;
 }
