@@ -10,7 +10,7 @@ import { pause, until, type Observer, type Seen } from '../mqtt/observer.ts';
 import { cycleRecord, NOW_MS, pretendCleared } from '../mqtt/site.ts';
 import { oneCycle, ROOT, stateOf, test, untilReady } from '../mqtt/stage.ts';
 
-const SETTABLE = ['plan/strategy', 'dispatch/wish', 'dispatch/wish-for', 'comfort/limit'];
+const SETTABLE = ['bank/told', 'plan/strategy', 'dispatch/wish', 'dispatch/wish-for', 'comfort/limit'];
 
 /** Not known in the records of these tests: no humidity is heard and no night is closed yet. */
 const UNKNOWN = [
