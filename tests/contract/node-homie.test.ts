@@ -54,7 +54,7 @@ describe.skipIf(!hasMosquitto)('an independent controller', () => {
       Object.keys(node.properties).length,
     ]);
     expect(Object.fromEntries(found)).toEqual({
-      bank: 8,
+      bank: 9,
       plan: 6,
       dispatch: 7,
       comfort: 3,
