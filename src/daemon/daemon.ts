@@ -193,7 +193,15 @@ export class Daemon {
       lastRecordMs: this.#highWater.at(nowMs),
       sensorsAheadMs: intake.ahead(nowMs)?.medianMs ?? null,
     });
-    return { nowMs, live: intake.live(nowMs), clock: this.#clock, brokerConnected: this.#connected };
+    const steadyMs = clock.steadyMs?.();
+    const steady = steadyMs === undefined ? {} : { steadyMs };
+    return {
+      nowMs,
+      ...steady,
+      live: intake.live(nowMs),
+      clock: this.#clock,
+      brokerConnected: this.#connected,
+    };
   }
 
   #replan(moment: Moment): void {

@@ -4,8 +4,8 @@ import type { IceEstimate } from '../estimation/types.ts';
 import type { NightSheet } from '../reports/night-schema.ts';
 import type { Reading } from '../points.ts';
 import type { CycleRecord } from '../record.ts';
-import { nightAt, type Night } from '../time.ts';
-import { LateNights, nightsSince, type Late } from './late-nights.ts';
+import { MINUTE_MS, nightAt, type Night } from '../time.ts';
+import { LateNights, nightsSince, readWaits, together, type Late } from './late-nights.ts';
 import { lateWords, nightsToClose, reviseSheet, writeSheet } from './nights.ts';
 import type { DaemonParts } from './ports.ts';
 import type { Tellings } from './telling.ts';
@@ -14,21 +14,32 @@ type Parts = Pick<DaemonParts, 'store' | 'log' | 'config'> & {
   readonly device: Pick<DaemonParts['device'], 'publishNight'>;
 };
 
+/** How long a night whose sheet could not be written waits before it is tried again. */
+const RETRY_MS = 5 * MINUTE_MS;
+
+/** Nights that late readings changed and that are not written yet. */
+interface Work {
+  readonly late: Late;
+  readonly nights: Night[];
+  failedMs: number;
+}
+
 export class NightBook {
   readonly #parts: Parts;
   readonly #tell: (sheet: NightSheet) => void;
   readonly #late: LateNights;
   #closedBefore = '';
+  #work: Work | null = null;
 
   constructor(parts: Parts, tell: (sheet: NightSheet) => void) {
     this.#parts = parts;
     this.#tell = tell;
-    this.#late = new LateNights(parts.config.site.zone);
+    this.#late = new LateNights(parts.config.site.zone, readWaits(parts.store.loadMemory('late')));
   }
 
   /** Notes a reading that came too late for the estimator's own step. */
   late(reading: Reading, nowMs: number): void {
-    this.#late.heard(reading, nowMs);
+    if (this.#late.heard(reading, nowMs)) this.#keep();
   }
 
   /** Takes records that the estimator lived through again; those of closed nights matter. */
@@ -55,12 +66,34 @@ export class NightBook {
     this.#closedBefore = date;
   }
 
-  /** Writes the next revision of every closed night that late readings changed, once they have all come. */
+  /**
+   * Writes the next revision of a closed night that late readings changed, once they have all come: one night each
+   * time it is called, so that many of them do not hold up the plant. A night whose sheet could not be written stays.
+   */
   revise(config: SiteConfig, nowMs: number, tellings: Tellings): void {
+    const work = (this.#work ??= this.#next(config, nowMs));
+    if (work === null || Math.abs(nowMs - work.failedMs) < RETRY_MS) return;
+    const night = work.nights.at(0);
+    work.failedMs = nowMs;
+    if (night !== undefined) this.#revise(config, night, nowMs, work.late, tellings);
+    work.failedMs = Number.NEGATIVE_INFINITY;
+    work.nights.shift();
+    if (work.nights.length > 0) return;
+    this.#work = null;
+    this.#keep();
+  }
+
+  #next(config: SiteConfig, nowMs: number): Work | null {
     const late = this.#late.take(nowMs);
-    if (late === null) return;
-    for (const night of nightsSince(config.site.zone, late.fromMs, nowMs))
-      this.#revise(config, night, nowMs, late, tellings);
+    if (late === null) return null;
+    const nights = nightsSince(config.site.zone, late.fromMs, nowMs);
+    return { late, nights, failedMs: Number.NEGATIVE_INFINITY };
+  }
+
+  /** What waits outlives a restart. */
+  #keep(): void {
+    const waits = together(this.#work?.late ?? null, this.#late.waits());
+    this.#parts.store.saveMemory('late', JSON.stringify(waits, ['fromMs', 'count', 'points']));
   }
 
   /** A telling was taken back, and the records since `fromMs` are as if it had never been told: nights closed since then are written again. */

@@ -107,7 +107,8 @@ export function reviseSheet(
     return again !== undefined && Math.abs(again.iceOnHandKwh - iceOnHandKwh) > SAME_KWH;
   });
   const relived = moved ? stored.map((record) => late.relived.get(record.atMs) ?? record) : stored;
-  const readings = store.readingsBetween(late.fromMs - DAY_MS, night.endMs, late.points);
+  const fromMs = Math.max(late.fromMs, night.startMs - DAY_MS);
+  const readings = store.readingsBetween(fromMs - DAY_MS, night.endMs, late.points);
   const records = heardAgain(config, relived, readings);
   if (records.every((record, i) => record === stored[i])) return null;
   const fresh = sheetOf(config, store, night, nowMs, null, told, records);
