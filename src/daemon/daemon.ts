@@ -219,7 +219,7 @@ export class Daemon {
     const ticked = tick(this.#stages, this.#state, moment, this.owner.wanted(moment.nowMs), readings);
     const latched = latchesOf(this.#state.dispatch) !== latchesOf(ticked.state.dispatch);
     this.#state = ticked.state;
-    if (latched) this.#memory.save('dispatch', this.#state.dispatch);
+    if (latched) this.#memory.saveNow('dispatch', this.#state.dispatch);
     for (const publication of actuators.order(ticked.order, moment.nowMs))
       void publisher.publish(publication);
     device.publishOrder(ticked.order);

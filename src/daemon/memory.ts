@@ -29,6 +29,12 @@ export class Memory {
     this.#store.saveMemory(name, JSON.stringify(value));
   }
 
+  /** What a crash in the next half minute must not lose. A fault of the disk is told by the next flush as well. */
+  saveNow(name: 'dispatch', value: unknown): void {
+    this.save(name, value);
+    this.#store.flush();
+  }
+
   /** Latches outlive a restart; of the compressor nothing is known until its power is heard. */
   dispatch(nowMs: number): DispatchMemory {
     const stored = this.load('dispatch') as Partial<DispatchMemory> | null;
@@ -44,11 +50,14 @@ export class Memory {
     };
   }
 
-  /** The estimator's last checkpoint, or null when there is none before `nowMs`. */
+  /**
+   * The estimator's last checkpoint, or null when there is none. With the clock behind it, what was learned still
+   * holds: it is taken as if it had been kept at `nowMs`, and the estimator meets the clock from there.
+   */
   checkpoint(nowMs: number): Checkpoint | null {
     const stored = this.load('estimator') as Partial<Checkpoint> | null;
-    if (stored === null || typeof stored.atMs !== 'number' || !(stored.atMs <= nowMs)) return null;
-    return { atMs: stored.atMs, memory: stored.memory };
+    if (stored === null || typeof stored.atMs !== 'number' || !Number.isFinite(stored.atMs)) return null;
+    return { atMs: Math.min(stored.atMs, nowMs), memory: stored.memory };
   }
 }
 
