@@ -138,7 +138,8 @@ describe.skipIf(!hasChromium)('the page on a real evening', () => {
       sheet.comparisons.find(({ strategy }) => strategy === 'no-storage')?.savedMoney,
       sheet.comfort.warmKh,
       sheet.balance.residualPct,
-    ];
+      // What is not known, such as a saving where the ice at the start was guessed, has a dash and no figure.
+    ].filter((value) => value !== null && value !== undefined);
     await open('nights');
     await viewer.page.locator('.ledger tbody tr').first().waitFor();
     expect(await viewer.figures('tbody tr:not(.total)')).toEqual(figures);
