@@ -4,6 +4,7 @@
  * skies that never come; scores persist and err evenly, and each is turned back into a clearness that was seen (normal
  * scores: van der Waerden 1952; the same transform before an autoregression: Graham & Hollands 1990, Solar Energy 44(6)).
  */
+import { normalQuantile } from '../numerics/normal.ts';
 import { hourOfDay, type HourSeries } from './bins.ts';
 import { MOST_CLEARNESS } from './sky.ts';
 
@@ -102,13 +103,4 @@ function along(xs: Float64Array, ys: Float64Array, x: number): number {
     else high = middle;
   }
   return ys[low] + ((ys[high] - ys[low]) * (x - xs[low])) / (xs[high] - xs[low]);
-}
-
-/** Normal deviate of a probability: Abramowitz & Stegun 1964, 26.2.23, absolute error below 4.5e-4. */
-export function normalQuantile(p: number): number {
-  const tail = Math.min(p, 1 - p);
-  const t = Math.sqrt(-2 * Math.log(tail));
-  const z =
-    t - (2.515517 + t * (0.802853 + t * 0.010328)) / (1 + t * (1.432788 + t * (0.189269 + t * 0.001308)));
-  return p < 0.5 ? -z : z;
 }
